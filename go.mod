@@ -1,0 +1,3 @@
+module dewmark
+
+go 1.26.0

@@ -1,0 +1,164 @@
+package props
+
+import (
+	"cmp"
+	"context"
+	"fmt"
+	"runtime"
+	"slices"
+	"strconv"
+	"strings"
+	"sync"
+	"sync/atomic"
+	"unicode"
+
+	"dewmark/props/data"
+)
+
+// Catalogue holds every refrigerant of the embedded data. It is safe for concurrent use.
+type Catalogue struct {
+	fluids []*fluid // in natural order of designation
+	byName map[string]*fluid
+	warmed atomic.Int64
+}
+
+// NewCatalogue reads the embedded coefficient files. The saturation curve of a refrigerant is made when it is first
+// needed, or by [Catalogue.Warm].
+func NewCatalogue() (*Catalogue, error) {
+	records, err := data.Load()
+	if err != nil {
+		return nil, err
+	}
+	c := &Catalogue{byName: map[string]*fluid{}}
+	for _, r := range records {
+		f, err := newFluid(r)
+		if err != nil {
+			return nil, err
+		}
+		c.fluids = append(c.fluids, f)
+		for _, name := range append([]string{r.ID, r.Name}, r.Aliases...) {
+			key := foldName(name)
+			if other, taken := c.byName[key]; taken && other != f {
+				return nil, fmt.Errorf("props: name %q belongs to both %s and %s", name, other.rec.ID, r.ID)
+			}
+			c.byName[key] = f
+		}
+	}
+	slices.SortFunc(c.fluids, func(a, b *fluid) int { return compareDesignations(a.rec.ID, b.rec.ID) })
+	return c, nil
+}
+
+// Designations returns the ISO 817 designation of every refrigerant in natural order: R32 before R134a before R1234yf.
+func (c *Catalogue) Designations() []string {
+	names := make([]string, len(c.fluids))
+	for i, f := range c.fluids {
+		names[i] = f.rec.ID
+	}
+	return names
+}
+
+// Refrigerant returns the refrigerant called name, its enthalpies and entropies counted from datum. Spelling is
+// forgiving: case, spaces, hyphens and brackets do not matter, trade prefixes such as HFC and common names are known.
+// It returns an [*UnknownRefrigerantError] or a [*DatumError].
+func (c *Catalogue) Refrigerant(name string, datum Datum) (*Refrigerant, error) {
+	f, ok := c.byName[foldName(name)]
+	if !ok {
+		return nil, &UnknownRefrigerantError{Name: name, Suggestions: c.near(name)}
+	}
+	return f.withDatum(datum)
+}
+
+// Warm makes the saturation curves of all refrigerants on all cores. It returns early with the cause when ctx ends.
+func (c *Catalogue) Warm(ctx context.Context) error {
+	var wg sync.WaitGroup
+	var next atomic.Int64
+	for range min(runtime.GOMAXPROCS(0), len(c.fluids)) {
+		wg.Go(func() {
+			for ctx.Err() == nil {
+				i := int(next.Add(1)) - 1
+				if i >= len(c.fluids) {
+					return
+				}
+				c.fluids[i].curve()
+				c.warmed.Add(1)
+			}
+		})
+	}
+	wg.Wait()
+	return context.Cause(ctx)
+}
+
+// foldName reduces a name to what distinguishes it: lower case letters and digits.
+func foldName(name string) string {
+	return strings.Map(func(r rune) rune {
+		if unicode.IsLetter(r) || unicode.IsDigit(r) {
+			return unicode.ToLower(r)
+		}
+		return -1
+	}, name)
+}
+
+// near returns up to three designations whose name or alias is closest to name by edit distance.
+func (c *Catalogue) near(name string) []string {
+	key := foldName(name)
+	if len(key) > 40 { // longer than any name; the distance would only cost time
+		return nil
+	}
+	best := map[string]int{}
+	for known, f := range c.byName {
+		d := editDistance(key, known)
+		if d > 2 && !(len(key) >= 3 && strings.HasPrefix(known, key)) {
+			continue
+		}
+		if have, ok := best[f.rec.ID]; !ok || d < have {
+			best[f.rec.ID] = d
+		}
+	}
+	ids := make([]string, 0, len(best))
+	for id := range best {
+		ids = append(ids, id)
+	}
+	slices.SortFunc(ids, func(a, b string) int {
+		return cmp.Or(cmp.Compare(best[a], best[b]), compareDesignations(a, b))
+	})
+	return ids[:min(3, len(ids))]
+}
+
+// editDistance returns the Levenshtein distance of a and b.
+func editDistance(a, b string) int {
+	row := make([]int, len(b)+1)
+	for j := range row {
+		row[j] = j
+	}
+	for i := range len(a) {
+		diagonal := row[0]
+		row[0] = i + 1
+		for j := range len(b) {
+			change := diagonal
+			if a[i] != b[j] {
+				change++
+			}
+			diagonal = row[j+1]
+			row[j+1] = min(change, row[j]+1, row[j+1]+1)
+		}
+	}
+	return row[len(b)]
+}
+
+// compareDesignations orders designations by the number in them, then as text.
+func compareDesignations(a, b string) int {
+	return cmp.Or(cmp.Compare(designationNumber(a), designationNumber(b)), cmp.Compare(a, b))
+}
+
+func designationNumber(s string) int {
+	start := strings.IndexFunc(s, unicode.IsDigit)
+	if start < 0 {
+		return 0
+	}
+	end := start
+	for end < len(s) && '0' <= s[end] && s[end] <= '9' {
+		end++
+	}
+	n, _ := strconv.Atoi(s[start:end]) // digits of an embedded designation: cannot fail
+	return n
+}

@@ -1,0 +1,168 @@
+// Package helmholtz evaluates equations of state that are explicit in the Helmholtz energy: the ideal-gas part and the
+// sum of residual terms, with their derivatives.
+//
+// Temperature is in K, density in mol/m3. An equation works with tau = T_red/T and delta = rho/rho_red and gives
+// alpha = a/(R T), dimensionless. Derivatives are reduced: a field such as Dt stands for
+// delta*tau*(d2 alpha/d delta d tau), so that every field is dimensionless and the thermodynamic relations carry no
+// factors of tau or delta. The forms of the terms are those in use since Span and Wagner, J. Phys. Chem. Ref. Data 25
+// (1996) 1509, doi:10.1063/1.555991; Span, Multiparameter Equations of State (Springer, 2000), lists the relations.
+//
+// The package knows no limits of validity and solves nothing.
+package helmholtz
+
+import (
+	"fmt"
+	"math"
+)
+
+// maxTerms bounds the coefficient rows of an isotherm, so that it can live on the stack. Water has 51 separable terms.
+const maxTerms = 56
+
+// maxPower bounds the integer exponents of delta; the largest in use is 15.
+const maxPower = 24
+
+// Ideal holds the coefficients of the ideal-gas part without its ln(delta):
+// Constant + Tau*tau + LnTau*ln(tau) + TauLnTau*tau*ln(tau) + sum n*tau^t + sum n*ln(1-exp(-theta*tau)).
+type Ideal struct {
+	Constant       float64      `json:"constant"`
+	Tau            float64      `json:"tau"`
+	LnTau          float64      `json:"ln_tau"`
+	TauLnTau       float64      `json:"tau_ln_tau"`
+	TauPowers      [][2]float64 `json:"tau_powers"`      // n, t
+	PlanckEinstein [][2]float64 `json:"planck_einstein"` // n, theta
+}
+
+// Residual holds the coefficients of the residual part, one row a term, in the order the sources print them.
+type Residual struct {
+	Polynomial        [][]float64 `json:"polynomial"`         // n, t, d
+	Exponential       [][]float64 `json:"exponential"`        // n, t, d, l and optionally g: exp(-g delta^l)
+	DoubleExponential [][]float64 `json:"double_exponential"` // n, t, d, l, m: exp(-delta^l - tau^m)
+	Gaussian          [][]float64 `json:"gaussian"`           // n, t, d, eta, beta, gamma, epsilon
+	Associating       [][]float64 `json:"associating"`        // n, t, d, eta, beta, gamma, epsilon, b
+	NonAnalytic       [][]float64 `json:"nonanalytic"`        // n, a, b, beta, A, B, C, D
+}
+
+// Coefficients is everything that defines an equation.
+type Coefficients struct {
+	GasConstant         float64 // J/(mol K)
+	ReducingTemperature float64 // K
+	ReducingDensity     float64 // mol/m3
+	Ideal               Ideal
+	Residual            Residual
+}
+
+// Alpha holds a Helmholtz energy and its reduced derivatives to second order.
+type Alpha struct {
+	A  float64 // alpha
+	D  float64 // delta * d alpha/d delta
+	T  float64 // tau * d alpha/d tau
+	DD float64 // delta^2 * d2 alpha/d delta2
+	DT float64 // delta * tau * d2 alpha/(d delta d tau)
+	TT float64 // tau^2 * d2 alpha/d tau2
+}
+
+// Equation is an equation of state prepared for evaluation. It is immutable and safe for concurrent use.
+type Equation struct {
+	R      float64 // gas constant, J/(mol K)
+	TRed   float64 // K
+	RhoRed float64 // mol/m3
+
+	ideal    Ideal
+	powers   []float64 // distinct exponents of tau
+	terms    []term    // separable terms
+	shapes   []shape   // distinct factors in delta, grouped by exponential
+	groups   []group   // consecutive shapes that share exp(-g delta^l)
+	bells    []bell    // consecutive shapes after the groups, one Gaussian factor in delta each
+	peaks    []peak    // non-analytic terms
+	maxDelta int       // largest integer exponent of delta in the groups
+}
+
+// term is one separable term n tau^t f(tau) times the factor in delta of its shape.
+type term struct {
+	power, shape int
+	n, t         float64
+	kind         tauFactor
+	beta, gamma  float64 // Gaussian and associating; beta is m for tauExp
+	b            float64 // associating
+}
+
+type tauFactor uint8
+
+const (
+	tauPlain  tauFactor = iota
+	tauExp              // exp(-tau^m)
+	tauBell             // exp(-beta (tau-gamma)^2)
+	tauInvert           // exp(1/(beta (tau-gamma)^2 + b))
+)
+
+// shape is a factor in delta: delta^d times the exponential of its group or bell.
+type shape struct {
+	d  int
+	df float64
+}
+
+// group is the run of shapes [from, to) that share exp(-g delta^l); l = 0 has no exponential.
+type group struct {
+	from, to int
+	l        int
+	g, lf    float64
+}
+
+// bell is shape number at with the factor exp(-eta (delta-epsilon)^2).
+type bell struct {
+	at           int
+	eta, epsilon float64
+}
+
+// peak is a non-analytic term of Span and Wagner (1996), eq 6.1.
+type peak struct{ n, a, b, beta, A, B, C, D float64 }
+
+// New prepares an equation. It returns an error that names the row when a row has the wrong length, a value that is not
+// finite, or an exponent of delta that is not a whole number from 0 to 24.
+func New(c Coefficients) (*Equation, error) {
+	for _, v := range []float64{c.GasConstant, c.ReducingTemperature, c.ReducingDensity} {
+		if !(v > 0) || math.IsInf(v, 0) {
+			return nil, fmt.Errorf("helmholtz: gas constant and reducing point must be positive and finite, have %g", v)
+		}
+	}
+	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, ideal: c.Ideal}
+	b := builder{eq: e, powerAt: map[float64]int{}, shapeAt: map[shapeKey]int{}}
+	r := c.Residual
+	for _, form := range []struct {
+		name     string
+		rows     [][]float64
+		min, max int
+		add      func(row []float64) error
+	}{
+		{"polynomial", r.Polynomial, 3, 3, func(x []float64) error { return b.exponential(x, 0, 1, tauPlain, 0) }},
+		{"exponential", r.Exponential, 4, 5, func(x []float64) error {
+			g := 1.0
+			if len(x) == 5 {
+				g = x[4]
+			}
+			return b.exponential(x, x[3], g, tauPlain, 0)
+		}},
+		{"double_exponential", r.DoubleExponential, 5, 5, func(x []float64) error { return b.exponential(x, x[3], 1, tauExp, x[4]) }},
+		{"gaussian", r.Gaussian, 7, 7, func(x []float64) error { return b.gaussian(x, tauBell, 0) }},
+		{"associating", r.Associating, 8, 8, func(x []float64) error { return b.gaussian(x, tauInvert, x[7]) }},
+		{"nonanalytic", r.NonAnalytic, 8, 8, func(x []float64) error {
+			e.peaks = append(e.peaks, peak{x[0], x[1], x[2], x[3], x[4], x[5], x[6], x[7]})
+			return nil
+		}},
+	} {
+		for i, row := range form.rows {
+			if len(row) < form.min || len(row) > form.max {
+				return nil, fmt.Errorf("helmholtz: %s row %d has %d numbers, want %d to %d", form.name, i, len(row), form.min, form.max)
+			}
+			for _, v := range row {
+				if math.IsNaN(v) || math.IsInf(v, 0) {
+					return nil, fmt.Errorf("helmholtz: %s row %d is not finite", form.name, i)
+				}
+			}
+			if err := form.add(row); err != nil {
+				return nil, fmt.Errorf("helmholtz: %s row %d: %w", form.name, i, err)
+			}
+		}
+	}
+	return e, b.finish()
+}

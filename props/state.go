@@ -1,0 +1,101 @@
+package props
+
+import "math"
+
+// Property names an intensive property that can fix a state.
+type Property uint8
+
+// The properties that can fix a state.
+const (
+	Temperature    Property = iota + 1 // K
+	Pressure                           // Pa
+	Density                            // kg/m3
+	Enthalpy                           // J/kg
+	Entropy                            // J/(kg K)
+	InternalEnergy                     // J/kg
+	Quality                            // mass fraction of vapour, 0 to 1
+)
+
+var propertyNames = [...]string{"", "temperature", "pressure", "density", "enthalpy", "entropy", "internal energy", "quality"}
+
+var propertyUnits = [...]string{"", "K", "Pa", "kg/m3", "J/kg", "J/(kg K)", "J/kg", "kg/kg"}
+
+func (p Property) String() string { return propertyNames[p] }
+
+// Unit returns the SI unit of p.
+func (p Property) Unit() string { return propertyUnits[p] }
+
+// Given is a property with its value in SI units.
+type Given struct {
+	Property Property
+	Value    float64
+}
+
+// Phase names the kind of a state.
+type Phase uint8
+
+// The phases. A state above the critical temperature is supercritical when its pressure is above the critical pressure
+// too, and vapour otherwise; below the critical temperature a state denser than saturated liquid is liquid at any
+// pressure. Saturated liquid and vapour themselves are liquid with quality 0 and vapour with quality 1.
+const (
+	AnyPhase Phase = iota
+	Liquid
+	Vapour
+	TwoPhase
+	Supercritical
+)
+
+var phaseNames = [...]string{"", "liquid", "vapour", "two_phase", "supercritical"}
+
+func (p Phase) String() string { return phaseNames[p] }
+
+// ParsePhase returns the phase with that name and reports whether there is one.
+func ParsePhase(name string) (Phase, bool) {
+	for i, n := range phaseNames {
+		if n == name && i > 0 {
+			return Phase(i), true
+		}
+	}
+	return AnyPhase, false
+}
+
+// State is a thermodynamic state. A property that does not exist in the state's phase is NaN.
+type State struct {
+	Phase   Phase
+	T       float64 // temperature, K
+	P       float64 // pressure, Pa
+	Rho     float64 // density, kg/m3
+	H       float64 // enthalpy, J/kg
+	S       float64 // entropy, J/(kg K)
+	U       float64 // internal energy, J/kg
+	Quality float64 // mass fraction of vapour; NaN outside the dome
+
+	Cp     float64 // isobaric heat capacity, J/(kg K); NaN inside the dome
+	Cv     float64 // isochoric heat capacity, J/(kg K); NaN inside the dome
+	W      float64 // speed of sound, m/s; NaN inside the dome
+	DPDRho float64 // (dp/d rho) at constant T, Pa m3/kg; NaN inside the dome
+	DPDT   float64 // (dp/dT) at constant density, Pa/K; inside the dome the slope of the saturation pressure
+	Z      float64 // compressibility factor p/(rho R T)
+}
+
+// V returns the specific volume in m3/kg.
+func (s State) V() float64 { return 1 / s.Rho }
+
+// IsentropicExponent returns -(v/p)(dp/dv) at constant entropy.
+func (s State) IsentropicExponent() float64 { return s.Rho * s.W * s.W / s.P }
+
+// JouleThomson returns (dT/dp) at constant enthalpy in K/Pa.
+func (s State) JouleThomson() float64 {
+	return (s.T*s.DPDT/(s.Rho*s.DPDRho) - 1) / (s.Rho * s.Cp)
+}
+
+// IsothermalCompressibility returns (1/rho)(d rho/dp) at constant temperature in 1/Pa.
+func (s State) IsothermalCompressibility() float64 { return 1 / (s.Rho * s.DPDRho) }
+
+// Expansivity returns the volume expansivity -(1/rho)(d rho/dT) at constant pressure in 1/K.
+func (s State) Expansivity() float64 {
+	if s.Phase == TwoPhase {
+		return math.NaN()
+	}
+	return s.DPDT / (s.Rho * s.DPDRho)
+}
