@@ -1,0 +1,22 @@
+# The builder's base is an argument, so that a machine without a registry can name an image of its own that holds Go.
+ARG GO_IMAGE=golang:1.26.8
+FROM ${GO_IMAGE} AS build
+WORKDIR /src
+COPY go.mod go.sum ./
+RUN go mod download
+COPY . .
+ARG VERSION=devel
+# Static, stripped and without build paths: the same sources and Go release give the same bytes.
+RUN CGO_ENABLED=0 GOFLAGS=-buildvcs=false go build -tags nomsgpack -trimpath \
+    -ldflags "-s -w -buildid= -X main.version=${VERSION}" -o /dewmark ./cmd/dewmark
+
+FROM scratch
+COPY --from=build /dewmark /dewmark
+COPY LICENSE /LICENSE
+# Any id without an account: nothing is written, so the root file system may be read-only.
+USER 65532:65532
+ENV DEWMARK_LISTEN=0.0.0.0:8080 DEWMARK_ADMIN_LISTEN=0.0.0.0:9090
+EXPOSE 8080 9090
+HEALTHCHECK --interval=10s --timeout=3s --start-period=10s CMD ["/dewmark", "probe"]
+ENTRYPOINT ["/dewmark"]
+CMD ["serve"]
