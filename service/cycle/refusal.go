@@ -1,0 +1,61 @@
+package cycle
+
+import "strings"
+
+// RefusalCode is a stable name for a reason to refuse a request.
+type RefusalCode string
+
+// The reasons to refuse a request.
+const (
+	Missing               RefusalCode = "missing"                // a field that the layout needs
+	Surplus               RefusalCode = "surplus"                // a field that contradicts another or does not belong to the layout
+	OutOfBounds           RefusalCode = "out_of_bounds"          // a number outside what it can be
+	NotAllowed            RefusalCode = "not_allowed"            // a choice that does not exist here
+	AboveCritical         RefusalCode = "above_critical"         // condensing or evaporating at or above the critical point
+	BelowCritical         RefusalCode = "below_critical"         // a gas cooler where a condenser belongs
+	PressuresOutOfOrder   RefusalCode = "pressures_out_of_order" // high side not above low side, or intermediate not between
+	SecondLaw             RefusalCode = "second_law"             // a component would destroy entropy
+	NoState               RefusalCode = "no_state"               // the refrigerant has no such state within its limits
+	NoSolution            RefusalCode = "no_solution"            // the layout has no answer for these conditions
+	ImpossibleMeasurement RefusalCode = "impossible_measurement" // a discharge temperature that no compressor can have
+	NoEffect              RefusalCode = "no_effect"              // a size by a heat flow that the cycle does not deliver
+)
+
+// Refusal says why one field of a request cannot be.
+type Refusal struct {
+	Code      RefusalCode
+	Field     string  // path of the field to blame, such as "condensation.temperature"; "" when it is the whole request
+	Component string  // component that cannot work so, or ""
+	Label     string  // place in the circuit whose state is at fault, or ""
+	Message   Message // what was wrong and what is allowed
+	Cause     error   // error of the property model, or nil
+}
+
+// RefusedError reports a request that cannot be. It lists every field that a first check finds at fault, or else the one
+// obstacle that stopped the calculation.
+type RefusedError struct{ Refusals []Refusal }
+
+func (e *RefusedError) Error() string {
+	texts := make([]string, len(e.Refusals))
+	for i, r := range e.Refusals {
+		texts[i] = r.Message.String()
+		if r.Field != "" {
+			texts[i] = r.Field + ": " + texts[i]
+		}
+		if r.Cause != nil {
+			texts[i] += ": " + r.Cause.Error()
+		}
+	}
+	return "cycle: " + strings.Join(texts, "; ")
+}
+
+// Unwrap returns the errors of the property model behind the refusals.
+func (e *RefusedError) Unwrap() []error {
+	var causes []error
+	for _, r := range e.Refusals {
+		if r.Cause != nil {
+			causes = append(causes, r.Cause)
+		}
+	}
+	return causes
+}
