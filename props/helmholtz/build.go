@@ -10,7 +10,7 @@ import (
 // shapeKey identifies a factor in delta; terms with equal keys share one coefficient on an isotherm.
 type shapeKey struct {
 	bell         bool
-	d            int
+	d            float64
 	l            int
 	g            float64
 	eta, epsilon float64
@@ -25,24 +25,21 @@ type builder struct {
 }
 
 func (b *builder) exponential(x []float64, l, g float64, kind tauFactor, m float64) error {
-	d, err := wholePower(x[2])
-	if err != nil {
+	if l != math.Trunc(l) || l < 0 || l > maxPower {
+		return fmt.Errorf("exponent of delta %g in an exponential is not a whole number from 0 to %d", l, maxPower)
+	}
+	if err := checkPower(x[2]); err != nil {
 		return err
 	}
-	li, err := wholePower(l)
-	if err != nil {
-		return err
-	}
-	b.add(shapeKey{d: d, l: li, g: g}, term{n: x[0], t: x[1], kind: kind, beta: m})
+	b.add(shapeKey{d: x[2], l: int(l), g: g}, term{n: x[0], t: x[1], kind: kind, beta: m})
 	return nil
 }
 
 func (b *builder) gaussian(x []float64, kind tauFactor, inv float64) error {
-	d, err := wholePower(x[2])
-	if err != nil {
+	if err := checkPower(x[2]); err != nil {
 		return err
 	}
-	b.add(shapeKey{bell: true, d: d, eta: x[3], epsilon: x[6]},
+	b.add(shapeKey{bell: true, d: x[2], eta: x[3], epsilon: x[6]},
 		term{n: x[0], t: x[1], kind: kind, beta: x[4], gamma: x[5], b: inv})
 	return nil
 }
@@ -89,7 +86,7 @@ func (b *builder) finish() error {
 	for at, i := range order {
 		k := b.keys[i]
 		rank[i] = at
-		e.shapes = append(e.shapes, shape{d: k.d, df: float64(k.d)})
+		e.shapes = append(e.shapes, shape{d: k.d, at: b.powerIndex(k.d)})
 		if k.bell {
 			e.bells = append(e.bells, bell{at: at, eta: k.eta, epsilon: k.epsilon})
 		} else {
@@ -101,7 +98,9 @@ func (b *builder) finish() error {
 			e.groups[last].to = at + 1
 			e.maxDelta = max(e.maxDelta, k.l)
 		}
-		e.maxDelta = max(e.maxDelta, k.d)
+	}
+	if len(e.fraction) > deltaPowers-maxPower-1 {
+		return fmt.Errorf("helmholtz: %d fractional exponents of delta, at most %d are supported", len(e.fraction), deltaPowers-maxPower-1)
 	}
 	for i := range e.terms {
 		e.terms[i].shape = rank[e.terms[i].shape]
@@ -109,9 +108,23 @@ func (b *builder) finish() error {
 	return nil
 }
 
-func wholePower(v float64) (int, error) {
-	if v != math.Trunc(v) || v < 0 || v > maxPower {
-		return 0, fmt.Errorf("exponent of delta %g is not a whole number from 0 to %d", v, maxPower)
+// powerIndex returns where delta^d stands in the table of powers, making room for it.
+func (b *builder) powerIndex(d float64) int {
+	if d == math.Trunc(d) {
+		b.eq.maxDelta = max(b.eq.maxDelta, int(d))
+		return int(d)
 	}
-	return int(v), nil
+	i := slices.Index(b.eq.fraction, d)
+	if i < 0 {
+		i = len(b.eq.fraction)
+		b.eq.fraction = append(b.eq.fraction, d)
+	}
+	return maxPower + 1 + i
+}
+
+func checkPower(d float64) error {
+	if !(d >= 0 && d <= maxPower) {
+		return fmt.Errorf("exponent of delta %g is not between 0 and %d", d, maxPower)
+	}
+	return nil
 }

@@ -18,8 +18,12 @@ import (
 // maxTerms bounds the coefficient rows of an isotherm, so that it can live on the stack. Water has 51 separable terms.
 const maxTerms = 56
 
-// maxPower bounds the integer exponents of delta; the largest in use is 15.
+// maxPower bounds the whole exponents of delta; the largest in use is 15.
 const maxPower = 24
+
+// deltaPowers is the length of a table of powers of delta: whole exponents first, then the fractional ones of the
+// equation. It is a power of two, so that a masked index needs no bounds check.
+const deltaPowers = 32
 
 // Ideal holds the coefficients of the ideal-gas part without its ln(delta):
 // Constant + Tau*tau + LnTau*ln(tau) + TauLnTau*tau*ln(tau) + sum n*tau^t + sum n*ln(1-exp(-theta*tau)).
@@ -74,7 +78,8 @@ type Equation struct {
 	groups   []group   // consecutive shapes that share exp(-g delta^l)
 	bells    []bell    // consecutive shapes after the groups, one Gaussian factor in delta each
 	peaks    []peak    // non-analytic terms
-	maxDelta int       // largest integer exponent of delta in the groups
+	maxDelta int       // largest whole exponent of delta
+	fraction []float64 // fractional exponents of delta
 }
 
 // term is one separable term n tau^t f(tau) times the factor in delta of its shape.
@@ -97,8 +102,8 @@ const (
 
 // shape is a factor in delta: delta^d times the exponential of its group or bell.
 type shape struct {
-	d  int
-	df float64
+	at int // of delta^d in the table of powers
+	d  float64
 }
 
 // group is the run of shapes [from, to) that share exp(-g delta^l); l = 0 has no exponential.
@@ -118,7 +123,8 @@ type bell struct {
 type peak struct{ n, a, b, beta, A, B, C, D float64 }
 
 // New prepares an equation. It returns an error that names the row when a row has the wrong length, a value that is not
-// finite, or an exponent of delta that is not a whole number from 0 to 24.
+// finite, or an exponent of delta beyond what the tables of
+// powers hold.
 func New(c Coefficients) (*Equation, error) {
 	for _, v := range []float64{c.GasConstant, c.ReducingTemperature, c.ReducingDensity} {
 		if !(v > 0) || math.IsInf(v, 0) {

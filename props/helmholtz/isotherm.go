@@ -92,18 +92,21 @@ func (s *Isotherm) setIdeal(lnTau float64) {
 func (s *Isotherm) Residual(rho float64) Alpha {
 	e := s.eq
 	delta := rho / e.RhoRed
-	var pow [32]float64 // maxPower rounded up, so that an index masked with 31 needs no bounds check
+	var pow [deltaPowers]float64
 	pow[0] = 1
 	for i := 1; i <= e.maxDelta; i++ {
 		pow[i] = pow[i-1] * delta
+	}
+	for i, d := range e.fraction {
+		pow[(maxPower+1+i)&(deltaPowers-1)] = math.Pow(delta, d)
 	}
 	var out Alpha
 	for i := range e.groups {
 		g := &e.groups[i]
 		var a0, a1, a2, t0, t1, tt float64
 		for j := g.from; j < g.to; j++ {
-			w, d := &s.weights[j], e.shapes[j].df
-			z := pow[e.shapes[j].d&31]
+			w, d := &s.weights[j], e.shapes[j].d
+			z := pow[e.shapes[j].at&(deltaPowers-1)]
 			c, ct := w.c*z, w.ct*z
 			dc := d * c
 			a0 += c
@@ -136,8 +139,8 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 		b := &e.bells[i]
 		w, sh := &s.weights[b.at], e.shapes[b.at]
 		x := delta - b.epsilon
-		f := pow[sh.d&31] * math.Exp(-b.eta*x*x)
-		a := sh.df - 2*b.eta*delta*x
+		f := pow[sh.at&(deltaPowers-1)] * math.Exp(-b.eta*x*x)
+		a := sh.d - 2*b.eta*delta*x
 		c := f * w.c
 		out.A += c
 		out.D += c * a

@@ -60,8 +60,8 @@ func (s *Isotherm) ThirdDensity(rho float64) float64 {
 	for _, g := range e.groups {
 		var a0, a1, a2, a3 float64
 		for j := g.from; j < g.to; j++ {
-			d := e.shapes[j].df
-			c := s.weights[j].c * wholeExponent(delta, e.shapes[j].d)
+			d := e.shapes[j].d
+			c := s.weights[j].c * math.Pow(delta, d)
 			a0 += c
 			a1 += d * c
 			a2 += d * (d - 1) * c
@@ -77,8 +77,8 @@ func (s *Isotherm) ThirdDensity(rho float64) float64 {
 	}
 	for _, b := range e.bells {
 		x := delta - b.epsilon
-		c := s.weights[b.at].c * wholeExponent(delta, e.shapes[b.at].d) * math.Exp(-b.eta*x*x)
-		a := e.shapes[b.at].df - 2*b.eta*delta*x
+		c := s.weights[b.at].c * math.Pow(delta, e.shapes[b.at].d) * math.Exp(-b.eta*x*x)
+		a := e.shapes[b.at].d - 2*b.eta*delta*x
 		a1 := -2 * b.eta * delta * (2*delta - b.epsilon)
 		a2 := -2 * b.eta * delta * (4*delta - b.epsilon)
 		sum += c * (a*(a*a+3*a1) + a2 - 3*(a*a+a1) + 2*a)
