@@ -79,7 +79,7 @@ func (c *Catalogue) Warm(ctx context.Context) error {
 				if i >= len(c.fluids) {
 					return
 				}
-				c.fluids[i].curve()
+				c.fluids[i].saturation()
 				c.warmed.Add(1)
 			}
 		})
@@ -107,7 +107,10 @@ func (c *Catalogue) near(name string) []string {
 	best := map[string]int{}
 	for known, f := range c.byName {
 		d := editDistance(key, known)
-		if d > 2 && !(len(key) >= 3 && strings.HasPrefix(known, key)) {
+		if len(key) >= 3 && strings.HasPrefix(known, key) {
+			d = 0 // an unfinished name
+		}
+		if d > 2 {
 			continue
 		}
 		if have, ok := best[f.rec.ID]; !ok || d < have {

@@ -14,5 +14,5 @@
 // quality fix a state; [Refrigerant.States] takes any such pair and returns every solution.
 //
 // All values are immutable once made and safe for concurrent use. Errors are typed: [RangeError], [AmbiguousError],
-// [NoSolutionError], [ConvergenceError], [DependentPairError], [UnknownRefrigerantError], [DatumError].
+// [NoSolutionError], [ConvergenceError], [DependentPairError], [UnknownRefrigerantError], [DatumError], [ConditionError].
 package props

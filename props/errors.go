@@ -94,3 +94,16 @@ func (e *DatumError) Error() string {
 	}
 	return fmt.Sprintf("%s has no saturated liquid at the reference point of datum %s, possible: %s", e.Refrigerant, e.Datum, strings.Join(names, ", "))
 }
+
+// ConditionError reports a pair that fixes its state so weakly that rounding alone leaves a property uncertain, such as
+// the density of a thin gas whose temperature and enthalpy are given.
+type ConditionError struct {
+	Refrigerant string
+	Pair        [2]Property
+	Property    Property // the one left uncertain
+	Uncertainty float64  // relative
+}
+
+func (e *ConditionError) Error() string {
+	return fmt.Sprintf("%s: %s and %s leave the %s uncertain by a fraction of %.1e", e.Refrigerant, e.Pair[0], e.Pair[1], e.Property, e.Uncertainty)
+}

@@ -1,38 +1,16 @@
 package props
 
 import (
+	"math"
 	"sync"
 
 	"dewmark/props/data"
 	"dewmark/props/helmholtz"
+	"dewmark/props/saturation"
 )
 
-// Datum says where enthalpy and entropy of a refrigerant are zero or have an agreed value.
-type Datum uint8
-
-// The datums. Each needs a saturated liquid at its reference point; see [Refrigerant.Datums].
-const (
-	// DefaultDatum is IIR, or TriplePoint for a refrigerant that is no liquid at 0 °C.
-	DefaultDatum Datum = iota
-	IIR                // saturated liquid at 0 °C: h = 200 kJ/kg, s = 1 kJ/(kg K)
-	ASHRAE             // saturated liquid at -40 °C: h = 0, s = 0
-	NBP                // saturated liquid at 101.325 kPa: h = 0, s = 0
-	TriplePoint        // saturated liquid at the triple point: u = 0, s = 0; the datum of IAPWS-95, offered for water only
-)
-
-var datumNames = [...]string{"", "IIR", "ASHRAE", "NBP", "triple_point"}
-
-func (d Datum) String() string { return datumNames[d] }
-
-// ParseDatum returns the datum with that name and reports whether there is one.
-func ParseDatum(name string) (Datum, bool) {
-	for i, n := range datumNames {
-		if n == name && i > 0 {
-			return Datum(i), true
-		}
-	}
-	return DefaultDatum, false
-}
+// StandardAtmosphere is the pressure of the normal boiling point, Pa (ISO 2533, sea level).
+const StandardAtmosphere = 101325.0
 
 // Limits is the range in which an equation of state is valid.
 type Limits struct {
@@ -52,6 +30,8 @@ type Point struct {
 // cheap to copy and safe for concurrent use.
 type Refrigerant struct {
 	*fluid
+	curve       *saturation.Curve
+	limits      Limits
 	datum       Datum
 	h0, s0      float64 // added to the equation's own h and s
 	extrapolate bool
@@ -61,7 +41,53 @@ type Refrigerant struct {
 type fluid struct {
 	rec   data.Record
 	eq    *helmholtz.Equation
+	M     float64 // kg/mol
+	Rs    float64 // J/(kg K)
 	build sync.Once
+	made  *saturation.Curve
+}
+
+func newFluid(rec data.Record) (*fluid, error) {
+	eq, err := helmholtz.New(helmholtz.Coefficients{
+		GasConstant: rec.GasConstant, ReducingTemperature: rec.Reducing.Temperature, ReducingDensity: rec.Reducing.Density,
+		Ideal: rec.Ideal, Residual: rec.Residual,
+	})
+	if err != nil {
+		return nil, err
+	}
+	return &fluid{rec: rec, eq: eq, M: rec.MolarMass, Rs: rec.GasConstant / rec.MolarMass}, nil
+}
+
+// saturation returns the saturation curve, which is made on first use. The coefficient files are embedded and a test
+// makes every curve, so that failure can only mean a damaged file.
+func (f *fluid) saturation() *saturation.Curve {
+	f.build.Do(func() {
+		curve, err := saturation.New(f.eq, saturation.Options{
+			TMin:        f.rec.Validity.TemperatureMin,
+			TCritical:   f.rec.Critical.Temperature,
+			RhoCritical: f.rec.Critical.Density,
+			Acentric:    f.rec.Acentric,
+		})
+		if err != nil {
+			panic("props: " + f.rec.ID + ": " + err.Error())
+		}
+		f.made = curve
+	})
+	return f.made
+}
+
+// view returns the refrigerant with enthalpies and entropies as the equation itself counts them.
+func (f *fluid) view() *Refrigerant {
+	c := f.saturation()
+	v := f.rec.Validity
+	_, liquid, _ := c.At(c.TMin)
+	return &Refrigerant{fluid: f, curve: c, limits: Limits{
+		TemperatureMin: v.TemperatureMin,
+		// The saturation curve itself belongs to the range even where the stated one ends just below the critical point.
+		TemperatureMax: math.Max(v.TemperatureMax, c.TCritical),
+		PressureMax:    v.PressureMax,
+		DensityMax:     math.Max(v.DensityMax, liquid*(1+1e-9)) * f.M,
+	}}
 }
 
 // Designation returns the ISO 817 designation.
@@ -71,13 +97,14 @@ func (f *fluid) Designation() string { return f.rec.ID }
 func (f *fluid) Record() *data.Record { return &f.rec }
 
 // MolarMass returns the molar mass in kg/mol.
-func (f *fluid) MolarMass() float64 { return f.rec.MolarMass }
+func (f *fluid) MolarMass() float64 { return f.M }
 
 // Datum returns the datum that is in force, never DefaultDatum.
 func (r *Refrigerant) Datum() Datum { return r.datum }
 
-// Extrapolate returns a view that also answers above the temperature, pressure and density limits of the equation, as
-// far as 1.5 times the highest temperature and 2 times the highest pressure. The answers are extrapolations.
+// Extrapolate returns a view that also answers above the temperature, pressure and density limits of the equation: to
+// 1.5 times the highest temperature, 2 times the highest pressure and 1.15 times the highest density. The answers are
+// extrapolations; [Refrigerant.Extrapolated] tells which.
 func (r *Refrigerant) Extrapolate() *Refrigerant {
 	view := *r
 	view.extrapolate = true
@@ -85,71 +112,81 @@ func (r *Refrigerant) Extrapolate() *Refrigerant {
 }
 
 // Limits returns the range of validity of the equation.
-func (r *Refrigerant) Limits() Limits { panic("stub") }
+func (r *Refrigerant) Limits() Limits { return r.limits }
+
+// reach returns the range in which the view answers.
+func (r *Refrigerant) reach() Limits {
+	l := r.limits
+	if r.extrapolate {
+		l.TemperatureMax *= 1.5
+		l.PressureMax *= 2
+		l.DensityMax *= 1.15
+	}
+	return l
+}
 
 // Critical returns the critical point of the equation itself, which differs slightly from the one its authors state.
-func (r *Refrigerant) Critical() Point { panic("stub") }
+func (r *Refrigerant) Critical() Point {
+	return Point{T: r.curve.TCritical, P: r.curve.PCritical, Rho: r.curve.RhoCritical * r.M}
+}
+
+// SaturationLimits returns the lowest temperature in K and pressure in Pa of the saturation curve, which are those of
+// the triple point where the equation reaches it.
+func (r *Refrigerant) SaturationLimits() (T, p float64) { return r.curve.TMin, r.curve.PMin }
+
+// SaturationBounds returns the largest relative errors of the saturation curve that were measured when it was made.
+func (r *Refrigerant) SaturationBounds() saturation.Bounds { return r.curve.Bounds() }
 
 // NormalBoilingPoint returns the boiling temperature at 101.325 kPa in K, or NaN when the refrigerant sublimes there.
-func (r *Refrigerant) NormalBoilingPoint() float64 { panic("stub") }
-
-// Extrapolated reports whether s lies outside the validity of the equation.
-func (r *Refrigerant) Extrapolated(s State) bool { panic("stub") }
+func (r *Refrigerant) NormalBoilingPoint() float64 {
+	T, err := r.SaturationTemperature(StandardAtmosphere)
+	if err != nil {
+		return math.NaN()
+	}
+	return T
+}
 
 // SaturationPressure returns the vapour pressure in Pa at temperature T in K. It returns a [*RangeError] unless T lies
 // between the lowest temperature of the equation and its critical temperature. The same holds for [Refrigerant.BubblePoint]
 // and [Refrigerant.DewPoint].
-func (r *Refrigerant) SaturationPressure(T float64) (float64, error) { panic("stub") }
+func (r *Refrigerant) SaturationPressure(T float64) (float64, error) {
+	if err := r.checkSaturationTemperature(T); err != nil {
+		return 0, err
+	}
+	return r.curve.Pressure(T), nil
+}
 
 // SaturationTemperature returns the boiling temperature in K at pressure p in Pa. It returns a [*RangeError] unless p lies
 // between the vapour pressure at the lowest temperature of the equation and the critical pressure.
-func (r *Refrigerant) SaturationTemperature(p float64) (float64, error) { panic("stub") }
+func (r *Refrigerant) SaturationTemperature(p float64) (float64, error) {
+	if err := r.checkSaturationPressure(p); err != nil {
+		return 0, err
+	}
+	return r.curve.Temperature(p), nil
+}
 
 // BubblePoint returns saturated liquid at temperature T in K: phase Liquid, quality 0.
-func (r *Refrigerant) BubblePoint(T float64) (State, error) { panic("stub") }
+func (r *Refrigerant) BubblePoint(T float64) (State, error) { return r.TemperatureQuality(T, 0) }
 
 // DewPoint returns saturated vapour at temperature T in K: phase Vapour, quality 1.
-func (r *Refrigerant) DewPoint(T float64) (State, error) { panic("stub") }
+func (r *Refrigerant) DewPoint(T float64) (State, error) { return r.TemperatureQuality(T, 1) }
 
 // BubblePointAtPressure returns saturated liquid at pressure p in Pa.
-func (r *Refrigerant) BubblePointAtPressure(p float64) (State, error) { panic("stub") }
+func (r *Refrigerant) BubblePointAtPressure(p float64) (State, error) { return r.PressureQuality(p, 0) }
 
 // DewPointAtPressure returns saturated vapour at pressure p in Pa.
-func (r *Refrigerant) DewPointAtPressure(p float64) (State, error) { panic("stub") }
+func (r *Refrigerant) DewPointAtPressure(p float64) (State, error) { return r.PressureQuality(p, 1) }
 
-// TemperatureDensity returns the state at T in K and rho in kg/m3.
-func (r *Refrigerant) TemperatureDensity(T, rho float64) (State, error) { panic("stub") }
+func (r *Refrigerant) checkSaturationTemperature(T float64) error {
+	if !(r.curve.TMin <= T && T <= r.curve.TCritical) {
+		return &RangeError{Refrigerant: r.rec.ID, Property: Temperature, Value: T, Min: r.curve.TMin, Max: r.curve.TCritical, Limit: LimitSaturation}
+	}
+	return nil
+}
 
-// TemperaturePressure returns the state at T in K and p in Pa. On the saturation line itself, where p equals the
-// vapour pressure to 1e-10, it returns an [*AmbiguousError] with saturated liquid and vapour.
-func (r *Refrigerant) TemperaturePressure(T, p float64) (State, error) { panic("stub") }
-
-// TemperatureQuality returns the state inside the dome at T in K and quality x from 0 to 1.
-func (r *Refrigerant) TemperatureQuality(T, x float64) (State, error) { panic("stub") }
-
-// PressureQuality returns the state inside the dome at p in Pa and quality x from 0 to 1.
-func (r *Refrigerant) PressureQuality(p, x float64) (State, error) { panic("stub") }
-
-// PressureEnthalpy returns the state at p in Pa and h in J/kg. The pair has one solution at most.
-func (r *Refrigerant) PressureEnthalpy(p, h float64) (State, error) { panic("stub") }
-
-// PressureEntropy returns the state at p in Pa and s in J/(kg K). The pair has one solution at most.
-func (r *Refrigerant) PressureEntropy(p, s float64) (State, error) { panic("stub") }
-
-// EnthalpyEntropy returns the state at h in J/kg and s in J/(kg K). The pair has one solution at most.
-func (r *Refrigerant) EnthalpyEntropy(h, s float64) (State, error) { panic("stub") }
-
-// States returns every state within the limits that has both given properties, in order of rising temperature and then
-// falling density. It returns an error when there is none.
-func (r *Refrigerant) States(a, b Given) ([]State, error) { panic("stub") }
-
-// State returns the one state that has both given properties and, unless phase is AnyPhase, that phase. It returns an
-// [*AmbiguousError] when more than one state remains and a [*NoSolutionError] when none does.
-func (r *Refrigerant) State(a, b Given, phase Phase) (State, error) { panic("stub") }
-
-func newFluid(rec data.Record) (*fluid, error)           { panic("stub") }
-func (f *fluid) curve()                                  {}
-func (f *fluid) withDatum(d Datum) (*Refrigerant, error) { panic("stub") }
-
-// Datums returns the datums that the refrigerant can have.
-func (f *fluid) Datums() []Datum { panic("stub") }
+func (r *Refrigerant) checkSaturationPressure(p float64) error {
+	if !(r.curve.PMin <= p && p <= r.curve.PCritical) {
+		return &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: p, Min: r.curve.PMin, Max: r.curve.PCritical, Limit: LimitSaturation}
+	}
+	return nil
+}

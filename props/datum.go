@@ -1,0 +1,85 @@
+package props
+
+import "slices"
+
+// Datum says where enthalpy and entropy of a refrigerant are zero or have an agreed value.
+type Datum uint8
+
+// The datums. Each needs a saturated liquid at its reference point; see [Refrigerant.Datums].
+const (
+	// DefaultDatum is IIR, or TriplePoint for a refrigerant that is no liquid at 0 °C.
+	DefaultDatum Datum = iota
+	IIR                // saturated liquid at 0 °C: h = 200 kJ/kg, s = 1 kJ/(kg K)
+	ASHRAE             // saturated liquid at -40 °C: h = 0, s = 0
+	NBP                // saturated liquid at 101.325 kPa: h = 0, s = 0
+	TriplePoint        // saturated liquid at the triple point: u = 0, s = 0; the datum of IAPWS-95
+)
+
+var datumNames = [...]string{"", "IIR", "ASHRAE", "NBP", "triple_point"}
+
+func (d Datum) String() string { return datumNames[d] }
+
+// ParseDatum returns the datum with that name and reports whether there is one.
+func ParseDatum(name string) (Datum, bool) {
+	i := slices.Index(datumNames[:], name)
+	return Datum(max(i, 0)), i > 0
+}
+
+// withDatum returns the view of f that counts from d.
+func (f *fluid) withDatum(d Datum) (*Refrigerant, error) {
+	r := f.view()
+	if d == DefaultDatum {
+		d = IIR
+		if _, ok := r.reference(IIR); !ok {
+			d = TriplePoint
+		}
+	}
+	ref, ok := r.reference(d)
+	if !ok {
+		return nil, &DatumError{Refrigerant: f.rec.ID, Datum: d, Allowed: r.Datums()}
+	}
+	r.datum = d
+	switch d {
+	case IIR:
+		r.h0, r.s0 = 200e3-ref.H, 1e3-ref.S
+	case TriplePoint:
+		r.h0, r.s0 = -ref.U, -ref.S
+	default:
+		r.h0, r.s0 = -ref.H, -ref.S
+	}
+	return r, nil
+}
+
+// reference returns the saturated liquid that d counts from, as r counts, and reports whether it exists.
+func (r *Refrigerant) reference(d Datum) (State, bool) {
+	var s State
+	var err error
+	switch d {
+	case IIR:
+		s, err = r.BubblePoint(273.15)
+	case ASHRAE:
+		s, err = r.BubblePoint(233.15)
+	case NBP:
+		s, err = r.BubblePointAtPressure(StandardAtmosphere)
+	case TriplePoint:
+		t := r.rec.TripleTemperature
+		if t == nil || *t != r.curve.TMin {
+			return State{}, false // the equation does not reach the triple point
+		}
+		s, err = r.BubblePoint(*t)
+	default:
+		return State{}, false
+	}
+	return s, err == nil
+}
+
+// Datums returns the datums that the refrigerant can have.
+func (r *Refrigerant) Datums() []Datum {
+	var out []Datum
+	for _, d := range []Datum{IIR, ASHRAE, NBP, TriplePoint} {
+		if _, ok := r.reference(d); ok {
+			out = append(out, d)
+		}
+	}
+	return out
+}

@@ -1,0 +1,55 @@
+package props
+
+import "math"
+
+// qualityLine calls found with every state of quality x whose property y, density included, is v. Along a line of
+// constant quality none of them need be monotonic: the enthalpy of saturated vapour, for one, has a maximum.
+func (r *Refrigerant) qualityLine(x float64, y Property, v float64, found func(State)) error {
+	if err := r.checkQuality(x); err != nil {
+		return err
+	}
+	if math.IsNaN(v) || math.IsInf(v, 0) {
+		return r.notFinite(y, v)
+	}
+	lowest, highest := math.Inf(1), math.Inf(-1)
+	value := func(T float64) float64 {
+		d := r.domeAt(T)
+		return d.value(y, x)
+	}
+	scale := func(v float64) float64 { return v }
+	if y == Density {
+		scale = math.Log // densities of vapour span ten decades
+		if !(v > 0) {
+			return &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: v, Min: 0, Max: r.reach().DensityMax, Limit: LimitPhysical}
+		}
+	}
+	n := 0
+	allRoots(r.curveTemperatures(), func(T float64) float64 {
+		have := value(T)
+		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
+		return scale(have) - scale(v)
+	}, func(T float64) {
+		n++
+		d := r.domeAt(T)
+		found(r.domeState(&d, x))
+	})
+	if n == 0 {
+		return &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: lowest, Max: highest, Limit: LimitAttainable}
+	}
+	return nil
+}
+
+// curveTemperatures returns a rising grid over the saturation curve, even in sqrt(1-T/Tc) and so denser towards the
+// critical point, where the properties of both phases change fastest.
+func (r *Refrigerant) curveTemperatures() []float64 {
+	const n = 64
+	c := r.curve
+	s := math.Sqrt(1 - c.TMin/c.TCritical)
+	grid := make([]float64, n+1)
+	for i := range grid {
+		x := s * float64(n-i) / n
+		grid[i] = math.Min(c.TCritical, math.Max(c.TMin, c.TCritical*(1-x*x)))
+	}
+	grid[0] = c.TMin
+	return grid
+}

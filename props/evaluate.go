@@ -1,0 +1,153 @@
+package props
+
+import (
+	"math"
+
+	"dewmark/props/helmholtz"
+)
+
+// fluidState is the result of one evaluation of the equation at temperature and density, before anything is decided
+// about phases: pressure, the caloric properties and the derivatives that solvers need.
+type fluidState struct {
+	T, rho, p, h, s, u, cv float64
+	pRho, pT               float64 // (dp/d rho) at constant T, (dp/dT) at constant rho
+}
+
+// evaluate returns the state of a single phase at density rho in kg/m3 on an isotherm.
+func (r *Refrigerant) evaluate(iso *helmholtz.Isotherm, rho float64) fluidState {
+	res := iso.Residual(rho / r.M)
+	id := &iso.Ideal
+	RT := r.Rs * iso.T
+	e := id.T + res.T
+	f := fluidState{
+		T: iso.T, rho: rho,
+		p:    rho * RT * (1 + res.D),
+		s:    r.Rs*(e-id.A-res.A-math.Log(rho/(r.M*r.eq.RhoRed))) + r.s0,
+		u:    RT*e + r.h0,
+		cv:   -r.Rs * (id.TT + res.TT),
+		pRho: RT * (1 + 2*res.D + res.DD),
+		pT:   rho * r.Rs * (1 + res.D - res.DT),
+	}
+	f.h = f.u + RT*(1+res.D)
+	return f
+}
+
+// value returns the caloric property y of f and its derivatives: in temperature at constant density and in density at
+// constant temperature.
+func (f *fluidState) value(y Property) (v, dT, dRho float64) {
+	q := f.pT / f.rho
+	switch y {
+	case Enthalpy:
+		return f.h, f.cv + q, (f.pRho - f.T*q) / f.rho
+	case Entropy:
+		return f.s, f.cv / f.T, -q / f.rho
+	default: // internal energy
+		return f.u, f.cv, (f.p/f.rho - f.T*q) / f.rho
+	}
+}
+
+// state completes a single-phase state. Pressure p is the one that is known exactly, from which the equation's own
+// differs by rounding that matters in a cold liquid.
+func (r *Refrigerant) state(f fluidState, p float64) State {
+	q := f.T * f.pT / f.rho
+	s := State{
+		Phase: r.phase(f.T, p, f.rho),
+		T:     f.T, P: p, Rho: f.rho, S: f.s, U: f.u,
+		H:       f.u + p/f.rho,
+		Quality: math.NaN(),
+		Cv:      f.cv,
+		Cp:      f.cv + q*f.pT/(f.rho*f.pRho),
+		W:       math.Sqrt(f.pRho + q*f.pT/(f.rho*f.cv)),
+		DPDRho:  f.pRho,
+		DPDT:    f.pT,
+		Z:       p / (f.rho * r.Rs * f.T),
+	}
+	return s
+}
+
+func (r *Refrigerant) phase(T, p, rho float64) Phase {
+	c := r.curve
+	switch {
+	case T <= c.TCritical && rho > c.RhoCritical*r.M:
+		return Liquid
+	case T > c.TCritical && p > c.PCritical:
+		return Supercritical
+	default:
+		return Vapour
+	}
+}
+
+// dome is the pair of saturated phases at one temperature.
+type dome struct {
+	T, p           float64
+	liquid, vapour fluidState
+}
+
+// domeAt returns the saturated phases at temperature T, which must lie on the curve.
+func (r *Refrigerant) domeAt(T float64) dome {
+	p, liquid, vapour := r.curve.At(T)
+	return r.domeOf(T, p, liquid*r.M, vapour*r.M)
+}
+
+// domeAtPressure returns the saturated phases at pressure p, which must lie on the curve.
+func (r *Refrigerant) domeAtPressure(p float64) dome {
+	T := r.curve.Temperature(p)
+	_, liquid, vapour := r.curve.At(T)
+	return r.domeOf(T, p, liquid*r.M, vapour*r.M)
+}
+
+func (r *Refrigerant) domeOf(T, p, liquid, vapour float64) dome {
+	var iso helmholtz.Isotherm
+	iso.Set(r.eq, T)
+	d := dome{T: T, p: p, liquid: r.evaluate(&iso, liquid), vapour: r.evaluate(&iso, vapour)}
+	// The equation's pressure of a cold liquid is rounding noise; the curve's is not.
+	d.liquid.h = d.liquid.u + p/liquid
+	d.vapour.h = d.vapour.u + p/vapour
+	return d
+}
+
+// quality returns the vapour fraction at which the dome has property y, density included.
+func (d *dome) quality(y Property, v float64) float64 {
+	if y == Density {
+		return (1/v - 1/d.liquid.rho) / (1/d.vapour.rho - 1/d.liquid.rho)
+	}
+	a, _, _ := d.liquid.value(y)
+	b, _, _ := d.vapour.value(y)
+	return (v - a) / (b - a)
+}
+
+// value returns property y at quality x, density included.
+func (d *dome) value(y Property, x float64) float64 {
+	if y == Density {
+		return 1 / (1/d.liquid.rho + x*(1/d.vapour.rho-1/d.liquid.rho))
+	}
+	a, _, _ := d.liquid.value(y)
+	b, _, _ := d.vapour.value(y)
+	return a + x*(b-a)
+}
+
+// at returns the state at quality x. The ends are the saturated phases themselves, with all their properties.
+func (r *Refrigerant) domeState(d *dome, x float64) State {
+	switch x {
+	case 0:
+		s := r.state(d.liquid, d.p)
+		s.Phase, s.Quality = Liquid, 0
+		return s
+	case 1:
+		s := r.state(d.vapour, d.p)
+		s.Phase, s.Quality = Vapour, 1
+		return s
+	}
+	nan := math.NaN()
+	l, v := &d.liquid, &d.vapour
+	rho := d.value(Density, x)
+	s := State{
+		Phase: TwoPhase, Quality: x, T: d.T, P: d.p, Rho: rho,
+		H: d.value(Enthalpy, x), S: d.value(Entropy, x),
+		Cp: nan, Cv: nan, W: nan, DPDRho: nan,
+		DPDT: (v.s - l.s) / (1/v.rho - 1/l.rho), // Clapeyron
+		Z:    d.p / (rho * r.Rs * d.T),
+	}
+	s.U = s.H - s.P/s.Rho
+	return s
+}

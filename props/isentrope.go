@@ -1,0 +1,213 @@
+package props
+
+import (
+	"errors"
+	"math"
+)
+
+// EnthalpyEntropy returns the state at h in J/kg and s in J/(kg K). The pair has one solution at most.
+func (r *Refrigerant) EnthalpyEntropy(h, s float64) (State, error) {
+	return r.isentrope(s, Enthalpy, h)
+}
+
+// EntropyInternalEnergy returns the state at s in J/(kg K) and u in J/kg. The pair has one solution at most.
+func (r *Refrigerant) EntropyInternalEnergy(s, u float64) (State, error) {
+	return r.isentrope(s, InternalEnergy, u)
+}
+
+// lowestPressure is where solvers that walk along pressure begin, Pa: far below what any vacuum pump reaches.
+const lowestPressure = 1e-3
+
+// isentrope returns the state of entropy s with property y, enthalpy or internal energy, equal to v. Both rise with
+// pressure along an isentrope: (dh/dp) = 1/rho, (du/dp) = p/(rho^2 w^2).
+func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error) {
+	if math.IsNaN(s) || math.IsInf(s, 0) {
+		return State{}, r.notFinite(Entropy, s)
+	}
+	if math.IsNaN(v) || math.IsInf(v, 0) {
+		return State{}, r.notFinite(y, v)
+	}
+	var at State
+	miss := func(lnP float64) (float64, error) {
+		var err error
+		if at, err = r.PressureEntropy(math.Exp(lnP), s); err != nil {
+			return 0, err
+		}
+		return pick(&at, y) - v, nil
+	}
+	lo, hi, err := r.isentropeEnds(s)
+	if err != nil {
+		return State{}, err
+	}
+	a, err := miss(lo)
+	if err != nil {
+		return State{}, err
+	}
+	low := at
+	b, err := miss(hi)
+	if err != nil {
+		return State{}, err
+	}
+	if !(a <= 0 && b >= 0) {
+		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: pick(&low, y), Max: pick(&at, y), Limit: LimitAttainable}
+	}
+	lnP, err := bracketed(lo, a, hi, b, miss)
+	if err != nil {
+		return State{}, err
+	}
+	if _, err = miss(lnP); err != nil {
+		return State{}, err
+	}
+	// Where enthalpy and entropy of a liquid hardly depend on pressure, the pressure found is uncertain, but not what
+	// else the state holds.
+	return at, nil
+}
+
+func pick(s *State, y Property) float64 {
+	switch y {
+	case Temperature:
+		return s.T
+	case Pressure:
+		return s.P
+	case Density:
+		return s.Rho
+	case Enthalpy:
+		return s.H
+	case Entropy:
+		return s.S
+	case InternalEnergy:
+		return s.U
+	default:
+		return s.Quality
+	}
+}
+
+// isentropeEnds returns the logarithms of the lowest and highest pressure at which a state of entropy s exists. An
+// isentrope is warmer at higher pressure: it enters the range of the equation at its lowest temperature or at the
+// lowest pressure, and leaves it at the highest temperature or pressure.
+func (r *Refrigerant) isentropeEnds(s float64) (lo, hi float64, err error) {
+	return r.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
+		_, err := r.PressureEntropy(math.Exp(lnP), s)
+		return side(err, Entropy, s, r)
+	})
+}
+
+// side tells where a failed state lies: -1 where the state would be too cold or solid, +1 where too hot, 0 for a state.
+func side(err error, y Property, v float64, r *Refrigerant) (int, error) {
+	if err == nil {
+		return 0, nil
+	}
+	e, ok := errors.AsType[*RangeError](err)
+	switch {
+	case !ok:
+		return 0, err
+	case e.Property == y && v < e.Min, e.Property == Temperature && e.Value < e.Min, e.Limit == LimitDensity, e.Limit == LimitMelting:
+		return -1, nil
+	case e.Property == y && v > e.Max, e.Property == Temperature && e.Value > e.Max:
+		return 1, nil
+	}
+	return 0, err
+}
+
+// walk finds the ends, in a coordinate from lo to hi, of the one stretch where states exist, by a coarse scan and
+// bisection at both edges.
+func (r *Refrigerant) walk(lo, hi float64, where func(x float64) (int, error)) (from, to float64, err error) {
+	const n = 48
+	first, last := math.NaN(), math.NaN()
+	before, after := math.NaN(), math.NaN() // failing neighbours of the stretch
+	for i := range n + 1 {
+		x := lo + (hi-lo)*float64(i)/n
+		w, err := where(x)
+		if err != nil {
+			return 0, 0, err
+		}
+		switch {
+		case w == 0:
+			if math.IsNaN(first) {
+				first = x
+			}
+			last, after = x, math.NaN()
+		case math.IsNaN(first):
+			before = x
+		case math.IsNaN(after):
+			after = x
+		}
+	}
+	if math.IsNaN(first) {
+		return 0, 0, &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: math.NaN(), Min: lowestPressure, Max: r.reach().PressureMax, Limit: LimitAttainable}
+	}
+	edge := func(in, out float64) float64 {
+		if math.IsNaN(out) {
+			return in
+		}
+		for range 60 {
+			m := in + (out-in)/2
+			if m == in || m == out {
+				break
+			}
+			if w, err := where(m); err == nil && w == 0 {
+				in = m
+			} else {
+				out = m
+			}
+		}
+		return in
+	}
+	return edge(first, before), edge(last, after), nil
+}
+
+// enthalpyEnergy calls found with every state of enthalpy h and internal energy u. The two differ by p/rho alone, which
+// an ideal gas fixes by temperature, so that the pair is weak in a thin gas.
+func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
+	if math.IsNaN(h) || math.IsInf(h, 0) {
+		return r.notFinite(Enthalpy, h)
+	}
+	if math.IsNaN(u) || math.IsInf(u, 0) {
+		return r.notFinite(InternalEnergy, u)
+	}
+	lo, hi, err := r.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
+		_, err := r.PressureEnthalpy(math.Exp(lnP), h)
+		return side(err, Enthalpy, h, r)
+	})
+	if err != nil {
+		return err
+	}
+	const n = 160
+	grid := make([]float64, n+1)
+	for i := range grid {
+		grid[i] = lo + (hi-lo)*float64(i)/n
+	}
+	grid[n] = hi
+	lowest, highest := math.Inf(1), math.Inf(-1)
+	worst, count := 0.0, 0
+	miss := func(lnP float64) float64 {
+		s, err := r.PressureEnthalpy(math.Exp(lnP), h)
+		if err != nil {
+			return math.NaN()
+		}
+		lowest, highest = math.Min(lowest, s.U), math.Max(highest, s.U)
+		return s.U - u
+	}
+	allRoots(grid, miss, func(lnP float64) {
+		s, err := r.PressureEnthalpy(math.Exp(lnP), h)
+		if err != nil {
+			return
+		}
+		const step = 1e-4
+		slope := (miss(lnP+step) - miss(lnP-step)) / (2 * step)
+		if math.IsNaN(slope) {
+			slope = (miss(lnP) - miss(lnP-step)) / step
+		}
+		noise := 1e-15 * (math.Abs(s.H) + math.Abs(r.h0) + 10*r.Rs*s.T)
+		worst = math.Max(worst, noise/math.Abs(slope))
+		count++
+		found(s)
+	})
+	if worst > 1e-7 {
+		return &ConditionError{Refrigerant: r.rec.ID, Pair: [2]Property{Enthalpy, InternalEnergy}, Property: Pressure, Uncertainty: worst}
+	}
+	if count == 0 {
+		return &RangeError{Refrigerant: r.rec.ID, Property: InternalEnergy, Value: u, Min: lowest, Max: highest, Limit: LimitAttainable}
+	}
+	return nil
+}

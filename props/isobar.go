@@ -1,0 +1,175 @@
+package props
+
+import (
+	"math"
+
+	"dewmark/props/helmholtz"
+)
+
+// PressureEnthalpy returns the state at p in Pa and h in J/kg. The pair has one solution at most.
+func (r *Refrigerant) PressureEnthalpy(p, h float64) (State, error) { return r.isobar(p, Enthalpy, h) }
+
+// PressureEntropy returns the state at p in Pa and s in J/(kg K). The pair has one solution at most.
+func (r *Refrigerant) PressureEntropy(p, s float64) (State, error) { return r.isobar(p, Entropy, s) }
+
+// PressureInternalEnergy returns the state at p in Pa and u in J/kg. The pair has one solution at most.
+func (r *Refrigerant) PressureInternalEnergy(p, u float64) (State, error) {
+	return r.isobar(p, InternalEnergy, u)
+}
+
+// isobar returns the state at pressure p with the caloric property y equal to v. Along an isobar all three rise with
+// temperature.
+func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
+	if err := r.checkPressure(p); err != nil {
+		return State{}, err
+	}
+	if math.IsNaN(v) || math.IsInf(v, 0) {
+		return State{}, r.notFinite(y, v)
+	}
+	lo, hi := r.reach().TemperatureMin, r.reach().TemperatureMax
+	start := fluidState{T: r.curve.TCritical, rho: r.curve.RhoCritical * r.M}
+	side := AnyPhase // of a dome on which the answer lies
+	if r.curve.PMin <= p && p < r.curve.PCritical {
+		d := r.domeAtPressure(p)
+		x := d.quality(y, v)
+		switch {
+		case math.Abs(x) < saturationTie:
+			x = 0
+		case math.Abs(x-1) < saturationTie:
+			x = 1
+		}
+		switch {
+		case 0 <= x && x <= 1:
+			return r.domeState(&d, x), nil
+		case x < 0:
+			start, hi, side = d.liquid, d.T, Liquid
+		default:
+			start, lo, side = d.vapour, d.T, Vapour
+		}
+		start = along(start, y, v)
+		start.T = math.Min(math.Max(start.T, lo), hi)
+	} else if p < r.curve.PMin {
+		start = fluidState{T: lo, rho: p / (r.Rs * lo)}
+	} else if f, ok := r.compressed(p, y, v); ok {
+		start = f
+	}
+	f, ok := r.newton2(p, y, v, start.T, start.rho)
+	if !ok || !(lo*(1-1e-9) <= f.T && f.T <= hi*(1+1e-9)) || !r.onSide(f, side) {
+		var err error
+		if f, err = r.searchIsobar(p, y, v, lo, hi, side); err != nil {
+			return State{}, err
+		}
+	}
+	s := r.state(f, p)
+	if err := r.check(s); err != nil {
+		return State{}, err
+	}
+	return s, nil
+}
+
+// along estimates where on an isobar property y is v, from a state on it whose derivatives are known.
+func along(f fluidState, y Property, v float64) fluidState {
+	have, yT, yRho := f.value(y)
+	slope := yT - yRho*f.pT/f.pRho // (dy/dT) at constant pressure
+	if !(slope > 0) {
+		return f
+	}
+	dT := (v - have) / slope
+	T := f.T + dT
+	if y == Entropy {
+		T = f.T * math.Exp(dT/f.T)
+	}
+	T = math.Max(T, 0.3*f.T)
+	// Density falls with temperature, in a gas as 1/T, in a liquid by its expansivity.
+	beta := f.pT / (f.rho * f.pRho)
+	return fluidState{T: T, rho: f.rho * math.Pow(f.T/T, math.Min(math.Max(beta*f.T, 0.1), 3))}
+}
+
+// compressed estimates a state above the critical pressure from the critical isotherm: from its point at pressure p a
+// step along the isobar leads to where y is v, near enough for Newton's method when v is not far.
+func (r *Refrigerant) compressed(p float64, y Property, v float64) (fluidState, bool) {
+	T := r.curve.TCritical * math.Pow(p/r.curve.PCritical, 0.12) // near the ridge of the heat capacity
+	T = math.Min(T, r.reach().TemperatureMax)
+	var iso helmholtz.Isotherm
+	iso.Set(r.eq, T)
+	f, err := r.density(&iso, p, r.supercritical(T, p))
+	if err != nil {
+		return f, false
+	}
+	return along(f, y, v), true
+}
+
+// onSide reports whether a solution lies on the side of the dome that it was looked for.
+func (r *Refrigerant) onSide(f fluidState, side Phase) bool {
+	dense := f.rho > r.curve.RhoCritical*r.M
+	return side == AnyPhase || f.T > r.curve.TCritical || dense == (side == Liquid)
+}
+
+// searchIsobar finds the temperature between lo and hi at which property y is v by bracketing, with the density solved
+// at each step. It cannot miss, at the price of some ten density solves.
+func (r *Refrigerant) searchIsobar(p float64, y Property, v, lo, hi float64, side Phase) (fluidState, error) {
+	var f fluidState
+	miss := func(T float64) (float64, error) {
+		var err error
+		if f, err = r.singlePhase(T, p, side); err != nil {
+			return 0, err
+		}
+		have, _, _ := f.value(y)
+		return have - v, nil
+	}
+	a, err := miss(lo)
+	for step := (hi - lo) / 32; err != nil && lo+step < hi; { // the cold end may be solid
+		lo += step
+		a, err = miss(lo)
+	}
+	if err != nil {
+		return f, err
+	}
+	b, err := miss(hi)
+	if err != nil {
+		return f, err
+	}
+	if !(a <= 0 && b >= 0) {
+		return f, r.unattainable(p, y, v)
+	}
+	T, err := bracketed(lo, a, hi, b, miss)
+	if err != nil {
+		return f, err
+	}
+	_, err = miss(T)
+	return f, err
+}
+
+// unattainable returns the error for a property that no state at pressure p has, with the range that they do have.
+func (r *Refrigerant) unattainable(p float64, y Property, v float64) error {
+	e := &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: math.Inf(-1), Max: math.Inf(1), Limit: LimitAttainable}
+	if f, err := r.singlePhase(r.reach().TemperatureMin, p, AnyPhase); err == nil {
+		e.Min, _, _ = f.value(y)
+	}
+	if f, err := r.singlePhase(r.reach().TemperatureMax, p, AnyPhase); err == nil {
+		e.Max, _, _ = f.value(y)
+	}
+	return e
+}
+
+// singlePhase returns the single phase at T and p. On the saturation line itself rounding would choose a phase; side
+// says which one is meant.
+func (r *Refrigerant) singlePhase(T, p float64, side Phase) (fluidState, error) {
+	var iso helmholtz.Isotherm
+	iso.Set(r.eq, T)
+	if T >= r.curve.TCritical {
+		return r.density(&iso, p, r.supercritical(T, p))
+	}
+	ps, liquid, vapour := r.curve.At(T)
+	switch {
+	case side == Liquid && p <= ps:
+		return r.evaluate(&iso, liquid*r.M), nil
+	case side == Vapour && p >= ps:
+		return r.evaluate(&iso, vapour*r.M), nil
+	}
+	return r.density(&iso, p, r.subcritical(&iso, p, ps, liquid*r.M, vapour*r.M))
+}
+
+func (r *Refrigerant) notFinite(y Property, v float64) error {
+	return &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: math.Inf(-1), Max: math.Inf(1), Limit: LimitPhysical}
+}

@@ -1,0 +1,153 @@
+package props
+
+import (
+	"math"
+
+	"dewmark/props/helmholtz"
+)
+
+// TemperatureDensity returns the state at T in K and rho in kg/m3.
+func (r *Refrigerant) TemperatureDensity(T, rho float64) (State, error) {
+	if err := r.checkTemperature(T); err != nil {
+		return State{}, err
+	}
+	if !(rho > 0 && rho <= r.reach().DensityMax) {
+		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: r.reach().DensityMax, Limit: LimitDensity}
+	}
+	if T < r.curve.TCritical {
+		p, liquid, vapour := r.curve.At(T)
+		liquid, vapour = liquid*r.M, vapour*r.M
+		if vapour*(1-1e-12) <= rho && rho <= liquid*(1+1e-12) {
+			d := r.domeOf(T, p, liquid, vapour)
+			x := math.Min(1, math.Max(0, d.quality(Density, rho)))
+			s := r.domeState(&d, x)
+			s.Rho = rho
+			return s, nil
+		}
+	}
+	var iso helmholtz.Isotherm
+	iso.Set(r.eq, T)
+	f := r.evaluate(&iso, rho)
+	if err := r.checkPressure(f.p); err != nil {
+		return State{}, err
+	}
+	if err := r.checkFluid(T, f.p, rho); err != nil {
+		return State{}, err
+	}
+	return r.state(f, f.p), nil
+}
+
+// TemperatureQuality returns the state inside the dome at T in K and quality x from 0 to 1.
+func (r *Refrigerant) TemperatureQuality(T, x float64) (State, error) {
+	if err := r.checkSaturationTemperature(T); err != nil {
+		return State{}, err
+	}
+	if err := r.checkQuality(x); err != nil {
+		return State{}, err
+	}
+	d := r.domeAt(T)
+	return r.domeState(&d, x), nil
+}
+
+// PressureQuality returns the state inside the dome at p in Pa and quality x from 0 to 1.
+func (r *Refrigerant) PressureQuality(p, x float64) (State, error) {
+	if err := r.checkSaturationPressure(p); err != nil {
+		return State{}, err
+	}
+	if err := r.checkQuality(x); err != nil {
+		return State{}, err
+	}
+	d := r.domeAtPressure(p)
+	return r.domeState(&d, x), nil
+}
+
+func (r *Refrigerant) checkQuality(x float64) error {
+	if !(0 <= x && x <= 1) {
+		return &RangeError{Refrigerant: r.rec.ID, Property: Quality, Value: x, Min: 0, Max: 1, Limit: LimitPhysical}
+	}
+	return nil
+}
+
+// thinnest is the density, over the critical one, below which the solvers of temperature with a caloric property do
+// not look: the gas is ideal there to rounding, and enthalpy and internal energy no longer depend on density.
+const thinnest = 1e-9
+
+// isotherm calls found with every state at temperature T whose caloric property y is v. Entropy falls with density, but
+// for cold water; enthalpy and internal energy turn back in a compressed fluid, so that a pair may have several states.
+func (r *Refrigerant) isotherm(T float64, y Property, v float64, found func(State)) error {
+	if err := r.checkTemperature(T); err != nil {
+		return err
+	}
+	if math.IsNaN(v) || math.IsInf(v, 0) {
+		return r.notFinite(y, v)
+	}
+	lowest, highest := math.Inf(1), math.Inf(-1)
+	var iso helmholtz.Isotherm
+	iso.Set(r.eq, T)
+	miss := func(rho float64) float64 {
+		f := r.evaluate(&iso, rho)
+		have, _, _ := f.value(y)
+		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
+		return have - v
+	}
+	worst := 0.0 // relative uncertainty of the density that rounding leaves
+	single := func(rho float64) {
+		f := r.evaluate(&iso, rho)
+		s := r.state(f, f.p)
+		if r.check(s) == nil {
+			_, _, slope := f.value(y)
+			worst = math.Max(worst, roundingOf(y, f, r)/math.Abs(rho*slope))
+			found(s)
+		}
+	}
+	thin, dense := thinnest*r.curve.RhoCritical*r.M, r.reach().DensityMax
+	if T >= r.curve.TCritical {
+		allRoots(r.densities(thin, dense), miss, single)
+	} else {
+		p, liquid, vapour := r.curve.At(T)
+		liquid, vapour = liquid*r.M, vapour*r.M
+		d := r.domeOf(T, p, liquid, vapour)
+		if dense > liquid {
+			allRoots(r.densities(liquid, dense), miss, single)
+		}
+		if x := d.quality(y, v); 0 <= x && x <= 1 {
+			found(r.domeState(&d, x))
+		}
+		allRoots(r.densities(math.Min(thin, vapour/2), vapour), miss, single)
+	}
+	if worst > 1e-7 {
+		return &ConditionError{Refrigerant: r.rec.ID, Pair: [2]Property{Temperature, y}, Property: Density, Uncertainty: worst}
+	}
+	if !(lowest <= v && v <= highest) {
+		return &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: lowest, Max: highest, Limit: LimitAttainable}
+	}
+	return nil
+}
+
+// roundingOf returns the rounding error of property y in state f: a few units in the last place of the terms it is
+// summed from.
+func roundingOf(y Property, f fluidState, r *Refrigerant) float64 {
+	const ulp = 4e-16
+	if y == Entropy {
+		return ulp * (math.Abs(f.s) + math.Abs(r.s0) + 10*r.Rs)
+	}
+	return ulp * (math.Abs(f.h) + math.Abs(r.h0) + 10*r.Rs*f.T)
+}
+
+// densities returns a rising grid from lo to hi, geometric in a gas and finer where a fluid is dense.
+func (r *Refrigerant) densities(lo, hi float64) []float64 {
+	grid := []float64{lo}
+	c := r.curve.RhoCritical * r.M
+	for x := lo; ; {
+		switch {
+		case x < 0.05*c:
+			x *= 2
+		default:
+			x += 0.05 * c
+		}
+		if x >= hi*(1-1e-9) {
+			return append(grid, hi)
+		}
+		grid = append(grid, x)
+	}
+}
