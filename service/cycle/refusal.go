@@ -59,3 +59,33 @@ func (e *RefusedError) Unwrap() []error {
 	}
 	return causes
 }
+
+// noState says that the property model has no state for a place.
+func (c *circuit) noState(at place, field string, cause error) Refusal {
+	n := &placeNames[c.side][at]
+	return Refusal{
+		Code: NoState, Field: field, Label: n.label,
+		Message: message("the refrigerant has no state for " + n.label + " (" + n.words + ") within its limits"), Cause: cause,
+	}
+}
+
+// againstSecondLaw says what is wrong with a component that would destroy entropy.
+func (c *circuit) againstSecondLaw(a *account, generation float64) Refusal {
+	r := Refusal{Code: SecondLaw, Component: partNames[a.side][a.part]}
+	entropy := Number{EntropyFlow, generation}
+	switch a.part {
+	case evaporator:
+		r.Field = "source_temperature"
+		r.Message = message("the heat source at %s is colder than the evaporator needs: entropy would fall by %s", temperature(a.heatT), entropy)
+	case condenser, gasCooler:
+		r.Field = "sink_temperature"
+		r.Message = message("the heat sink at %s is hotter than the condenser or gas cooler can serve: entropy would fall by %s", temperature(a.heatT), entropy)
+	case suctionLine, liquidLine, dischargeLine:
+		r.Field = "ambient_temperature"
+		r.Message = message("the "+strings.ReplaceAll(r.Component, "_", " ")+" would exchange heat with an ambient at %s against the temperature difference: entropy would fall by %s",
+			temperature(a.heatT), entropy)
+	default:
+		r.Message = message("the "+strings.ReplaceAll(r.Component, "_", " ")+" would destroy entropy, %s", entropy)
+	}
+	return r
+}

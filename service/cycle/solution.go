@@ -79,18 +79,22 @@ type Performance struct {
 
 // Figures holds what only some layouts have; NaN in the others.
 type Figures struct {
-	EvaporatingPressure    float64 // Pa, at the evaporator outlet
-	HighPressure           float64 // Pa, at the condenser or gas cooler outlet
-	IntermediatePressure   float64 // Pa; in a cascade the lower circuit's condensing pressure
-	InjectionRatio         float64 // injection or flash gas flow over condenser flow
-	FlowRatio              float64 // high-stage flow over low-stage flow; upper over lower circuit
-	EntrainmentRatio       float64 // ejector: suction flow over motive flow
-	PressureLift           float64 // Pa: separator over evaporator outlet
-	EjectorEfficiency      float64 // by Elbel and Hrnjak 2008
-	InternalExchangerHeat  float64 // W
-	CapacityLimitedBy      string  // internal exchanger: "vapour" or "liquid", the side of the smaller capacity; "" without one
-	CorrelationHighLimited bool
+	EvaporatingPressure   float64 // Pa, at the evaporator outlet
+	HighPressure          float64 // Pa, at the condenser or gas cooler outlet
+	IntermediatePressure  float64 // Pa; in a cascade the lower circuit's condensing pressure
+	InjectionRatio        float64 // injection or flash gas flow over condenser flow
+	FlowRatio             float64 // high-stage flow over low-stage flow; upper over lower circuit
+	EntrainmentRatio      float64 // ejector: suction flow over motive flow
+	PressureLift          float64 // Pa: separator over evaporator outlet
+	EjectorEfficiency     float64 // by Elbel and Hrnjak 2008
+	InternalExchangerHeat float64 // W
+	CapacityLimitedBy     string  // internal exchanger: "vapour" or "liquid", the side of the smaller capacity; "" without one
+	MotiveVelocity        float64 // m/s, ejector: at the motive nozzle's exit
+	SuctionVelocity       float64 // m/s, ejector: at the suction nozzle's exit
+	MixedVelocity         float64 // m/s, ejector: before the diffuser
 }
+
+var noFigures = Figures{nan, nan, nan, nan, nan, nan, nan, nan, nan, "", nan, nan, nan}
 
 // Optimum describes the search for one pressure.
 type Optimum struct {

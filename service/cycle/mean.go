@@ -1,0 +1,85 @@
+package cycle
+
+import "math"
+
+// meanCondensing returns the pressure at which the mean of bubble and dew temperature is T. It lies between the
+// pressures at which the two lines themselves pass T.
+func (c *circuit) meanCondensing(T float64) (float64, error) {
+	low, err := c.saturationPressure(T, gas)
+	if err != nil || c.withoutGlide() {
+		return low, err
+	}
+	high, err := c.saturationPressure(T, liquid)
+	if err != nil {
+		return nan, err
+	}
+	var failure error
+	p, err := root(low, high, func(p float64) float64 {
+		bubble, errB := c.saturationTemperature(p, liquid)
+		dew, errD := c.saturationTemperature(p, gas)
+		for _, e := range [...]error{errB, errD} {
+			if e != nil && failure == nil {
+				failure = e
+			}
+		}
+		return (bubble+dew)/2 - T
+	})
+	if failure != nil {
+		return nan, failure
+	}
+	return p, err
+}
+
+const (
+	// meanTolerance is how far the mean evaporating temperature may lie from the one asked for without a search, relative:
+	// ten times what a pressure-to-temperature round trip of a saturation curve loses.
+	meanTolerance = 1e-12
+	// meanFactor is the first step of the evaporating pressure in search of a bracket; each further step is twice as wide.
+	meanFactor = 1.02
+	meanSteps  = 12 // together beyond any range of pressures
+)
+
+// meanEvaporation moves the evaporating pressure until the mean of the evaporator's inlet and dew temperature is the one
+// asked for. The inlet temperature is that behind the expansion, so the machine is put together at each trial.
+func (c *circuit) meanEvaporation() {
+	e := &c.evaporation
+	miss := func(p float64) float64 {
+		if c.refused != nil {
+			return nan
+		}
+		dew, err := c.saturationTemperature(p, gas)
+		if err != nil {
+			c.refuse(c.noState(evaporatorOutlet, e.field(), err))
+			return nan
+		}
+		c.setLowAt(e, p, dew)
+		c.setOrder()
+		c.assemble()
+		return (c.evaporatorInlet+dew)/2 - e.temperature
+	}
+	p := c.low.pressure
+	f := (c.evaporatorInlet+c.low.dew)/2 - e.temperature
+	factor := meanFactor
+	if f > 0 {
+		factor = 1 / factor
+	}
+	for range meanSteps {
+		if math.Abs(f) <= meanTolerance*e.temperature || c.refused != nil {
+			return
+		}
+		next := p * factor
+		fNext := miss(next)
+		if f*fNext <= 0 {
+			if found, err := root(p, next, miss); err == nil {
+				miss(found)
+				return
+			}
+		}
+		p, f = next, fNext
+		factor *= factor
+	}
+	c.refuse(Refusal{
+		Code: NoSolution, Field: e.field(),
+		Message: message("no evaporating pressure has a mean temperature of %s", temperature(e.temperature)),
+	})
+}

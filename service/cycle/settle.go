@@ -1,0 +1,241 @@
+package cycle
+
+import "math"
+
+// secondLawRounding is the entropy destruction that counts as rounding, as a fraction of the condenser's heat over the
+// ambient temperature.
+const secondLawRounding = 1e-9
+
+// totals are the sums over a machine on the common scale of flows.
+type totals struct{ heating, cooling, power float64 } // W
+
+// totals adds up what the machine does.
+func (c *circuit) totals() (t totals) {
+	for i := range c.accountCount {
+		a := &c.accounts[i]
+		flow := c.flow(&c.nodes[a.in[0]])
+		t.power += flow * a.work
+		switch a.part {
+		case evaporator:
+			t.cooling += flow * a.heat
+		case condenser, gasCooler:
+			t.heating -= flow * a.heat
+		}
+	}
+	return t
+}
+
+// scale returns the factor from the common scale of flows to kg/s.
+func (c *circuit) scale(t totals) float64 {
+	first := &c.compressions[0]
+	in := &c.nodes[first.in]
+	var unit float64 // the sized quantity on the common scale
+	switch c.size.of {
+	case byHeating:
+		unit = t.heating
+	case byCooling:
+		unit = t.cooling
+	case byPower:
+		unit = t.power
+	case byMassFlow:
+		unit = c.flow(in)
+	case bySweptVolume:
+		unit = c.flow(in) / in.Rho / first.volumetric
+	default:
+		return 1 / c.flow(in)
+	}
+	if !(unit > 0) {
+		c.refuse(Refusal{
+			Code: NoEffect, Field: sizeFields[c.size.of],
+			Message: message("the cycle cannot be sized so: per kilogram at the first compressor it comes to %s", plain(unit/c.flow(in))),
+		})
+	}
+	return c.size.value / unit
+}
+
+// balance is the account of one component in full.
+type balance struct {
+	heat, work, residual, entropy float64
+}
+
+// balance closes the account of a component at the given scale of flows.
+func (c *circuit) balance(a *account, scale float64) (b balance) {
+	for _, i := range a.out {
+		if i != noNode {
+			flow := scale * c.flow(&c.nodes[i])
+			b.residual -= flow * c.nodes[i].H
+			b.entropy += flow * c.nodes[i].S
+		}
+	}
+	for _, i := range a.in {
+		if i != noNode {
+			flow := scale * c.flow(&c.nodes[i])
+			b.residual += flow * c.nodes[i].H
+			b.entropy -= flow * c.nodes[i].S
+		}
+	}
+	flow := scale * c.flow(&c.nodes[a.in[0]])
+	b.heat, b.work = flow*a.heat, flow*a.work
+	b.residual += b.heat + b.work
+	if b.heat != 0 {
+		b.entropy -= b.heat / a.heatT
+	}
+	return b
+}
+
+// solution settles the accounts.
+func (c *circuit) solution(r *Request) *Solution {
+	t := c.totals()
+	scale := c.scale(t)
+	s := &Solution{
+		Layout: r.Layout, With: r.With, Purpose: c.purpose, PerUnit: c.size.of == perUnit,
+		Ambient: c.ambient, Figures: c.figures,
+	}
+	c.settleStates(s, scale)
+	c.settleComponents(s, scale, t)
+	c.settleCompressors(s, scale)
+	c.settlePerformance(s, scale, t)
+	c.raise(s)
+	s.Cautions = c.cautions
+	return s
+}
+
+// inOrder sorts the numbers 0 to n-1 by key, which hardly needs more than one pass.
+func inOrder(list []int8, key func(i int8) int) {
+	for i := range list {
+		list[i] = int8(i)
+		for j := i; j > 0 && key(list[j]) < key(list[j-1]); j-- {
+			list[j], list[j-1] = list[j-1], list[j]
+		}
+	}
+}
+
+func (c *circuit) settleStates(s *Solution, scale float64) {
+	var order [maxNodes]int8
+	list := order[:c.nodeCount]
+	inOrder(list, func(i int8) int { return int(c.nodes[i].side)*int(placeCount) + int(c.nodes[i].place) })
+	s.States = make([]StateAt, c.nodeCount)
+	for i, k := range list {
+		n := &c.nodes[k]
+		name := &placeNames[n.side][n.place]
+		s.States[i] = StateAt{
+			Label: name.label, Place: name.words, Refrigerant: c.refrigerants[n.side],
+			MassFlow: scale * c.flow(n), State: n.State,
+		}
+	}
+}
+
+func (c *circuit) labels(p pair) []string {
+	a := &c.nodes[p[0]]
+	if p[1] == noNode {
+		return labelLists[a.side][a.place]
+	}
+	return []string{a.label(), c.nodes[p[1]].label()}
+}
+
+func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
+	var order [maxAccounts]int8
+	list := order[:c.accountCount]
+	inOrder(list, func(i int8) int { return int(c.accounts[i].side)*int(partCount) + int(c.accounts[i].part) })
+	s.Components = make([]Component, c.accountCount)
+	k := &s.Closure
+	k.SmallestEntropyGeneration = math.Inf(1)
+	tolerance := secondLawRounding * scale * max(t.heating, t.power) / c.ambient
+	received, delivered := 0.0, 0.0 // exergy with heat
+	for i, j := range list {
+		a := &c.accounts[j]
+		b := c.balance(a, scale)
+		comp := &s.Components[i]
+		*comp = Component{
+			Name: partNames[a.side][a.part], Inlets: c.labels(a.in), Outlets: c.labels(a.out),
+			MassFlow: scale * c.flow(&c.nodes[a.in[0]]),
+			Heat:     b.heat, Work: b.work, HeatTemperature: nan,
+			EntropyGeneration: b.entropy, ExergyDestruction: c.ambient * b.entropy,
+		}
+		if a.mixes() {
+			comp.MassFlow += scale * c.flow(&c.nodes[a.in[1]])
+		}
+		k.EnergyResidualFraction += math.Abs(b.residual)
+		k.ExergyDestruction += comp.ExergyDestruction
+		if b.heat != 0 {
+			comp.HeatTemperature = a.heatT
+			if x := b.heat * (1 - c.ambient/a.heatT); x > 0 {
+				received += x
+			} else {
+				delivered -= x
+			}
+		}
+		if b.entropy < k.SmallestEntropyGeneration {
+			k.SmallestEntropyGeneration, k.SmallestComponent = b.entropy, comp.Name
+		}
+		if b.entropy < -tolerance {
+			c.refuse(c.againstSecondLaw(a, b.entropy))
+		}
+	}
+	power := scale * t.power
+	k.EnergyResidualFraction /= power
+	k.ExergyDelivered, k.ExergyReceived = delivered, received
+	k.ExergyResidualFraction = (power - k.ExergyDestruction - delivered + received) / power
+	if !isGiven(k.ExergyDestruction) {
+		k.ExergyDelivered, k.ExergyReceived = nan, nan
+	}
+}
+
+// mixes reports whether two inlets become one flow.
+func (a *account) mixes() bool {
+	return a.in[1] != noNode && a.part != internalExchanger && a.part != economiser && a.part != cascadeExchanger
+}
+
+func (c *circuit) settleCompressors(s *Solution, scale float64) {
+	s.Compressors = make([]CompressorPerformance, c.compressionCount)
+	for i := range s.Compressors {
+		k := &c.compressions[i]
+		in, out := &c.nodes[k.in], &c.nodes[k.out]
+		flow := scale * c.flow(in)
+		s.Compressors[i] = CompressorPerformance{
+			Name: partNames[k.side][k.part], MassFlow: flow, Power: flow * k.work,
+			IsentropicEfficiency: k.isentropic, VolumetricEfficiency: k.volumetric,
+			PressureRatio: out.P / in.P, DischargeTemperature: out.T,
+			SuctionVolumeFlow: flow / in.Rho, SweptVolumeFlow: flow / in.Rho / k.volumetric,
+		}
+		if k.sharesVolume {
+			s.Compressors[i].VolumetricEfficiency, s.Compressors[i].SweptVolumeFlow = nan, nan
+		}
+	}
+}
+
+func (c *circuit) settlePerformance(s *Solution, scale float64, t totals) {
+	first := &s.Compressors[0]
+	p := &s.Performance
+	*p = Performance{
+		MassFlow:                  first.MassFlow,
+		HeatingCapacity:           scale * t.heating,
+		CoolingCapacity:           scale * t.cooling,
+		CompressorPower:           scale * t.power,
+		COPHeating:                t.heating / t.power,
+		COPCooling:                t.cooling / t.power,
+		CarnotCOPHeating:          nan,
+		CarnotCOPCooling:          nan,
+		IsentropicEfficiency:      first.IsentropicEfficiency,
+		PressureRatio:             c.high.discharge / c.nodes[c.compressions[0].in].P,
+		SuctionVolumeFlow:         first.SuctionVolumeFlow,
+		SweptVolumeFlow:           first.SweptVolumeFlow,
+		VolumetricHeatingCapacity: scale * t.heating / first.SuctionVolumeFlow,
+		VolumetricCoolingCapacity: scale * t.cooling / first.SuctionVolumeFlow,
+	}
+	for i := range s.Compressors {
+		p.DischargeTemperature = max(p.DischargeTemperature, s.Compressors[i].DischargeTemperature)
+	}
+	if c.sink > c.source {
+		p.CarnotCOPHeating = c.sink / (c.sink - c.source)
+		p.CarnotCOPCooling = c.source / (c.sink - c.source)
+	}
+	if c.purpose == Heating {
+		p.SecondLawEfficiency = p.COPHeating / p.CarnotCOPHeating
+	} else {
+		p.SecondLawEfficiency = p.COPCooling / p.CarnotCOPCooling
+	}
+	f := &s.Figures
+	f.EvaporatingPressure, f.HighPressure = c.low.pressure, c.high.outlet.P
+	f.InternalExchangerHeat *= scale
+}

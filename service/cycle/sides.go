@@ -1,0 +1,171 @@
+package cycle
+
+import "dewmark/props"
+
+// lowSide is the evaporator's end of a circuit.
+type lowSide struct {
+	pressure float64     // at 7, Pa
+	dew      float64     // dew temperature at that pressure, K
+	inlet    float64     // pressure at 6, Pa
+	outlet   props.State // at 7
+}
+
+// highSide is the condenser's or gas cooler's end of a circuit.
+type highSide struct {
+	outlet    props.State // at 4
+	inlet     float64     // pressure at 3, Pa
+	discharge float64     // pressure at 2, Pa
+}
+
+// setLow fixes the low side. An evaporation with a mean reference starts at its dew point, see meanEvaporation.
+func (c *circuit) setLow(e *evaporation) {
+	critical := c.fluid.Critical()
+	if e.temperature >= critical.T || e.pressure >= critical.P {
+		c.refuse(Refusal{
+			Code: AboveCritical, Field: e.field(), Label: placeNames[c.side][evaporatorOutlet].label,
+			Message: message("evaporation must be below the critical point, %s and %s", temperature(critical.T), pressure(critical.P)),
+		})
+		return
+	}
+	p, T := e.pressure, e.temperature
+	var err error
+	if isGiven(p) {
+		T, err = c.saturationTemperature(p, gas)
+	} else {
+		p, err = c.saturationPressure(T, gas)
+	}
+	if err != nil {
+		c.refuse(c.noState(evaporatorOutlet, e.field(), err))
+		return
+	}
+	c.setLowAt(e, p, T)
+}
+
+// setLowAt fixes the low side at a dew point.
+func (c *circuit) setLowAt(e *evaporation, p, dew float64) {
+	c.low = lowSide{pressure: p, dew: dew}
+	var err error
+	field := e.superheatField
+	switch {
+	case isGiven(e.quality):
+		field = "evaporation.outlet_quality"
+		c.low.outlet, err = c.fluid.PressureQuality(p, e.quality)
+	case e.superheat == 0:
+		c.low.outlet, err = c.fluid.DewPointAtPressure(p)
+	default:
+		c.low.outlet, err = c.fluid.TemperaturePressure(dew+e.superheat, p)
+	}
+	if err != nil {
+		c.refuse(c.noState(evaporatorOutlet, field, err))
+		return
+	}
+	c.low.inlet = c.before(c.evaporatorDrop, p, "evaporator")
+}
+
+// setCondenser fixes the high side at a condensation.
+func (c *circuit) setCondenser(k *condensation) {
+	critical := c.fluid.Critical()
+	if k.temperature >= critical.T || k.pressure >= critical.P {
+		c.refuse(Refusal{
+			Code: AboveCritical, Field: k.field(), Label: placeNames[c.side][condenserOutlet].label,
+			Message: message("condensation must be below the critical point, %s and %s; above it the transcritical layout has a gas cooler",
+				temperature(critical.T), pressure(critical.P)),
+		})
+		return
+	}
+	p, bubble, err := c.condensing(k)
+	if err != nil {
+		c.refuse(c.noState(condenserOutlet, k.field(), err))
+		return
+	}
+	var outlet props.State
+	if k.subcooling == 0 {
+		outlet, err = c.fluid.BubblePointAtPressure(p)
+	} else {
+		outlet, err = c.fluid.TemperaturePressure(bubble-k.subcooling, p)
+	}
+	if err != nil {
+		c.refuse(c.noState(condenserOutlet, k.subcoolingField, err))
+		return
+	}
+	c.setHighAt(outlet)
+}
+
+// condensing returns the pressure of a condensation and the bubble temperature there.
+func (c *circuit) condensing(k *condensation) (p, bubble float64, err error) {
+	switch {
+	case isGiven(k.pressure):
+		p = k.pressure
+	case k.mean:
+		if p, err = c.meanCondensing(k.temperature); err != nil {
+			return nan, nan, err
+		}
+	default:
+		if p, err = c.saturationPressure(k.temperature, gas); err != nil {
+			return nan, nan, err
+		}
+		if c.withoutGlide() {
+			return p, k.temperature, nil
+		}
+	}
+	bubble, err = c.saturationTemperature(p, liquid)
+	return p, bubble, err
+}
+
+// setHighAt fixes the high side at its outlet.
+func (c *circuit) setHighAt(outlet props.State) {
+	c.high.outlet = outlet
+	c.high.inlet = c.before(c.condenserDrop, outlet.P, "condenser")
+	c.high.discharge = c.before(c.dischargeLine.Drop, c.high.inlet, "discharge_line")
+	c.setOrder()
+}
+
+// setOrder refuses a high side that is not above the low side.
+func (c *circuit) setOrder() {
+	if c.high.outlet.P > c.low.pressure {
+		return
+	}
+	c.refuse(Refusal{
+		Code: PressuresOutOfOrder, Field: c.evaporation.field(),
+		Message: message("evaporation must be below condensation: the evaporator has %s (dew point %s), the condenser or gas cooler %s",
+			pressure(c.low.pressure), temperature(c.low.dew), pressure(c.high.outlet.P)),
+	})
+}
+
+// behind returns the pressure behind a loss that starts at p.
+func (c *circuit) behind(d Drop, p float64, of content, field string) float64 {
+	if d.TemperatureEquivalent != 0 {
+		return c.moved(p, -d.TemperatureEquivalent, of, field)
+	}
+	if d.Pressure >= p {
+		c.refuse(Refusal{
+			Code: OutOfBounds, Field: field + ".pressure_drop",
+			Message: message("a pressure drop of %s leaves nothing of %s", Number{PressureDifference, d.Pressure}, pressure(p)),
+		})
+		return p
+	}
+	return p - d.Pressure
+}
+
+// before returns the pressure before a loss in vapour that ends at p.
+func (c *circuit) before(d Drop, p float64, field string) float64 {
+	if d.TemperatureEquivalent != 0 {
+		return c.moved(p, d.TemperatureEquivalent, gas, field)
+	}
+	return p + d.Pressure
+}
+
+// moved returns the saturation pressure at dT above the saturation temperature of p.
+func (c *circuit) moved(p, dT float64, of content, field string) float64 {
+	T, err := c.saturationTemperature(p, of)
+	if err == nil {
+		p, err = c.saturationPressure(T+dT, of)
+	}
+	if err != nil {
+		c.refuse(Refusal{
+			Code: NoState, Field: field + ".temperature_drop_equivalent",
+			Message: message("no saturation temperature lies %s from that at %s", difference(dT), pressure(p)), Cause: err,
+		})
+	}
+	return p
+}

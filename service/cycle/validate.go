@@ -1,0 +1,578 @@
+package cycle
+
+import (
+	"fmt"
+	"math"
+	"strings"
+)
+
+// Defaults for what a request leaves out. All are common practice, and each use of one is a caution.
+const (
+	defaultIsentropicEfficiency = 0.65
+	defaultVolumetricEfficiency = 0.90
+	defaultAmbient              = 298.15 // K
+	defaultApproach             = 5.0    // K, economiser, intercooler and cascade exchanger
+	defaultInjectionSuperheat   = 5.0    // K
+	defaultNozzleEfficiency     = 0.8
+	defaultDiffuserEfficiency   = 0.75
+	defaultSuctionChamberDrop   = 30e3 // Pa
+	defaultHighPressureMax      = 14e6 // Pa
+)
+
+// Bounds of numbers as such. They keep nonsense away from the property model, whose own limits are tighter.
+const (
+	mostKelvin = 5000.0 // K
+	mostPascal = 1e10   // Pa
+	mostSize   = 1e15   // W, kg/s, m3/s
+)
+
+// fill takes over r: it checks every field, and what belongs together, and fills in the defaults. What is wrong with r is
+// in the refusals then.
+func (v *plan) fill(r *Request) {
+	if r.Refrigerant == nil {
+		v.missing("refrigerant", "a refrigerant is needed")
+	}
+	v.arrangement(r)
+	v.temperatures(r)
+	v.sides(r)
+	v.first = v.compressor(&firstFields, &r.Compressor)
+	v.second = v.secondCompressor(r)
+	v.drops(r)
+	v.parts(r)
+	v.sized(r.Size)
+}
+
+func (v *plan) wrong(code RefusalCode, field string, m Message) {
+	v.refusals = append(v.refusals, Refusal{Code: code, Field: field, Message: m})
+}
+
+func (v *plan) missing(field, text string) { v.wrong(Missing, field, message(text)) }
+
+func (v *plan) surplus(field, text string) { v.wrong(Surplus, field, message(text)) }
+
+// assume cautions that a default was used.
+func (v *plan) assume(field, text string, n Number) float64 {
+	v.caution(Caution{Code: Assumed, Field: field, Message: message(text, n)})
+	return n.Value
+}
+
+// bounds of a number; an open end does not belong to them.
+type bounds struct {
+	quantity         Quantity
+	min, max         float64
+	openMin, openMax bool
+}
+
+var (
+	temperatureBounds = bounds{Temperature, 0, mostKelvin, true, false}
+	pressureBounds    = bounds{Pressure, 0, mostPascal, true, false}
+	differenceBounds  = bounds{TemperatureDifference, 0, mostKelvin, false, false}
+	changeBounds      = bounds{TemperatureDifference, -mostKelvin, mostKelvin, false, false}
+	dropBounds        = bounds{PressureDifference, 0, mostPascal, false, false}
+	efficiencyBounds  = bounds{Dimensionless, 0, 1, true, false}
+	nozzleBounds      = bounds{Dimensionless, 0, 1, false, false}
+	fractionBounds    = bounds{Dimensionless, 0, 1, false, true}
+	qualityBounds     = bounds{Dimensionless, 0, 1, false, false}
+)
+
+func (b *bounds) hold(x float64) bool {
+	return (b.min < x || b.min == x && !b.openMin) && (x < b.max || x == b.max && !b.openMax)
+}
+
+// number returns the value that p points to, or NaN without one.
+func (v *plan) number(field string, p *float64, b *bounds) float64 {
+	if p == nil {
+		return nan
+	}
+	return v.value(field, *p, b)
+}
+
+// value checks x and returns it, or NaN when it is out of bounds.
+func (v *plan) value(field string, x float64, b *bounds) float64 {
+	if b.hold(x) {
+		return x
+	}
+	least, most := "at least", "at most"
+	if b.openMin {
+		least = "above"
+	}
+	if b.openMax {
+		most = "below"
+	}
+	if math.IsNaN(x) || math.IsInf(x, 0) {
+		v.wrong(OutOfBounds, field, message("a finite number is needed"))
+		return nan
+	}
+	v.wrong(OutOfBounds, field, message("%s is out of bounds: it must be "+least+" %s and "+most+" %s",
+		Number{b.quantity, x}, Number{b.quantity, b.min}, Number{b.quantity, b.max}))
+	return nan
+}
+
+// exactlyOne checks that one of some alternatives is given.
+func (v *plan) exactlyOne(path string, names []string, given ...bool) {
+	count := 0
+	for _, g := range given {
+		if g {
+			count++
+		}
+	}
+	if count == 1 {
+		return
+	}
+	text := fmt.Sprintf("exactly one of %s is needed, %d are given", strings.Join(names, ", "), count)
+	if count == 0 {
+		v.missing(path, text)
+	} else {
+		v.surplus(path, text)
+	}
+}
+
+// arrangement finds out which components there are.
+func (v *plan) arrangement(r *Request) {
+	if r.Purpose != Heating && r.Purpose != Cooling {
+		v.wrong(NotAllowed, "purpose", message("purpose must be heating or cooling"))
+	}
+	v.purpose = r.Purpose
+	switch r.Layout {
+	case Transcritical:
+		v.layout, v.gasCooled = SingleStage, true
+		v.combine(r.With)
+	case SuctionExchanger:
+		v.layout, v.exchanger = SingleStage, true
+	case Ejector:
+		v.layout, v.gasCooled = Ejector, true
+	case SingleStage, EconomisedSubcooler, EconomisedFlash, TwoStageFlash, TwoStageIntercooled, Cascade, ParallelCompression:
+		v.layout = r.Layout
+	default:
+		v.wrong(NotAllowed, "layout", message("layout must be one of "+strings.Join(Layouts(), ", ")))
+	}
+	if r.Layout != Transcritical && len(r.With) > 0 {
+		v.surplus("with", "only the transcritical layout is combined with others")
+	}
+}
+
+// combine adds to a transcritical cycle what it is combined with.
+func (v *plan) combine(with []Layout) {
+	var seen [Ejector + 1]bool
+	for i, l := range with {
+		field := fmt.Sprintf("with.%d", i)
+		switch {
+		case int(l) >= len(seen) || l == 0 || l == Cascade || l == Transcritical:
+			v.wrong(NotAllowed, field, message("transcritical can be combined with single_stage, suction_exchanger, economised_subcooler, "+
+				"economised_flash, two_stage_flash, two_stage_intercooled, parallel_compression and ejector"))
+			continue
+		case seen[l]:
+			v.surplus(field, l.String()+" is given twice")
+			continue
+		}
+		seen[l] = true
+		switch {
+		case l == SuctionExchanger:
+			v.exchanger = true
+		case l == SingleStage:
+		case v.layout != SingleStage:
+			v.surplus(field, fmt.Sprintf("%s and %s cannot be combined with each other; besides suction_exchanger one layout is allowed", v.layout, l))
+		default:
+			v.layout = l
+		}
+	}
+	if v.exchanger && v.layout != SingleStage && v.layout != ParallelCompression && v.layout != Ejector {
+		v.surplus("with", "suction_exchanger goes with single_stage, parallel_compression or ejector, not with "+v.layout.String())
+	}
+}
+
+// temperatures takes the three reservoirs. Without an ambient temperature the benefit's counterpart stands in: what a
+// heat pump takes heat from, or a refrigerating machine gives heat to.
+func (v *plan) temperatures(r *Request) {
+	v.source = v.number("source_temperature", r.SourceTemperature, &temperatureBounds)
+	v.sink = v.number("sink_temperature", r.SinkTemperature, &temperatureBounds)
+	v.ambient = v.number("ambient_temperature", r.AmbientTemperature, &temperatureBounds)
+	if r.AmbientTemperature != nil {
+		return
+	}
+	switch {
+	case r.Purpose == Heating && isGiven(v.source):
+		v.ambient = v.assume("ambient_temperature", "no ambient temperature given: exergy counts from the source temperature, %s", temperature(v.source))
+	case r.Purpose == Cooling && isGiven(v.sink):
+		v.ambient = v.assume("ambient_temperature", "no ambient temperature given: exergy counts from the sink temperature, %s", temperature(v.sink))
+	default:
+		v.ambient = v.assume("ambient_temperature", "no ambient temperature given: exergy counts from %s", temperature(defaultAmbient))
+	}
+}
+
+// sides takes what fixes the evaporator and the condenser or gas cooler.
+func (v *plan) sides(r *Request) {
+	e := &r.Evaporation
+	v.evaporation = evaporation{
+		temperature: v.number("evaporation.temperature", e.Temperature, &temperatureBounds),
+		pressure:    v.number("evaporation.pressure", e.Pressure, &pressureBounds),
+		mean:        e.Reference == Mean,
+		quality:     v.number("evaporation.outlet_quality", e.OutletQuality, &qualityBounds),
+	}
+	v.reference("evaporation.reference", e.Reference, e.Pressure != nil)
+	v.exactlyOne("evaporation", []string{"temperature", "pressure"}, e.Temperature != nil, e.Pressure != nil)
+	if e.OutletQuality != nil && e.Superheat != nil && *e.Superheat != 0 {
+		v.surplus("evaporation.outlet_quality", "wet vapour of a given quality has no superheat; give one of outlet_quality and superheat")
+	}
+	v.evaporation.superheat, v.evaporation.superheatField = 0, "evaporation.superheat"
+	if e.OutletQuality == nil {
+		v.evaporation.superheat = v.orAssume("evaporation.superheat", e.Superheat, &differenceBounds, 0, "no superheat given: %s assumed at the evaporator outlet")
+	}
+
+	k := &r.Condensation
+	if !v.gasCooled {
+		v.condensation = condensation{
+			temperature: v.number("condensation.temperature", k.Temperature, &temperatureBounds),
+			pressure:    v.number("condensation.pressure", k.Pressure, &pressureBounds),
+			mean:        k.Reference == Mean,
+		}
+		v.reference("condensation.reference", k.Reference, k.Pressure != nil)
+		v.exactlyOne("condensation", []string{"temperature", "pressure"}, k.Temperature != nil, k.Pressure != nil)
+		v.condensation.subcoolingField = "condensation.subcooling"
+		v.condensation.subcooling = v.orAssume("condensation.subcooling", k.Subcooling, &differenceBounds, 0, "no subcooling given: %s assumed at the condenser outlet")
+		if r.GasCooler != nil {
+			v.surplus("gas_cooler", "a gas cooler belongs to the transcritical and ejector layouts; "+r.Layout.String()+" has a condenser")
+		}
+		return
+	}
+	if *k != (Condensation{}) {
+		v.surplus("condensation", r.Layout.String()+" has a gas cooler and no condensation; give gas_cooler alone")
+	}
+	v.gasCooler(r.GasCooler)
+}
+
+func (v *plan) reference(field string, ref Reference, byPressure bool) {
+	if int(ref) >= len(referenceNames) {
+		v.wrong(NotAllowed, field, message("reference must be dew or mean"))
+	}
+	if byPressure && ref == Mean {
+		v.surplus(field, "a reference belongs to a temperature; a pressure has none")
+	}
+}
+
+func (v *plan) gasCooler(g *GasCooler) {
+	if g == nil {
+		v.missing("gas_cooler", "a gas cooler is needed: its outlet temperature or approach, and its pressure, a correlation or optimise")
+		return
+	}
+	v.gasCooling = gasCooling{
+		outlet:      v.number("gas_cooler.outlet_temperature", g.OutletTemperature, &temperatureBounds),
+		outletField: "gas_cooler.outlet_temperature",
+		pressure:    v.number("gas_cooler.pressure", g.Pressure, &pressureBounds),
+		correlation: g.Correlation,
+		optimise:    g.Optimise != NoObjective,
+		pressureMax: v.orDefault("gas_cooler.pressure_max", g.PressureMax, &pressureBounds, defaultHighPressureMax),
+	}
+	v.exactlyOne("gas_cooler", []string{"outlet_temperature", "approach"}, g.OutletTemperature != nil, g.Approach != nil)
+	v.exactlyOne("gas_cooler", []string{"pressure", "correlation", "optimise"}, g.Pressure != nil, g.Correlation != NoCorrelation, g.Optimise != NoObjective)
+	if int(g.Correlation) >= len(correlationNames) {
+		v.wrong(NotAllowed, "gas_cooler.correlation", message("correlation must be one of "+strings.Join(Correlations(), ", ")))
+	}
+	v.objective("gas_cooler.optimise", g.Optimise)
+	if g.PressureMax != nil && g.Optimise == NoObjective {
+		v.surplus("gas_cooler.pressure_max", "pressure_max bounds the search for an optimum; it goes with optimise")
+	}
+	if g.Approach != nil {
+		approach := v.number("gas_cooler.approach", g.Approach, &differenceBounds)
+		v.gasCooling.outletField = "gas_cooler.approach"
+		if !isGiven(v.sink) {
+			v.missing("sink_temperature", "a gas cooler's approach counts from the sink temperature, which is not given")
+		}
+		v.gasCooling.outlet = v.sink + approach
+	}
+}
+
+func (v *plan) objective(field string, o Objective) {
+	if int(o) >= len(objectiveNames) {
+		v.wrong(NotAllowed, field, message("the objective must be cop"))
+	}
+}
+
+// orDefault is number with a default that needs no caution.
+func (v *plan) orDefault(field string, p *float64, b *bounds, standard float64) float64 {
+	if p == nil {
+		return standard
+	}
+	return v.value(field, *p, b)
+}
+
+// orAssume is number with a default that needs a caution; text has one %s for it.
+func (v *plan) orAssume(field string, p *float64, b *bounds, standard float64, text string) float64 {
+	if p == nil {
+		return v.assume(field, text, Number{b.quantity, standard})
+	}
+	return v.value(field, *p, b)
+}
+
+// compressorFields are the paths of a compressor's numbers, ready made because most requests need none of them.
+type compressorFields struct{ part, isentropic, discharge, volumetric, heatLoss string }
+
+func fieldsOf(part string) compressorFields {
+	return compressorFields{
+		part, part + ".isentropic_efficiency", part + ".discharge_temperature",
+		part + ".volumetric_efficiency", part + ".heat_loss_fraction",
+	}
+}
+
+var firstFields, secondFields = fieldsOf("compressor"), fieldsOf("second_compressor")
+
+func (v *plan) compressor(f *compressorFields, k *Compressor) efficiencies {
+	e := efficiencies{
+		fields:               f,
+		dischargeTemperature: v.number(f.discharge, k.DischargeTemperature, &temperatureBounds),
+		volumetric:           v.orAssume(f.volumetric, k.VolumetricEfficiency, &efficiencyBounds, defaultVolumetricEfficiency, "no volumetric efficiency given: %s assumed"),
+		heatLoss:             v.orAssume(f.heatLoss, k.HeatLossFraction, &fractionBounds, 0, "no heat loss fraction given: %s assumed"),
+	}
+	if k.DischargeTemperature == nil {
+		e.isentropic = v.orAssume(f.isentropic, k.IsentropicEfficiency, &efficiencyBounds, defaultIsentropicEfficiency, "no isentropic efficiency given: %s assumed")
+	} else if k.IsentropicEfficiency != nil {
+		v.surplus(f.discharge, "give one of isentropic_efficiency and a measured discharge_temperature")
+	}
+	return e
+}
+
+// hasSecond reports whether the layout has a second compressor or a second step of compression.
+func (v *plan) hasSecond() bool { return v.layout != SingleStage && v.layout != Ejector }
+
+func (v *plan) secondCompressor(r *Request) efficiencies {
+	switch k := r.SecondCompressor; {
+	case !v.hasSecond():
+		if k != nil {
+			v.surplus("second_compressor", v.layout.String()+" has one compressor")
+		}
+		return efficiencies{}
+	case k == nil && r.Compressor.DischargeTemperature != nil:
+		v.missing("second_compressor", "the first compressor goes by its own discharge temperature, so the second needs efficiencies or a discharge temperature too")
+		return efficiencies{}
+	case k == nil:
+		same := v.first
+		same.fields = &secondFields
+		return same
+	default:
+		return v.compressor(&secondFields, k)
+	}
+}
+
+// drop checks one loss of pressure.
+func (v *plan) drop(part string, d Drop) Drop {
+	if d == (Drop{}) {
+		return d
+	}
+	if d.Pressure != 0 && d.TemperatureEquivalent != 0 {
+		v.surplus(part+".temperature_drop_equivalent", "give one of pressure_drop and temperature_drop_equivalent")
+	}
+	return Drop{
+		Pressure:              v.value(part+".pressure_drop", d.Pressure, &dropBounds),
+		TemperatureEquivalent: v.value(part+".temperature_drop_equivalent", d.TemperatureEquivalent, &differenceBounds),
+	}
+}
+
+func (v *plan) drops(r *Request) {
+	v.evaporatorDrop = v.drop("evaporator", r.Evaporator.Drop)
+	v.condenserDrop = v.drop("condenser", r.Condenser.Drop)
+	v.suctionLine = SuctionLine{v.drop("suction_line", r.SuctionLine.Drop), v.value("suction_line.temperature_rise", r.SuctionLine.TemperatureRise, &changeBounds)}
+	v.dischargeLine = DischargeLine{v.drop("discharge_line", r.DischargeLine.Drop), v.value("discharge_line.temperature_drop", r.DischargeLine.TemperatureDrop, &changeBounds)}
+	v.liquidLine = LiquidLine{v.drop("liquid_line", r.LiquidLine.Drop), v.value("liquid_line.temperature_change", r.LiquidLine.TemperatureChange, &changeBounds)}
+}
+
+// parts takes what only some layouts have and refuses it elsewhere.
+func (v *plan) parts(r *Request) {
+	v.internalExchanger(r.InternalExchanger)
+	v.intermediatePressure(r)
+	v.economiserPart(r.Economiser)
+	v.intercoolerPart(r.Intercooler)
+	v.cascadePart(r)
+	v.ejectorPart(r.Ejector)
+}
+
+func (v *plan) internalExchanger(x *InternalExchanger) {
+	switch {
+	case !v.exchanger && x != nil:
+		v.surplus("internal_exchanger", "an internal exchanger belongs to suction_exchanger, or to transcritical with suction_exchanger")
+	case v.exchanger && (x == nil || x.Effectiveness == nil):
+		v.missing("internal_exchanger.effectiveness", "a suction exchanger needs its effectiveness, 0 to 1")
+	case v.exchanger:
+		v.internal = internalExchange{
+			effectiveness: v.number("internal_exchanger.effectiveness", x.Effectiveness, &nozzleBounds),
+			liquid:        v.drop("internal_exchanger.liquid", x.Liquid),
+			vapour:        v.drop("internal_exchanger.vapour", x.Vapour),
+		}
+	}
+}
+
+func (v *plan) intermediatePressure(r *Request) {
+	v.intermediate = intermediate{pressure: nan, temperature: nan}
+	m := r.Intermediate
+	switch {
+	case !v.hasSecond():
+		if m != nil {
+			v.surplus("intermediate", v.layout.String()+" has no intermediate pressure")
+		}
+		return
+	case m == nil && v.layout == ParallelCompression:
+		v.missing("intermediate", "parallel compression needs the receiver's pressure or dew temperature, or optimise")
+		return
+	case m == nil && v.layout == Cascade:
+		v.caution(Caution{Code: Assumed, Field: "intermediate", Message: message("no intermediate temperature given: geometric mean of evaporating and condensing temperature assumed")})
+		return
+	case m == nil:
+		v.caution(Caution{Code: Assumed, Field: "intermediate", Message: message("no intermediate pressure given: geometric mean of low and high pressure assumed")})
+		return
+	}
+	v.exactlyOne("intermediate", []string{"pressure", "temperature", "optimise"}, m.Pressure != nil, m.Temperature != nil, m.Optimise != NoObjective)
+	v.objective("intermediate.optimise", m.Optimise)
+	v.intermediate = intermediate{
+		pressure:    v.number("intermediate.pressure", m.Pressure, &pressureBounds),
+		temperature: v.number("intermediate.temperature", m.Temperature, &temperatureBounds),
+		optimise:    m.Optimise != NoObjective,
+	}
+	v.optimisable("intermediate.optimise", v.intermediate.optimise)
+}
+
+// optimisable refuses to search a pressure when a measured discharge temperature stands for the compressor's efficiency.
+func (v *plan) optimisable(field string, wanted bool) {
+	if wanted && (isGiven(v.first.dischargeTemperature) || v.hasSecond() && isGiven(v.second.dischargeTemperature)) {
+		v.surplus(field, "a pressure is optimised at given isentropic efficiency; a measured discharge temperature belongs to one pressure")
+	}
+}
+
+func (v *plan) economiserPart(x *Economiser) {
+	if v.layout != EconomisedSubcooler {
+		if x != nil {
+			v.surplus("economiser", "an economiser belongs to economised_subcooler")
+		}
+		return
+	}
+	if x == nil {
+		x = &Economiser{}
+	}
+	v.economiser = economising{
+		approach:  nan,
+		ratio:     v.number("economiser.injection_ratio", x.InjectionRatio, &fractionBounds),
+		superheat: v.orAssume("economiser.injection_superheat", x.InjectionSuperheat, &differenceBounds, defaultInjectionSuperheat, "no superheat of the injection vapour given: %s assumed"),
+	}
+	switch {
+	case x.InjectionRatio == nil:
+		v.economiser.approach = v.orAssume("economiser.approach", x.Approach, &differenceBounds, defaultApproach, "no approach of the economiser given: %s assumed")
+	case x.Approach != nil:
+		v.surplus("economiser.injection_ratio", "give one of approach and injection_ratio")
+	}
+}
+
+func (v *plan) intercoolerPart(x *Intercooler) {
+	kinds := map[Layout][2]IntercoolerKind{
+		TwoStageFlash:       {OpenIntercooler, FlashGasRemoval},
+		TwoStageIntercooled: {ClosedIntercooler, ExternalIntercooler},
+	}
+	allowed, has := kinds[v.layout]
+	if !has {
+		if x != nil {
+			v.surplus("intercooler", "an intercooler belongs to two_stage_flash and two_stage_intercooled")
+		}
+		return
+	}
+	if x == nil {
+		x = &Intercooler{}
+	}
+	kind := x.Kind
+	if kind == DefaultIntercooler {
+		kind = allowed[0]
+	}
+	if kind != allowed[0] && kind != allowed[1] {
+		v.wrong(NotAllowed, "intercooler.kind", message(fmt.Sprintf("the intercooler of %s must be %s or %s", v.layout, allowed[0], allowed[1])))
+	}
+	v.intercooler = intercooling{kind: kind, approach: nan, temperature: nan}
+	switch kind {
+	case ClosedIntercooler, ExternalIntercooler:
+		v.intercooler.approach = v.orAssume("intercooler.approach", x.Approach, &differenceBounds, defaultApproach, "no approach of the intercooler given: %s assumed")
+	default:
+		if x.Approach != nil {
+			v.surplus("intercooler.approach", "an approach belongs to a closed or an external intercooler")
+		}
+	}
+	if kind != ExternalIntercooler {
+		if x.Temperature != nil {
+			v.surplus("intercooler.temperature", "the temperature of water or air belongs to an external intercooler")
+		}
+		return
+	}
+	v.intercooler.temperature = v.number("intercooler.temperature", x.Temperature, &temperatureBounds)
+	if x.Temperature == nil {
+		v.intercooler.temperature = v.sink
+		if !isGiven(v.sink) {
+			v.missing("intercooler.temperature", "an external intercooler needs the temperature of its water or air, or a sink temperature")
+		}
+	}
+}
+
+func (v *plan) cascadePart(r *Request) {
+	x := r.Cascade
+	if v.layout != Cascade {
+		if x != nil {
+			v.surplus("cascade", "an upper circuit belongs to cascade")
+		}
+		return
+	}
+	if x == nil {
+		v.missing("cascade", "a cascade needs its upper circuit: the refrigerant, and if wanted approach, superheat and subcooling")
+		return
+	}
+	if len(x.Upper) != 1 || x.Upper[0] == nil {
+		v.wrong(NotAllowed, "cascade.upper", message("a cascade has two refrigerants: one below, in refrigerant, and exactly one above; %s are given above", plain(float64(len(x.Upper)))))
+		return
+	}
+	v.cascade = cascading{
+		upper:      x.Upper[0],
+		approach:   v.orAssume("cascade.approach", x.Approach, &differenceBounds, defaultApproach, "no approach of the cascade exchanger given: %s assumed"),
+		superheat:  v.orAssume("cascade.superheat", x.Superheat, &differenceBounds, 0, "no superheat given: %s assumed at the upper evaporator's outlet"),
+		subcooling: v.orAssume("cascade.subcooling", x.Subcooling, &differenceBounds, 0, "no subcooling given: %s assumed at the lower condenser's outlet"),
+	}
+}
+
+func (v *plan) ejectorPart(x *EjectorGeometry) {
+	if v.layout != Ejector {
+		if x != nil {
+			v.surplus("ejector", "an ejector belongs to the ejector layout, or to transcritical with ejector")
+		}
+		return
+	}
+	if x == nil {
+		x = &EjectorGeometry{}
+	}
+	v.ejector = ejecting{
+		motive:   v.orAssume("ejector.motive_efficiency", x.MotiveEfficiency, &nozzleBounds, defaultNozzleEfficiency, "no motive nozzle efficiency given: %s assumed"),
+		suction:  v.orAssume("ejector.suction_efficiency", x.SuctionEfficiency, &nozzleBounds, defaultNozzleEfficiency, "no suction nozzle efficiency given: %s assumed"),
+		diffuser: v.orAssume("ejector.diffuser_efficiency", x.DiffuserEfficiency, &nozzleBounds, defaultDiffuserEfficiency, "no diffuser efficiency given: %s assumed"),
+		drop:     v.orAssume("ejector.suction_pressure_drop", x.SuctionPressureDrop, &dropBounds, defaultSuctionChamberDrop, "no pressure drop into the mixing section given: %s assumed"),
+	}
+}
+
+func (v *plan) sized(s *Size) {
+	if s == nil {
+		v.caution(Caution{Code: PerUnitFlow, Field: "size", Message: message("no size given: flows, capacities and powers are per 1 kg/s at the first compressor's suction")})
+		return
+	}
+	given := [...]struct {
+		of       sizing
+		value    *float64
+		quantity Quantity
+	}{
+		{byHeating, s.Heating, HeatFlow},
+		{byCooling, s.Cooling, HeatFlow},
+		{byPower, s.CompressorPower, Power},
+		{byMassFlow, s.MassFlow, MassFlow},
+		{bySweptVolume, s.SweptVolumeFlow, VolumeFlow},
+	}
+	count := 0
+	for _, g := range given {
+		if g.value == nil {
+			continue
+		}
+		count++
+		v.size = size{g.of, v.number(sizeFields[g.of], g.value, &bounds{g.quantity, 0, mostSize, true, false})}
+	}
+	if count != 1 {
+		v.exactlyOne("size", []string{"heating", "cooling", "compressor_power", "mass_flow", "swept_volume_flow"},
+			s.Heating != nil, s.Cooling != nil, s.CompressorPower != nil, s.MassFlow != nil, s.SweptVolumeFlow != nil)
+	}
+}
