@@ -80,7 +80,7 @@ func (r *Refrigerant) supercritical(T, p float64) branch {
 
 // densest is the highest density that solvers try: a little beyond the limit, so that a state beyond it is found and
 // refused by name.
-func (r *Refrigerant) densest() float64 { return 1.25 * r.reach().DensityMax }
+func (r *Refrigerant) densest() float64 { return 1.15 * r.reach().DensityMax }
 
 // solveDensity returns the state at pressure p on a branch of an isotherm.
 func (r *Refrigerant) solveDensity(iso *helmholtz.Isotherm, p float64, b branch) (State, error) {
@@ -97,8 +97,9 @@ func (r *Refrigerant) solveDensity(iso *helmholtz.Isotherm, p float64, b branch)
 // density solves the density at pressure p by Newton's method, with bisection wherever a step leaves the branch.
 func (r *Refrigerant) density(iso *helmholtz.Isotherm, p float64, b branch) (fluidState, error) {
 	const limit = 100 // Newton takes 3 to 6 steps; bisection alone would need 60
+	const rounding = 1e-15
 	lo, hi, rho := b.lo, b.hi, b.start
-	if !(lo < rho && rho < hi) {
+	if !(lo <= rho && rho < hi) {
 		rho = lo + (hi-lo)/2
 	}
 	last := math.Inf(1)
@@ -113,13 +114,15 @@ func (r *Refrigerant) density(iso *helmholtz.Isotherm, p float64, b branch) (flu
 		step := -miss / f.pRho
 		next := rho + step
 		if !(f.pRho > 0) || next <= lo || next >= hi {
-			// A root at the very end of the branch is reached from inside by bisection, to rounding.
+			if f.pRho > 0 && math.Abs(step) <= 1e-12*rho {
+				return f, nil // the noise of a cold liquid's pressure knows no bracket
+			}
 			next = lo + (hi-lo)/2
 			step = next - rho
 		}
 		size := math.Abs(step)
-		if size <= 4e-16*rho || size <= 1e-11*rho && size >= last/2 || hi-lo <= 4e-16*hi {
-			if hi >= b.hi && miss < -1e-9*p {
+		if size <= rounding*rho || size <= 1e-11*rho && size >= last/2 {
+			if rho >= b.hi*(1-1e-9) && miss < -1e-9*p {
 				break // even the highest density does not reach the pressure
 			}
 			return f, nil

@@ -24,10 +24,12 @@ func (r *Refrigerant) qualityLine(x float64, y Property, v float64, found func(S
 		}
 	}
 	n := 0
-	allRoots(r.curveTemperatures(), func(T float64) float64 {
+	allRoots(r.curveTemperatures(), func(T float64) (float64, float64) {
 		have := value(T)
 		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
-		return scale(have) - scale(v)
+		const h = 1e-6
+		above, below := math.Min(T*(1+h), r.curve.TCritical), math.Max(T*(1-h), r.curve.TMin)
+		return scale(have) - scale(v), (scale(value(above)) - scale(value(below))) / (above - below)
 	}, func(T float64) {
 		n++
 		d := r.domeAt(T)
@@ -39,17 +41,20 @@ func (r *Refrigerant) qualityLine(x float64, y Property, v float64, found func(S
 	return nil
 }
 
-// curveTemperatures returns a rising grid over the saturation curve, even in sqrt(1-T/Tc) and so denser towards the
-// critical point, where the properties of both phases change fastest.
+// curveTemperatures returns a rising grid over the saturation curve, even in sqrt(1-T/Tc), where the properties of both
+// phases are smooth, and geometric in its last step, where a line of constant quality may still turn.
 func (r *Refrigerant) curveTemperatures() []float64 {
-	const n = 64
+	const n, last = 64, 6
 	c := r.curve
 	s := math.Sqrt(1 - c.TMin/c.TCritical)
-	grid := make([]float64, n+1)
-	for i := range grid {
-		x := s * float64(n-i) / n
-		grid[i] = math.Min(c.TCritical, math.Max(c.TMin, c.TCritical*(1-x*x)))
+	grid := make([]float64, 0, n+last+1)
+	add := func(s float64) { grid = append(grid, math.Min(c.TCritical, math.Max(c.TMin, c.TCritical*(1-s*s)))) }
+	for i := n; i > 0; i-- {
+		add(s * float64(i) / n)
 	}
-	grid[0] = c.TMin
+	for i := 1; i <= last; i++ {
+		add(s / n * math.Pow(0.5, float64(i)))
+	}
+	add(0)
 	return grid
 }

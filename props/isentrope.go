@@ -3,6 +3,7 @@ package props
 import (
 	"errors"
 	"math"
+	"slices"
 )
 
 // EnthalpyEntropy returns the state at h in J/kg and s in J/(kg K). The pair has one solution at most.
@@ -16,7 +17,12 @@ func (r *Refrigerant) EntropyInternalEnergy(s, u float64) (State, error) {
 }
 
 // lowestPressure is where solvers that walk along pressure begin, Pa: far below what any vacuum pump reaches.
-const lowestPressure = 1e-3
+const lowestPressure = 1e-6
+
+// pressure returns the pressure with that logarithm, within the limit in spite of rounding.
+func (r *Refrigerant) pressure(lnP float64) float64 {
+	return math.Min(math.Exp(lnP), r.reach().PressureMax)
+}
 
 // isentrope returns the state of entropy s with property y, enthalpy or internal energy, equal to v. Both rise with
 // pressure along an isentrope: (dh/dp) = 1/rho, (du/dp) = p/(rho^2 w^2).
@@ -30,7 +36,7 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 	var at State
 	miss := func(lnP float64) (float64, error) {
 		var err error
-		if at, err = r.PressureEntropy(math.Exp(lnP), s); err != nil {
+		if at, err = r.PressureEntropy(r.pressure(lnP), s); err != nil {
 			return 0, err
 		}
 		return pick(&at, y) - v, nil
@@ -87,7 +93,7 @@ func pick(s *State, y Property) float64 {
 // lowest pressure, and leaves it at the highest temperature or pressure.
 func (r *Refrigerant) isentropeEnds(s float64) (lo, hi float64, err error) {
 	return r.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
-		_, err := r.PressureEntropy(math.Exp(lnP), s)
+		_, err := r.PressureEntropy(r.pressure(lnP), s)
 		return side(err, Entropy, s, r)
 	})
 }
@@ -166,38 +172,29 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 		return r.notFinite(InternalEnergy, u)
 	}
 	lo, hi, err := r.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
-		_, err := r.PressureEnthalpy(math.Exp(lnP), h)
+		_, err := r.PressureEnthalpy(r.pressure(lnP), h)
 		return side(err, Enthalpy, h, r)
 	})
 	if err != nil {
 		return err
 	}
-	const n = 160
-	grid := make([]float64, n+1)
-	for i := range grid {
-		grid[i] = lo + (hi-lo)*float64(i)/n
-	}
-	grid[n] = hi
+	grid := r.isenthalpPressures(h, lo, hi)
 	lowest, highest := math.Inf(1), math.Inf(-1)
 	worst, count := 0.0, 0
-	miss := func(lnP float64) float64 {
-		s, err := r.PressureEnthalpy(math.Exp(lnP), h)
+	miss := func(lnP float64) (v, slope float64) {
+		s, err := r.PressureEnthalpy(r.pressure(lnP), h)
 		if err != nil {
-			return math.NaN()
+			return math.NaN(), math.NaN()
 		}
 		lowest, highest = math.Min(lowest, s.U), math.Max(highest, s.U)
-		return s.U - u
+		return s.U - u, r.slopeAtEnthalpy(lnP, h)
 	}
 	allRoots(grid, miss, func(lnP float64) {
-		s, err := r.PressureEnthalpy(math.Exp(lnP), h)
+		s, err := r.PressureEnthalpy(r.pressure(lnP), h)
 		if err != nil {
 			return
 		}
-		const step = 1e-4
-		slope := (miss(lnP+step) - miss(lnP-step)) / (2 * step)
-		if math.IsNaN(slope) {
-			slope = (miss(lnP) - miss(lnP-step)) / step
-		}
+		slope := r.slopeAtEnthalpy(lnP, h)
 		noise := 1e-15 * (math.Abs(s.H) + math.Abs(r.h0) + 10*r.Rs*s.T)
 		worst = math.Max(worst, noise/math.Abs(slope))
 		count++
@@ -210,4 +207,48 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 		return &RangeError{Refrigerant: r.rec.ID, Property: InternalEnergy, Value: u, Min: lowest, Max: highest, Limit: LimitAttainable}
 	}
 	return nil
+}
+
+// slopeAtEnthalpy returns (du/d ln p) at constant enthalpy, by differences.
+func (r *Refrigerant) slopeAtEnthalpy(lnP, h float64) float64 {
+	const step = 1e-5
+	above, err := r.PressureEnthalpy(r.pressure(lnP+step), h)
+	if err != nil {
+		above, err = r.PressureEnthalpy(r.pressure(lnP), h)
+	}
+	if err != nil {
+		return math.NaN()
+	}
+	below, err := r.PressureEnthalpy(r.pressure(lnP-step), h)
+	if err != nil {
+		return math.NaN()
+	}
+	return (above.U - below.U) / math.Log(above.P/below.P)
+}
+
+// isenthalpPressures returns a rising grid of ln p from lo to hi for a scan along the isenthalp h: coarse where the
+// fluid is an almost ideal gas or well inside the dome, finer towards the critical pressure, and with the points where
+// the isenthalp enters and leaves the dome, at which it has a kink.
+func (r *Refrigerant) isenthalpPressures(h, lo, hi float64) []float64 {
+	critical := math.Log(r.curve.PCritical)
+	grid := []float64{lo}
+	for x := lo; x < hi; grid = append(grid, x) {
+		step := 0.05
+		switch d := x - critical; {
+		case d < -7:
+			step = 0.5
+		case math.Abs(d) < 0.5:
+			step = 0.01
+		}
+		x = math.Min(x+step, hi)
+	}
+	for _, quality := range []float64{0, 1} {
+		_ = r.qualityLine(quality, Enthalpy, h, func(s State) { // no crossing is no error here
+			if x := math.Log(s.P); lo < x && x < hi {
+				grid = append(grid, x)
+			}
+		})
+	}
+	slices.Sort(grid)
+	return slices.Compact(grid)
 }

@@ -130,7 +130,7 @@ func (r *Refrigerant) searchIsobar(p float64, y Property, v, lo, hi float64, sid
 		return f, err
 	}
 	if !(a <= 0 && b >= 0) {
-		return f, r.unattainable(p, y, v)
+		return f, r.unattainable(p, y, v, a+v, b+v)
 	}
 	T, err := bracketed(lo, a, hi, b, miss)
 	if err != nil {
@@ -140,16 +140,16 @@ func (r *Refrigerant) searchIsobar(p float64, y Property, v, lo, hi float64, sid
 	return f, err
 }
 
-// unattainable returns the error for a property that no state at pressure p has, with the range that they do have.
-func (r *Refrigerant) unattainable(p float64, y Property, v float64) error {
-	e := &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: math.Inf(-1), Max: math.Inf(1), Limit: LimitAttainable}
+// unattainable returns the error for a property that no state at pressure p has, with the range that they do have. The
+// search saw values from low to high; where it covered one side of a dome only, the other end lies across it.
+func (r *Refrigerant) unattainable(p float64, y Property, v, low, high float64) error {
 	if f, err := r.singlePhase(r.reach().TemperatureMin, p, AnyPhase); err == nil {
-		e.Min, _, _ = f.value(y)
+		low, _, _ = f.value(y)
 	}
 	if f, err := r.singlePhase(r.reach().TemperatureMax, p, AnyPhase); err == nil {
-		e.Max, _, _ = f.value(y)
+		high, _, _ = f.value(y)
 	}
-	return e
+	return &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: low, Max: high, Limit: LimitAttainable}
 }
 
 // singlePhase returns the single phase at T and p. On the saturation line itself rounding would choose a phase; side

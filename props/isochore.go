@@ -71,7 +71,7 @@ func (r *Refrigerant) pressureDensity(p, rho float64, found func(State)) error {
 		}
 	}
 	var highest, lowest float64 = 0, math.Inf(1) // of the density, for the error
-	miss := func(T float64) float64 {
+	miss := func(T float64) (float64, float64) {
 		side := AnyPhase
 		if hi < r.curve.TCritical {
 			side = Liquid
@@ -81,10 +81,10 @@ func (r *Refrigerant) pressureDensity(p, rho float64, found func(State)) error {
 		}
 		f, err := r.singlePhase(T, p, side)
 		if err != nil {
-			return math.NaN()
+			return math.NaN(), math.NaN()
 		}
 		highest, lowest = math.Max(highest, f.rho), math.Min(lowest, f.rho)
-		return math.Log(f.rho / rho)
+		return math.Log(f.rho / rho), -f.pT / (f.rho * f.pRho)
 	}
 	n := 0
 	allRoots(temperatures(lo, hi), miss, func(T float64) {

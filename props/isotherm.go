@@ -84,11 +84,11 @@ func (r *Refrigerant) isotherm(T float64, y Property, v float64, found func(Stat
 	lowest, highest := math.Inf(1), math.Inf(-1)
 	var iso helmholtz.Isotherm
 	iso.Set(r.eq, T)
-	miss := func(rho float64) float64 {
+	miss := func(rho float64) (float64, float64) {
 		f := r.evaluate(&iso, rho)
-		have, _, _ := f.value(y)
+		have, _, slope := f.value(y)
 		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
-		return have - v
+		return have - v, slope
 	}
 	worst := 0.0 // relative uncertainty of the density that rounding leaves
 	single := func(rho float64) {

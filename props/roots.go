@@ -5,31 +5,29 @@ import "math"
 // bracketed solves f(x) = 0 between a and b, where f has opposite signs, by the Illinois variant of regula falsi with
 // bisection whenever three steps have not halved the bracket. It stops at rounding, or when f fails.
 func bracketed(a, fa, b, fb float64, f func(float64) (float64, error)) (float64, error) {
-	if fa == 0 {
-		return a, nil
-	}
-	if fb == 0 {
-		return b, nil
-	}
 	const limit = 200
+	best, least := a, math.Abs(fa)
+	if math.Abs(fb) < least {
+		best, least = b, math.Abs(fb)
+	}
 	width := math.Abs(b - a)
 	for i := range limit {
 		x := b - fb*(b-a)/(fb-fa)
 		if i%3 == 2 {
-			if math.Abs(b-a) > width/2 || !(math.Min(a, b) < x && x < math.Max(a, b)) {
+			if math.Abs(b-a) > width/2 {
 				x = a + (b-a)/2
 			}
 			width = math.Abs(b - a)
 		}
-		if x == a || x == b || math.Abs(b-a) <= 4e-16*math.Abs(b) {
+		if least == 0 || x == a || x == b || math.Abs(b-a) <= 4e-16*math.Abs(b) {
 			break
 		}
 		fx, err := f(x)
 		if err != nil {
 			return x, err
 		}
-		if fx == 0 {
-			return x, nil
+		if math.Abs(fx) < least {
+			best, least = x, math.Abs(fx)
 		}
 		if (fx < 0) != (fb < 0) {
 			a, fa = b, fb
@@ -38,34 +36,41 @@ func bracketed(a, fa, b, fb float64, f func(float64) (float64, error)) (float64,
 		}
 		b, fb = x, fx
 	}
-	return b, nil
+	return best, nil
 }
 
 // allRoots calls found with every zero of the continuous function f between the first and the last value of the
-// rising grid. Between neighbours it sees one zero, or two when f turns back in between; the grid must be fine enough
-// for that.
-func allRoots(grid []float64, f func(float64) float64, found func(x float64)) {
-	plain := func(x float64) (float64, error) { return f(x), nil }
-	var x0, f0, x1, f1 float64
+// rising grid. f returns its value and its slope, or NaN for a slope that it does not know. Between neighbours one zero
+// is seen, or two when f turns back once in between; the grid must be fine enough for that. Where f is NaN there is
+// nothing to find.
+func allRoots(grid []float64, f func(x float64) (v, slope float64), found func(x float64)) {
+	value := func(x float64) float64 { v, _ := f(x); return v }
+	plain := func(x float64) (float64, error) { return value(x), nil }
+	var x0, f0, x1, f1, d1 float64
 	run := 0 // consecutive values of f that exist
 	for _, x2 := range grid {
-		f2 := f(x2)
+		f2, d2 := f(x2)
 		if math.IsNaN(f2) {
 			run = 0
 			continue
 		}
 		run++
+		from, ahead := x1, false // whether f may turn towards zero, and from where
 		switch {
 		case f2 == 0:
 			found(x2)
-		case run > 1 && f1 != 0 && (f1 < 0) != (f2 < 0):
+		case run < 2 || f1 == 0:
+		case (f1 < 0) != (f2 < 0):
 			x, _ := bracketed(x1, f1, x2, f2, plain)
 			found(x)
+		case !math.IsNaN(d1) && !math.IsNaN(d2):
+			ahead = (d1 < 0) == (f1 > 0) && (d2 < 0) != (f2 > 0)
+		case run > 2 && (f0 < 0) == (f1 < 0):
+			from, ahead = x0, math.Abs(f1) < math.Abs(f0) && math.Abs(f1) < math.Abs(f2)
 		}
-		// A turning point towards zero between three values of one sign may hide two roots.
-		if run > 2 && math.Abs(f1) < math.Abs(f0) && math.Abs(f1) < math.Abs(f2) && (f0 < 0) == (f1 < 0) && (f1 < 0) == (f2 < 0) {
-			if xm, fm, crosses := turning(x0, x2, f); crosses {
-				a, _ := bracketed(x0, f0, xm, fm, plain)
+		if ahead {
+			if xm, fm, crosses := turning(from, x2, value); crosses {
+				a, _ := bracketed(from, value(from), xm, fm, plain)
 				b, _ := bracketed(xm, fm, x2, f2, plain)
 				found(a)
 				if b != a {
@@ -73,7 +78,7 @@ func allRoots(grid []float64, f func(float64) float64, found func(x float64)) {
 				}
 			}
 		}
-		x0, f0, x1, f1 = x1, f1, x2, f2
+		x0, f0, x1, f1, d1 = x1, f1, x2, f2, d2
 	}
 }
 
