@@ -1,0 +1,261 @@
+package api
+
+import (
+	"bytes"
+	"encoding/json"
+	"errors"
+	"fmt"
+	"io"
+	"log/slog"
+	"net/http"
+	"net/http/httptest"
+	"strings"
+	"sync"
+	"testing"
+
+	"github.com/getkin/kin-openapi/openapi3"
+	"github.com/getkin/kin-openapi/openapi3filter"
+	"github.com/getkin/kin-openapi/routers"
+	"github.com/getkin/kin-openapi/routers/gorillamux"
+	"github.com/gin-gonic/gin"
+	"github.com/prometheus/client_golang/prometheus"
+
+	"dewmark/openapi"
+	"dewmark/props"
+)
+
+// contract is the description of the interface, ready to judge requests and responses.
+type contract struct {
+	doc    *openapi3.T
+	router routers.Router
+}
+
+var theContract = sync.OnceValues(func() (*contract, error) {
+	openapi3filter.RegisterBodyDecoder("application/x-ndjson", openapi3filter.PlainBodyDecoder)
+	// The stock CSV decoder wants a schema of its own making; the table is text to the description.
+	openapi3filter.RegisterBodyDecoder("text/csv", openapi3filter.PlainBodyDecoder)
+	doc, err := openapi3.NewLoader().LoadFromData(openapi.Document)
+	if err != nil {
+		return nil, err
+	}
+	router, err := gorillamux.NewRouter(doc)
+	return &contract{doc, router}, err
+})
+
+func loadContract(t testing.TB) *contract {
+	t.Helper()
+	c, err := theContract()
+	if err != nil {
+		t.Fatalf("openapi.yaml: %v", err)
+	}
+	return c
+}
+
+// do sends a request to h and holds request and response against the description of the interface.
+func do(t testing.TB, h http.Handler, method, path, body string) *httptest.ResponseRecorder {
+	t.Helper()
+	r := httptest.NewRequestWithContext(t.Context(), method, path, strings.NewReader(body))
+	if body != "" {
+		r.Header.Set("Content-Type", "application/json")
+	}
+	return ask(t, h, r)
+}
+
+// ask is do for a request that needs headers of its own.
+func ask(t testing.TB, h http.Handler, r *http.Request) *httptest.ResponseRecorder {
+	t.Helper()
+	var body []byte
+	if r.Body != nil {
+		var err error
+		if body, err = io.ReadAll(r.Body); err != nil {
+			t.Fatal(err)
+		}
+		r.Body = io.NopCloser(bytes.NewReader(body))
+	}
+	w := httptest.NewRecorder()
+	h.ServeHTTP(w, r)
+	if err := loadContract(t).check(r, body, w); err != nil {
+		t.Errorf("%s %s: %v\nanswer: %.2000s", r.Method, r.URL, err, w.Body)
+	}
+	return w
+}
+
+// testAPI is ready and logs nothing; tests that change an API make their own.
+var testAPI = sync.OnceValues(func() (*API, error) {
+	gin.SetMode(gin.ReleaseMode)
+	catalogue, err := props.NewCatalogue()
+	if err != nil {
+		return nil, err
+	}
+	a, err := New(Options{
+		Catalogue: catalogue, Registry: prometheus.NewPedanticRegistry(), Logger: slog.New(slog.DiscardHandler), Version: "devel",
+	})
+	if err == nil {
+		a.setReady(true)
+	}
+	return a, err
+})
+
+func testHandler(t testing.TB) http.Handler {
+	t.Helper()
+	a, err := testAPI()
+	if err != nil {
+		t.Fatal(err)
+	}
+	return a.Handler()
+}
+
+// check reports where a response is not what the description says, and where a request was answered that the description
+// forbids.
+func (c *contract) check(r *http.Request, body []byte, w *httptest.ResponseRecorder) error {
+	described := r
+	if r.Method == http.MethodHead { // as GET, without the body
+		described = r.Clone(r.Context())
+		described.Method = http.MethodGet
+	}
+	route, params, err := c.router.FindRoute(described)
+	if err != nil {
+		return c.checkUnrouted(err, r, w)
+	}
+	if r.Method == http.MethodHead {
+		if route.Operation.Responses.Status(w.Code) == nil {
+			return fmt.Errorf("status %d is not described", w.Code)
+		}
+		return nil
+	}
+	options := &openapi3filter.Options{IncludeResponseStatus: true, SkipSettingDefaults: true}
+	input := &openapi3filter.RequestValidationInput{Request: r, PathParams: params, Route: route, Options: options}
+	if err := openapi3filter.ValidateResponse(r.Context(), &openapi3filter.ResponseValidationInput{
+		RequestValidationInput: input, Options: options,
+		Status: w.Code, Header: w.Header(), Body: io.NopCloser(bytes.NewReader(w.Body.Bytes())),
+	}); err != nil {
+		return err
+	}
+	if w.Code >= 400 {
+		return checkProblem(r, w)
+	}
+	r.Body = io.NopCloser(bytes.NewReader(withoutNulls(body)))
+	if err := openapi3filter.ValidateRequest(r.Context(), input); err != nil {
+		return errors.Join(errors.New("a request was answered that the description forbids"), err)
+	}
+	return c.checkParts(r, body, w)
+}
+
+// checkUnrouted checks the answer to a path or a method that the description does not have.
+func (c *contract) checkUnrouted(cause error, r *http.Request, w *httptest.ResponseRecorder) error {
+	want, name := http.StatusNotFound, "NotFound"
+	if errors.Is(cause, routers.ErrMethodNotAllowed) {
+		want, name = http.StatusMethodNotAllowed, "MethodNotAllowed"
+		if w.Header().Get("Allow") == "" {
+			return errors.New("405 without Allow")
+		}
+	}
+	if w.Code != want {
+		return errors.Join(errors.New("status is not "+http.StatusText(want)), cause)
+	}
+	schema := c.doc.Components.Responses[name].Value.Content["application/problem+json"].Schema.Value
+	return errors.Join(visit(schema, w.Body.Bytes()), checkProblem(r, w))
+}
+
+// checkProblem checks what a schema cannot say about a problem document.
+func checkProblem(r *http.Request, w *httptest.ResponseRecorder) error {
+	var p struct {
+		Status   int
+		Instance string
+	}
+	if got := w.Header().Get("Content-Type"); got != "application/problem+json" {
+		return errors.New("the problem has Content-Type " + got)
+	}
+	if err := json.Unmarshal(w.Body.Bytes(), &p); err != nil {
+		return err
+	}
+	if p.Status != w.Code || p.Instance != r.URL.Path {
+		return errors.New("the problem disagrees with the response about status or instance")
+	}
+	return nil
+}
+
+// checkParts checks the lines of a stream, and that states are complete unless the request selected properties.
+func (c *contract) checkParts(r *http.Request, body []byte, w *httptest.ResponseRecorder) error {
+	schemas := c.doc.Components.Schemas
+	if w.Header().Get("Content-Type") == "application/x-ndjson" {
+		for line := range bytes.Lines(w.Body.Bytes()) {
+			if visit(schemas["StateItem"].Value, line) != nil {
+				if err := visit(schemas["FailedItem"].Value, line); err != nil {
+					return err
+				}
+			}
+		}
+		return nil
+	}
+	var selection struct{ Properties []string }
+	if json.Unmarshal(body, &selection) == nil && len(selection.Properties) > 0 || r.URL.Query().Has("properties") {
+		return nil
+	}
+	if r.Method == http.MethodGet {
+		if r.URL.Path != "/v1/states" || w.Code != http.StatusOK {
+			return nil
+		}
+		return visit(schemas["State"].Value, w.Body.Bytes())
+	}
+	var answer struct {
+		States []json.RawMessage
+		Rows   []struct{ Bubble, Dew json.RawMessage }
+	}
+	if json.Unmarshal(w.Body.Bytes(), &answer) != nil {
+		return nil // CSV
+	}
+	states := answer.States
+	for _, row := range answer.Rows {
+		states = append(states, row.Bubble, row.Dew)
+	}
+	for _, state := range states {
+		if state == nil || visit(schemas["FailedItem"].Value, state) == nil {
+			continue
+		}
+		if err := visit(schemas["State"].Value, state); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// visit validates JSON text against a schema.
+func visit(schema *openapi3.Schema, text []byte) error {
+	var v any
+	if err := json.Unmarshal(text, &v); err != nil {
+		return err
+	}
+	return schema.VisitJSON(v, openapi3.EnableJSONSchema2020())
+}
+
+// withoutNulls removes the members that are null from JSON text: in a request they stand for members left out.
+func withoutNulls(text []byte) []byte {
+	var v any
+	if json.Unmarshal(text, &v) != nil {
+		return text // a stream of lines
+	}
+	b, err := json.Marshal(pruned(v))
+	if err != nil {
+		return text
+	}
+	return b
+}
+
+func pruned(v any) any {
+	switch v := v.(type) {
+	case map[string]any:
+		for name, member := range v {
+			if member == nil {
+				delete(v, name)
+			} else {
+				v[name] = pruned(member)
+			}
+		}
+	case []any:
+		for i := range v {
+			v[i] = pruned(v[i])
+		}
+	}
+	return v
+}
