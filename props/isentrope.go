@@ -171,30 +171,32 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 	if math.IsNaN(u) || math.IsInf(u, 0) {
 		return r.notFinite(InternalEnergy, u)
 	}
-	lo, hi, err := r.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
-		_, err := r.PressureEnthalpy(r.pressure(lnP), h)
-		return side(err, Enthalpy, h, r)
+	// An isenthalp may leave the range of temperatures and come back. Walking it in a wider range leaves no gap.
+	wide := r.Extrapolate()
+	lo, hi, err := wide.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
+		_, err := wide.PressureEnthalpy(r.pressure(lnP), h)
+		return side(err, Enthalpy, h, wide)
 	})
 	if err != nil {
 		return err
 	}
-	grid := r.isenthalpPressures(h, lo, hi)
+	grid := wide.isenthalpPressures(h, lo, hi)
 	lowest, highest := math.Inf(1), math.Inf(-1)
 	worst, count := 0.0, 0
 	miss := func(lnP float64) (v, slope float64) {
-		s, err := r.PressureEnthalpy(r.pressure(lnP), h)
+		s, err := wide.PressureEnthalpy(r.pressure(lnP), h)
 		if err != nil {
 			return math.NaN(), math.NaN()
 		}
 		lowest, highest = math.Min(lowest, s.U), math.Max(highest, s.U)
-		return s.U - u, r.slopeAtEnthalpy(lnP, h)
+		return s.U - u, wide.slopeAtEnthalpy(lnP, h)
 	}
 	allRoots(grid, miss, func(lnP float64) {
 		s, err := r.PressureEnthalpy(r.pressure(lnP), h)
 		if err != nil {
 			return
 		}
-		slope := r.slopeAtEnthalpy(lnP, h)
+		slope := wide.slopeAtEnthalpy(lnP, h)
 		noise := 1e-15 * (math.Abs(s.H) + math.Abs(r.h0) + 10*r.Rs*s.T)
 		worst = math.Max(worst, noise/math.Abs(slope))
 		count++
