@@ -1,15 +1,23 @@
 package api
 
-// cycleRequest describes a vapour-compression cycle.
+import (
+	"strings"
+
+	"github.com/gin-gonic/gin"
+
+	"dewmark/service/cycle"
+)
+
+// cycleRequest describes a vapour-compression cycle. What belongs together is for the solver to say.
 type cycleRequest struct {
 	calculation
-	Layout       string        `json:"layout" validate:"max=64"`  // default single_stage
-	Purpose      string        `json:"purpose" validate:"max=64"` // heating (default) or cooling
-	Evaporation  evaporation   `json:"evaporation" validate:"required"`
-	Condensation condensation  `json:"condensation" validate:"required"`
+	Layout       string        `json:"layout"`  // default single_stage
+	Purpose      string        `json:"purpose"` // default heating
+	Evaporation  evaporation   `json:"evaporation"`
+	Condensation condensation  `json:"condensation"`
 	Compressor   compressor    `json:"compressor"`
-	Evaporator   exchangerDrop `json:"evaporator"`
-	Condenser    exchangerDrop `json:"condenser"`
+	Evaporator   drop          `json:"evaporator"`
+	Condenser    drop          `json:"condenser"`
 	Suction      suctionLine   `json:"suction_line"`
 	Discharge    dischargeLine `json:"discharge_line"`
 	Liquid       liquidLine    `json:"liquid_line"`
@@ -22,17 +30,18 @@ type cycleRequest struct {
 
 // evaporation takes temperature or pressure.
 type evaporation struct {
-	Temperature *float64 `json:"temperature"`
-	Pressure    *float64 `json:"pressure"`
-	Reference   string   `json:"reference"` // dew (default) or mean
-	Superheat   *float64 `json:"superheat"`
+	Temperature   *float64 `json:"temperature"`
+	Pressure      *float64 `json:"pressure"`
+	Reference     string   `json:"reference"` // default dew
+	Superheat     *float64 `json:"superheat"`
+	OutletQuality *float64 `json:"outlet_quality"` // of wet vapour, instead of superheat
 }
 
 // condensation takes temperature or pressure.
 type condensation struct {
 	Temperature *float64 `json:"temperature"`
 	Pressure    *float64 `json:"pressure"`
-	Reference   string   `json:"reference"`
+	Reference   string   `json:"reference"` // default dew
 	Subcooling  *float64 `json:"subcooling"`
 }
 
@@ -44,25 +53,25 @@ type compressor struct {
 	HeatLossFraction     *float64 `json:"heat_loss_fraction"`
 }
 
-// exchangerDrop is a pressure drop, given as pressure or as a drop of saturation temperature.
-type exchangerDrop struct {
-	PressureDrop              *float64 `json:"pressure_drop"`
-	TemperatureDropEquivalent *float64 `json:"temperature_drop_equivalent"`
+// drop is a loss of pressure, given as pressure or as a fall of saturation temperature.
+type drop struct {
+	PressureDrop              float64 `json:"pressure_drop"`
+	TemperatureDropEquivalent float64 `json:"temperature_drop_equivalent"`
 }
 
 type suctionLine struct {
-	exchangerDrop
-	TemperatureRise *float64 `json:"temperature_rise"`
+	drop
+	TemperatureRise float64 `json:"temperature_rise"`
 }
 
 type dischargeLine struct {
-	exchangerDrop
-	TemperatureDrop *float64 `json:"temperature_drop"`
+	drop
+	TemperatureDrop float64 `json:"temperature_drop"`
 }
 
 type liquidLine struct {
-	exchangerDrop
-	TemperatureChange *float64 `json:"temperature_change"`
+	drop
+	TemperatureChange float64 `json:"temperature_change"`
 }
 
 // size takes exactly one member.
@@ -89,11 +98,19 @@ type cycleResponse struct {
 	Cautions    []caution         `json:"cautions"`
 }
 
-// cycleState is a state with its label and place; the members of the state follow.
+// cycleState is a state with its label and place, which stand before the members of the state.
 type cycleState struct {
-	Label string `json:"label"`
-	Place string `json:"place"`
-	stateView
+	label, place string
+	state        stateView
+}
+
+// MarshalJSON writes the state as an object.
+func (s cycleState) MarshalJSON() ([]byte, error) {
+	o := begin(nil)
+	o.text("label", s.label)
+	o.text("place", s.place)
+	s.state.write(&o)
+	return o.end(), nil
 }
 
 type component struct {
@@ -129,4 +146,167 @@ type performance struct {
 type closure struct {
 	EnergyResidualFraction    float64  `json:"energy_residual_fraction"`
 	SmallestEntropyGeneration *float64 `json:"smallest_entropy_generation"`
+}
+
+// cycles answers POST /v1/cycles.
+func (a *API) cycles(c *gin.Context) (any, error) {
+	var req cycleRequest
+	if err := a.decode(c, &req); err != nil {
+		return nil, err
+	}
+	j, err := a.begin(&req.calculation)
+	if err != nil {
+		return nil, err
+	}
+	question, err := req.si(j)
+	if err != nil {
+		return nil, err
+	}
+	counter := &countingRefrigerant{Refrigerant: question.Refrigerant}
+	question.Refrigerant = counter
+	tally := a.metrics.tally("cycle")
+	defer tally.done()
+	solution, err := cycle.Solve(question)
+	a.metrics.iterations.WithLabelValues("cycle").Observe(float64(counter.states))
+	if err != nil {
+		p := voice{units: j.units, at: "#", r: j.r}.problem(err)
+		tally.count(p)
+		if p.Status >= 500 {
+			return nil, err
+		}
+		return nil, p
+	}
+	tally.count(nil)
+	return j.cycleResponse(solution), nil
+}
+
+// si turns the request into what the solver reads.
+func (r *cycleRequest) si(j *job) (*cycle.Request, error) {
+	u := j.units
+	var faults []MemberError
+	choice := func(pointer, detail string) {
+		faults = append(faults, MemberError{Pointer: pointer, Code: "not_allowed", Detail: detail})
+	}
+	layout, purpose := cycle.SingleStage, cycle.Heating
+	var ok bool
+	if r.Layout != "" {
+		if layout, ok = cycle.ParseLayout(r.Layout); !ok {
+			choice("#/layout", quote(r.Layout)+" is no layout; allowed are "+strings.Join(cycle.Layouts(), ", "))
+		}
+	}
+	if r.Purpose != "" {
+		if purpose, ok = cycle.ParsePurpose(r.Purpose); !ok {
+			choice("#/purpose", quote(r.Purpose)+" is no purpose; allowed are "+cycle.Heating.String()+", "+cycle.Cooling.String())
+		}
+	}
+	reference := func(name, pointer string) cycle.Reference {
+		if name == "" {
+			return cycle.Dew
+		}
+		ref, ok := cycle.ParseReference(name)
+		if !ok {
+			choice(pointer, quote(name)+" is no reference; allowed are "+cycle.Dew.String()+", "+cycle.Mean.String())
+		}
+		return ref
+	}
+	dropOf := func(d drop) cycle.Drop {
+		return cycle.Drop{
+			Pressure:              u.in(kindPressureDifference, d.PressureDrop),
+			TemperatureEquivalent: u.in(kindTemperatureDifference, d.TemperatureDropEquivalent),
+		}
+	}
+	question := &cycle.Request{
+		Refrigerant: j.r, Layout: layout, Purpose: purpose,
+		Evaporation: cycle.Evaporation{
+			Temperature: u.optional(kindTemperature, r.Evaporation.Temperature), Pressure: u.optional(kindPressure, r.Evaporation.Pressure),
+			Reference: reference(r.Evaporation.Reference, "#/evaporation/reference"),
+			Superheat: u.optional(kindTemperatureDifference, r.Evaporation.Superheat), OutletQuality: r.Evaporation.OutletQuality,
+		},
+		Condensation: cycle.Condensation{
+			Temperature: u.optional(kindTemperature, r.Condensation.Temperature), Pressure: u.optional(kindPressure, r.Condensation.Pressure),
+			Reference:  reference(r.Condensation.Reference, "#/condensation/reference"),
+			Subcooling: u.optional(kindTemperatureDifference, r.Condensation.Subcooling),
+		},
+		Compressor: cycle.Compressor{
+			IsentropicEfficiency: r.Compressor.IsentropicEfficiency,
+			DischargeTemperature: u.optional(kindTemperature, r.Compressor.DischargeTemperature),
+			VolumetricEfficiency: r.Compressor.VolumetricEfficiency,
+			HeatLossFraction:     r.Compressor.HeatLossFraction,
+		},
+		Evaporator:         cycle.Exchanger{Drop: dropOf(r.Evaporator)},
+		Condenser:          cycle.Exchanger{Drop: dropOf(r.Condenser)},
+		SuctionLine:        cycle.SuctionLine{Drop: dropOf(r.Suction.drop), TemperatureRise: u.in(kindTemperatureDifference, r.Suction.TemperatureRise)},
+		DischargeLine:      cycle.DischargeLine{Drop: dropOf(r.Discharge.drop), TemperatureDrop: u.in(kindTemperatureDifference, r.Discharge.TemperatureDrop)},
+		LiquidLine:         cycle.LiquidLine{Drop: dropOf(r.Liquid.drop), TemperatureChange: u.in(kindTemperatureDifference, r.Liquid.TemperatureChange)},
+		SourceTemperature:  u.optional(kindTemperature, r.SourceTemperature),
+		SinkTemperature:    u.optional(kindTemperature, r.SinkTemperature),
+		AmbientTemperature: u.optional(kindTemperature, r.AmbientTemperature),
+	}
+	if s := r.Size; s != nil {
+		question.Size = &cycle.Size{
+			Heating: u.optional(kindHeatFlow, s.Heating), Cooling: u.optional(kindHeatFlow, s.Cooling),
+			CompressorPower: u.optional(kindPower, s.CompressorPower), MassFlow: u.optional(kindMassFlow, s.MassFlow),
+			SweptVolumeFlow: u.optional(kindVolumeFlow, s.SweptVolumeFlow),
+		}
+	}
+	return question, invalid(faults)
+}
+
+// cycleKinds are the kinds of quantity in a cycle response, besides those of its states.
+var cycleKinds = []kind{kindMassFlow, kindVolumeFlow, kindHeatFlow, kindPower, kindEntropyFlow, kindVolumetricCapacity, kindPressureDifference}
+
+// cycleResponse turns a solution into the caller's units.
+func (j *job) cycleResponse(s *cycle.Solution) *cycleResponse {
+	u, p := j.units, &s.Performance
+	resp := &cycleResponse{
+		Refrigerant: j.basis.Refrigerant, Layout: s.Layout.String(), Purpose: s.Purpose.String(), Datum: j.basis.Datum,
+		Units: u.names(append(everything.kinds(), cycleKinds...)...), Site: u.site,
+		Performance: performance{
+			MassFlow: u.out(kindMassFlow, p.MassFlow), HeatingCapacity: u.out(kindHeatFlow, p.HeatingCapacity),
+			CoolingCapacity: u.out(kindHeatFlow, p.CoolingCapacity), CompressorPower: u.out(kindPower, p.CompressorPower),
+			COPHeating: p.COPHeating, COPCooling: p.COPCooling,
+			CarnotCOPHeating: known(p.CarnotCOPHeating), CarnotCOPCooling: known(p.CarnotCOPCooling),
+			SecondLawEfficiency: known(p.SecondLawEfficiency), IsentropicEfficiency: p.IsentropicEfficiency,
+			PressureRatio: p.PressureRatio, DischargeTemperature: u.out(kindTemperature, p.DischargeTemperature),
+			SuctionVolumeFlow: u.out(kindVolumeFlow, p.SuctionVolumeFlow), SweptVolumeFlow: known(u.out(kindVolumeFlow, p.SweptVolumeFlow)),
+			VolumetricHeatingCapacity: u.out(kindVolumetricCapacity, p.VolumetricHeatingCapacity),
+			VolumetricCoolingCapacity: u.out(kindVolumetricCapacity, p.VolumetricCoolingCapacity),
+		},
+		Closure: closure{
+			EnergyResidualFraction:    s.Closure.EnergyResidualFraction,
+			SmallestEntropyGeneration: known(u.out(kindEntropyFlow, s.Closure.SmallestEntropyGeneration)),
+		},
+	}
+	outside := 0
+	for _, at := range s.States {
+		v := j.view(at.State, everything)
+		if v.extrapolated {
+			outside++
+		}
+		resp.States = append(resp.States, cycleState{at.Label, at.Place, v})
+	}
+	for _, c := range s.Components {
+		resp.Components = append(resp.Components, component{
+			Name: c.Name, Inlets: append([]string{}, c.Inlets...), Outlets: append([]string{}, c.Outlets...),
+			MassFlow: u.out(kindMassFlow, c.MassFlow), Heat: u.out(kindHeatFlow, c.Heat), Work: u.out(kindPower, c.Work),
+			EntropyGeneration: known(u.out(kindEntropyFlow, c.EntropyGeneration)), ExergyDestruction: known(u.out(kindPower, c.ExergyDestruction)),
+		})
+	}
+	j.extrapolated(outside, len(s.States))
+	say := voice{units: u}.number
+	for _, c := range s.Cautions {
+		if c.Code == cycle.Extrapolated && outside > 0 {
+			continue // said above
+		}
+		detail := c.Message.Render(say)
+		if c.Field != "" {
+			detail = c.Field + ": " + detail
+		}
+		if c.Label != "" {
+			detail += " (state " + c.Label + ")"
+		}
+		j.caution(string(c.Code), detail)
+	}
+	resp.Basis, resp.Cautions = j.basis, j.cautions
+	return resp
 }

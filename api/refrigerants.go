@@ -1,5 +1,15 @@
 package api
 
+import (
+	"cmp"
+	"net/http"
+	"sync"
+
+	"github.com/gin-gonic/gin"
+
+	"dewmark/props"
+)
+
 type refrigerantsResponse struct {
 	Refrigerants []refrigerantSummary `json:"refrigerants"`
 	Units        map[string]string    `json:"units"`
@@ -27,7 +37,7 @@ type fraction struct {
 	MassFraction float64 `json:"mass_fraction"`
 }
 
-// refrigerantDetail is GET /v1/refrigerants/{designation}.
+// refrigerantDetail is the answer to GET /v1/refrigerants/{designation}.
 type refrigerantDetail struct {
 	refrigerantSummary
 	MolarMass              float64           `json:"molar_mass"`
@@ -37,10 +47,10 @@ type refrigerantDetail struct {
 	TripleTemperature      *float64          `json:"triple_temperature"`
 	DensityMax             float64           `json:"density_max"`
 	AcentricFactor         float64           `json:"acentric_factor"`
-	Datums                 []string          `json:"datums"`
+	Datums                 []string          `json:"datums"` // its default first
 	ODP                    *float64          `json:"odp"`
 	GWP                    gwp               `json:"gwp"`
-	LowerFlammabilityLimit *float64          `json:"lower_flammability_limit"` // kind density
+	LowerFlammabilityLimit *float64          `json:"lower_flammability_limit"` // kind density, like the three after it
 	ToxicityLimit          *float64          `json:"toxicity_limit"`
 	PracticalLimit         *float64          `json:"practical_limit"`
 	ConcentrationLimit     *float64          `json:"concentration_limit"`
@@ -72,4 +82,126 @@ type model struct {
 	Source       string `json:"source"`
 	Notes        string `json:"notes"`        // stated uncertainties among them
 	Verification string `json:"verification"` // how the coefficients were confirmed
+}
+
+// catalogueQuery is the query of both requests here.
+type catalogueQuery struct {
+	Units map[string]string `json:"units"`
+}
+
+// read takes q from a request and returns the units that it asks for.
+func (q *catalogueQuery) read(c *gin.Context) (*units, error) {
+	if err := decodeQuery(c.Request.URL.Query(), q); err != nil {
+		return nil, err
+	}
+	return newUnits(q.Units, nil)
+}
+
+// lists holds the encoded catalogue for each system of units, made when it is first wanted.
+type lists map[string]func() ([]byte, error)
+
+func (a *API) makeLists() {
+	a.lists = lists{}
+	for _, system := range systems {
+		a.lists[system] = sync.OnceValues(func() ([]byte, error) {
+			u, err := newUnits(map[string]string{"system": system}, nil)
+			if err != nil {
+				return nil, err
+			}
+			list, err := a.list(u)
+			if err != nil {
+				return nil, err
+			}
+			return encode(nil, list)
+		})
+	}
+}
+
+// listRefrigerants answers GET /v1/refrigerants.
+func (a *API) listRefrigerants(c *gin.Context) (any, error) {
+	var q catalogueQuery
+	u, err := q.read(c)
+	if err != nil {
+		return nil, err
+	}
+	if _, special := q.Units["system"]; len(q.Units) == 0 || special && len(q.Units) == 1 {
+		body, err := a.lists[cmp.Or(q.Units["system"], systems[0])]()
+		return raw(body), err
+	}
+	return a.list(u)
+}
+
+// list describes all refrigerants in the given units.
+func (a *API) list(u *units) (*refrigerantsResponse, error) {
+	resp := &refrigerantsResponse{Units: u.names(kindTemperature, kindPressure, kindDensity)}
+	for _, name := range a.catalogue.Designations() {
+		r, err := a.catalogue.Refrigerant(name, props.DefaultDatum)
+		if err != nil {
+			return nil, err
+		}
+		resp.Refrigerants = append(resp.Refrigerants, summarise(r, u))
+	}
+	return resp, nil
+}
+
+// describeRefrigerant answers GET /v1/refrigerants/{designation}.
+func (a *API) describeRefrigerant(c *gin.Context) (any, error) {
+	var q catalogueQuery
+	u, err := q.read(c)
+	if err != nil {
+		return nil, err
+	}
+	r, err := a.refrigerant(c.Param("designation"), "")
+	if err != nil {
+		p := problemFor(err)
+		if p.Status == http.StatusUnprocessableEntity { // here it is the resource that does not exist
+			p.Status = http.StatusNotFound
+			p.Errors = nil
+		}
+		return nil, p
+	}
+	rec, limits := r.Record(), r.Limits()
+	class := &rec.Classification
+	concentration := func(x *float64) *float64 {
+		if x == nil {
+			return nil
+		}
+		return new(tidy(u.out(kindDensity, *x)))
+	}
+	d := refrigerantDetail{
+		refrigerantSummary: summarise(r, u),
+		MolarMass:          tidy(u.out(kindMolarMass, r.MolarMass())), Formula: rec.Formula, CAS: rec.CAS, Aliases: append([]string{}, rec.Aliases...),
+		DensityMax: tidy(u.out(kindDensity, limits.DensityMax)), AcentricFactor: rec.Acentric, Datums: datumNames(r.Datums()),
+		ODP: class.ODP, GWP: gwp(class.GWP100),
+		LowerFlammabilityLimit: concentration(class.LowerFlammabilityLimit), ToxicityLimit: concentration(class.ToxicityLimit),
+		PracticalLimit: concentration(class.PracticalLimit), ConcentrationLimit: concentration(class.ConcentrationLimit),
+		TypicalUse: class.TypicalUse, Notes: class.Notes, Provenance: provenance(class.Provenance),
+		Model:    model{modelKind, rec.Source, rec.Notes, rec.Verification},
+		Units:    u.names(kindTemperature, kindPressure, kindDensity, kindMolarMass),
+		Cautions: []caution{safetyCaution},
+	}
+	if t := rec.TripleTemperature; t != nil {
+		d.TripleTemperature = new(tidy(u.out(kindTemperature, *t)))
+	}
+	if class.SafetyClass == nil {
+		d.Cautions = append(d.Cautions, caution{"safety_class_unknown", "no safety class is on record; treat the refrigerant as flammable and toxic until its data sheet says otherwise"})
+	}
+	return d, nil
+}
+
+var safetyCaution = caution{
+	"safety_data", "classification and limits are for orientation; the edition of the standard in force, the safety data sheet, local codes and a licensed person decide",
+}
+
+func summarise(r *props.Refrigerant, u *units) refrigerantSummary {
+	rec, limits, critical := r.Record(), r.Limits(), r.Critical()
+	s := refrigerantSummary{
+		Designation: rec.ID, Name: rec.Name, Kind: "pure", Composition: []fraction{{rec.ID, 1}},
+		SafetyClass: rec.Classification.SafetyClass, GWP100: rec.Classification.GWP100.AR6,
+		CriticalTemperature: u.out(kindTemperature, critical.T), CriticalPressure: u.out(kindPressure, critical.P),
+		CriticalDensity: u.out(kindDensity, critical.Rho), NormalBoilingPoint: known(u.out(kindTemperature, r.NormalBoilingPoint())),
+		TemperatureMin: tidy(u.out(kindTemperature, limits.TemperatureMin)), TemperatureMax: tidy(u.out(kindTemperature, limits.TemperatureMax)),
+		PressureMax: tidy(u.out(kindPressure, limits.PressureMax)),
+	}
+	return s
 }

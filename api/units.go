@@ -1,6 +1,14 @@
 package api
 
-import "math"
+import (
+	"cmp"
+	"fmt"
+	"maps"
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+)
 
 // kind is a kind of quantity: what one unit code is chosen for.
 type kind uint8
@@ -162,14 +170,247 @@ var powerUnits = []unit{
 	{code: "[HP]", scale: 550 * foot * poundMass * gn}, {code: "75.kgf.m/s", scale: 75 * gn},
 }
 
-// units converts between the wire and SI for one request. The zero value is not usable; see newUnits.
+// units converts between the wire and SI for one request.
 type units struct {
 	of      [kindCount]*unit
 	ambient float64 // Pa, what gauge pressures count from
+	site    *site   // as the response repeats it; nil without gauge pressures
 }
 
-// site says where gauge pressures are read. One of both is enough.
+// site says where gauge pressures are read, by one of its members. An ambient pressure is absolute, in the unit of
+// pressure.
 type site struct {
 	Altitude        *float64 `json:"altitude,omitempty"`
 	AmbientPressure *float64 `json:"ambient_pressure,omitempty"`
+}
+
+// systems are the values of units.system; the first is the default.
+var systems = []string{"SI", "IP"}
+
+// newUnits resolves the units member of a request: a system, with a code for each kind that differs from it. Differences
+// of temperature and pressure follow the temperature and the pressure unless they have a code of their own. It returns a
+// [*Problem] for an unknown kind or code, and for gauge pressures whose ambient pressure is not known.
+func newUnits(codes map[string]string, where *site) (*units, error) {
+	var faults []MemberError
+	fault := func(member, code, detail string) {
+		faults = append(faults, MemberError{Pointer: "#/" + member, Code: code, Detail: detail})
+	}
+	system := cmp.Or(codes["system"], systems[0])
+	if !slices.Contains(systems, system) {
+		fault("units/system", "not_allowed", quote(system)+" is no system of units; allowed are "+strings.Join(systems, ", "))
+	}
+	u := &units{}
+	for k := range kindCount {
+		q := &quantities[k]
+		code, given := codes[q.name]
+		if !given {
+			code = cmp.Or(u.inherited(k, codes), q.standard(system))
+		}
+		if u.of[k] = q.unit(code); u.of[k] == nil {
+			fault("units/"+q.name, "unknown_unit", quote(code)+" is no unit of "+q.name+"; allowed are "+q.codes())
+			u.of[k] = &q.units[0]
+		}
+	}
+	for _, name := range slices.Sorted(maps.Keys(codes)) {
+		if name != "system" && kindNamed(name) == kindNone {
+			fault("units/"+escapePointer(name), "unknown_member", quote(name)+" is no kind of quantity; allowed are system, "+strings.Join(kindNames(), ", "))
+		}
+	}
+	if len(faults) == 0 {
+		u.settle(where, fault)
+	}
+	return u, invalid(faults)
+}
+
+// inherited returns the code that a difference takes from the kind it is a difference of, or "".
+func (u *units) inherited(k kind, codes map[string]string) string {
+	switch {
+	case k == kindTemperatureDifference && codes["temperature"] != "":
+		if u.of[kindTemperature].scale == rankine {
+			return "[degR]"
+		}
+		return "K"
+	case k == kindPressureDifference && codes["pressure"] != "":
+		p := u.of[kindPressure]
+		for i := range quantities[k].units {
+			if d := &quantities[k].units[i]; d.scale == p.scale && (p.gauge || d.code == p.code) {
+				return d.code
+			}
+		}
+	}
+	return ""
+}
+
+// settle finds the ambient pressure that gauge pressures count from.
+func (u *units) settle(where *site, fault func(member, code, detail string)) {
+	gauge := u.of[kindPressure].gauge
+	switch {
+	case where == nil || where.Altitude == nil && where.AmbientPressure == nil:
+		if gauge {
+			fault("site", "missing", u.of[kindPressure].code+" is a gauge pressure; give site.altitude or site.ambient_pressure, which it counts from")
+		}
+		return
+	case where.Altitude != nil && where.AmbientPressure != nil:
+		fault("site/altitude", "surplus", "give altitude or ambient_pressure, not both")
+		return
+	case where.Altitude != nil:
+		z := u.in(kindLength, *where.Altitude)
+		if !(lowestSite <= z && z <= highestSite) {
+			fault("site/altitude", "out_of_range", fmt.Sprintf("%s is outside %s to %s", u.text(kindLength, z), u.text(kindLength, lowestSite), u.text(kindLength, highestSite)))
+			return
+		}
+		u.ambient = standardAtmosphere(z)
+	default:
+		p := *where.AmbientPressure * u.of[kindPressure].scale
+		if !(ambientMin <= p && p <= ambientMax) {
+			fault("site/ambient_pressure", "out_of_range", fmt.Sprintf("%s is outside %s to %s; the ambient pressure is absolute",
+				u.difference(p), u.difference(ambientMin), u.difference(ambientMax)))
+			return
+		}
+		u.ambient = p
+	}
+	if gauge {
+		ambient := u.ambient / u.of[kindPressure].scale
+		u.site = &site{Altitude: where.Altitude, AmbientPressure: &ambient}
+		if where.AmbientPressure != nil {
+			u.site.AmbientPressure = where.AmbientPressure
+		}
+	}
+}
+
+// in converts a number of the caller's to SI.
+func (u *units) in(k kind, number float64) float64 {
+	if k == kindNone {
+		return number
+	}
+	unit := u.of[k]
+	si := (number + unit.shift) * unit.scale
+	if unit.gauge {
+		si += u.ambient
+	}
+	return si
+}
+
+// optional is in for a number that may be absent.
+func (u *units) optional(k kind, number *float64) *float64 {
+	if number == nil {
+		return nil
+	}
+	return new(u.in(k, *number))
+}
+
+// out converts an SI value to the caller's unit.
+func (u *units) out(k kind, si float64) float64 {
+	if k == kindNone {
+		return si
+	}
+	unit := u.of[k]
+	if unit.gauge {
+		si -= u.ambient
+	}
+	return si/unit.scale - unit.shift
+}
+
+// text writes an SI value in the caller's unit for a message.
+func (u *units) text(k kind, si float64) string {
+	number := sixDigits(u.out(k, si))
+	if k == kindNone {
+		return number
+	}
+	return number + " " + u.of[k].code
+}
+
+// sixDigits writes x for a message, without an exponent where people would write none.
+func sixDigits(x float64) string {
+	short := strconv.FormatFloat(x, 'g', 6, 64)
+	if size := math.Abs(x); size < 1e-4 || size >= 1e10 {
+		return short
+	}
+	rounded, _ := strconv.ParseFloat(short, 64) // printed above
+	return strconv.FormatFloat(rounded, 'f', -1, 64)
+}
+
+// tidy takes off the rounding that a conversion, or a sum of steps of 0.1, leaves behind a number of few digits.
+func tidy(x float64) float64 {
+	t, _ := strconv.ParseFloat(strconv.FormatFloat(x, 'g', 14, 64), 64) // printed by us
+	return t
+}
+
+// difference writes an absolute pressure of the site for a message.
+func (u *units) difference(p float64) string {
+	unit := u.of[kindPressure]
+	return sixDigits(p/unit.scale) + " " + strings.TrimSuffix(unit.code, "(g)")
+}
+
+// names returns the code in force for each kind.
+func (u *units) names(kinds ...kind) map[string]string {
+	codes := make(map[string]string, len(kinds))
+	for _, k := range kinds {
+		if k != kindNone {
+			codes[quantities[k].name] = u.of[k].code
+		}
+	}
+	return codes
+}
+
+// standard returns the code that system stands for.
+func (q *quantity) standard(system string) string {
+	if system == "IP" {
+		return q.ip
+	}
+	return q.si
+}
+
+func (q *quantity) unit(code string) *unit {
+	for i := range q.units {
+		if q.units[i].code == code {
+			return &q.units[i]
+		}
+	}
+	return nil
+}
+
+func (q *quantity) codes() string {
+	codes := make([]string, len(q.units))
+	for i, u := range q.units {
+		codes[i] = u.code
+	}
+	return strings.Join(codes, ", ")
+}
+
+// kindNamed returns the kind with that name in the units object, or kindNone.
+func kindNamed(name string) kind {
+	for k := range kindCount {
+		if quantities[k].name == name {
+			return k
+		}
+	}
+	return kindNone
+}
+
+func kindNames() []string {
+	names := make([]string, kindCount)
+	for k := range kindCount {
+		names[k] = quantities[k].name
+	}
+	return names
+}
+
+// Where gauges are read. The altitudes are those that the lowest layer of the standard atmosphere covers on land; the
+// pressures hold every mine and mountain and few mistaken units.
+const (
+	lowestSite, highestSite = -500., 11000. // m
+	ambientMin, ambientMax  = 20e3, 130e3   // Pa
+)
+
+// standardAtmosphere returns the pressure in Pa at altitude z in m from -500 to 11000, by ISO 2533:1975, the ICAO
+// standard atmosphere. Weather moves the real one by some 3 kPa either way.
+func standardAtmosphere(z float64) float64 {
+	const (
+		p0    = 101325.           // Pa
+		T0    = 288.15            // K
+		lapse = 0.0065            // K/m
+		R     = 8314.32 / 28.9644 // J/(kg K), with the gas constant of that standard
+	)
+	return p0 * math.Pow(1-lapse*z/T0, gn/(R*lapse))
 }

@@ -1,0 +1,149 @@
+// Package api serves dewmark over HTTP: routes, request and response schemas, validation, problem details, units at the
+// edge, metrics and limits. It computes nothing itself: states come from props, cycles from service/cycle.
+//
+// Every calculating endpoint is a pure function of its request, so that the same request gives the same bytes.
+package api
+
+import (
+	"cmp"
+	"context"
+	"errors"
+	"log/slog"
+	"net/http"
+	"net/http/pprof"
+	"sync/atomic"
+	"time"
+
+	"github.com/gin-gonic/gin"
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/promhttp"
+
+	"dewmark/props"
+)
+
+// Options holds what an API needs. Catalogue, Registry, Logger and Version are required.
+type Options struct {
+	Catalogue *props.Catalogue
+	Registry  *prometheus.Registry // receives the metrics of this API and serves them to the admin handler
+	Logger    *slog.Logger
+	Version   string           // of the service; part of every answer
+	Now       func() time.Time // clock of the request log and the deadlines; default time.Now
+
+	MaxBody       int64 // bytes of a JSON request; default DefaultMaxBody
+	MaxPoints     int   // items of a batch; default DefaultMaxPoints
+	MaxConcurrent int   // calculations under way before others are turned away; default DefaultMaxConcurrent
+}
+
+// The default limits. A batch of DefaultMaxPoints with long ids and all digits has 1.5 MB.
+const (
+	DefaultMaxBody       = 2_000_000
+	DefaultMaxPoints     = 10_000
+	DefaultMaxConcurrent = 256
+)
+
+// API answers the requests of dewmark's clients. It is safe for concurrent use.
+type API struct {
+	engine    *gin.Engine
+	catalogue *props.Catalogue
+	registry  *prometheus.Registry
+	log       *slog.Logger
+	now       func() time.Time
+	version   string
+	metrics   *metrics
+	lists     lists
+	ready     atomic.Bool
+
+	maxBody   int64
+	maxPoints int
+	slots     chan struct{} // one taken by each calculation under way
+}
+
+// New returns an API that is not ready yet; see [API.Warm].
+func New(o Options) (*API, error) {
+	switch {
+	case o.Catalogue == nil:
+		return nil, errors.New("api: no catalogue")
+	case o.Registry == nil:
+		return nil, errors.New("api: no registry")
+	case o.Logger == nil:
+		return nil, errors.New("api: no logger")
+	case o.Version == "":
+		return nil, errors.New("api: no version")
+	case o.MaxBody < 0 || o.MaxPoints < 0 || o.MaxConcurrent < 0:
+		return nil, errors.New("api: a limit is negative")
+	}
+	a := &API{
+		engine: gin.New(), catalogue: o.Catalogue, registry: o.Registry, log: o.Logger, version: o.Version, now: o.Now,
+		maxBody:   cmp.Or(o.MaxBody, DefaultMaxBody),
+		maxPoints: cmp.Or(o.MaxPoints, DefaultMaxPoints),
+		slots:     make(chan struct{}, cmp.Or(o.MaxConcurrent, DefaultMaxConcurrent)),
+	}
+	if a.now == nil {
+		a.now = time.Now
+	}
+	var err error
+	if a.metrics, err = newMetrics(o.Registry, o.Version, a.slots); err != nil {
+		return nil, err
+	}
+	a.makeLists()
+	a.routes()
+	return a, nil
+}
+
+func (a *API) routes() {
+	e := a.engine
+	e.HandleMethodNotAllowed = true
+	e.RedirectTrailingSlash = false
+	e.Use(a.observe, a.recover)
+	e.NoRoute(a.problem(refusal(http.StatusNotFound, "not-found", "there is no such resource; /openapi.yaml describes all")))
+	e.NoMethod(func(c *gin.Context) {
+		detail := c.Request.Method + " is not possible here; allowed: " + c.Writer.Header().Get("Allow")
+		a.problem(refusal(http.StatusMethodNotAllowed, "method-not-allowed", detail))(c)
+	})
+	get := func(path string, h ...gin.HandlerFunc) {
+		e.GET(path, h...)
+		e.HEAD(path, h...)
+	}
+	get("/livez", a.handle(a.live))
+	get("/readyz", a.handle(a.readiness))
+	get("/openapi.yaml", a.cached(a.descriptionYAML, "application/yaml"))
+	get("/openapi.json", a.cached(a.descriptionJSON, mediaJSON))
+	get("/v1/refrigerants", a.cached(a.listRefrigerants, mediaJSON))
+	get("/v1/refrigerants/:designation", a.cached(a.describeRefrigerant, mediaJSON))
+	get("/v1/states", a.limit, a.cached(a.singleState, mediaJSON))
+	e.POST("/v1/states", a.limit, a.postStates)
+	e.POST("/v1/saturation", a.limit, a.handle(a.saturation, mediaJSON, mediaCSV))
+	e.POST("/v1/cycles", a.limit, a.handle(a.cycles))
+}
+
+// Handler answers clients.
+func (a *API) Handler() http.Handler { return a.engine }
+
+// AdminHandler answers operators: metrics for Prometheus and the profiler. It does not belong on a public address.
+func (a *API) AdminHandler() http.Handler {
+	mux := http.NewServeMux()
+	mux.Handle("GET /metrics", promhttp.HandlerFor(a.registry, promhttp.HandlerOpts{EnableOpenMetrics: true, Registry: a.registry}))
+	mux.HandleFunc("GET /debug/pprof/", pprof.Index)
+	mux.HandleFunc("GET /debug/pprof/cmdline", pprof.Cmdline)
+	mux.HandleFunc("GET /debug/pprof/profile", pprof.Profile)
+	mux.HandleFunc("GET /debug/pprof/symbol", pprof.Symbol)
+	mux.HandleFunc("GET /debug/pprof/trace", pprof.Trace)
+	return mux
+}
+
+// Warm prepares what would make the first requests slow, then turns the API ready. Requests are answered meanwhile.
+func (a *API) Warm(ctx context.Context) error {
+	if err := a.catalogue.Warm(ctx); err != nil {
+		return err
+	}
+	a.setReady(true)
+	return nil
+}
+
+// Drain turns the API not ready, so that no new traffic is sent to it. It goes on answering.
+func (a *API) Drain() { a.setReady(false) }
+
+func (a *API) setReady(ready bool) {
+	a.ready.Store(ready)
+	a.metrics.setReady(ready)
+}

@@ -1,0 +1,107 @@
+package api
+
+import (
+	"errors"
+	"fmt"
+	"strings"
+
+	"dewmark/props"
+)
+
+// calculation holds what all requests that compute share.
+type calculation struct {
+	Refrigerant string            `json:"refrigerant" validate:"required,max=64"`
+	Datum       string            `json:"datum"` // default IIR, or triple_point where the refrigerant has no IIR
+	Units       map[string]string `json:"units"` // default {"system": "SI"}
+	Site        *site             `json:"site"`  // needed by gauge pressures
+	Extrapolate bool              `json:"extrapolate"`
+}
+
+// basis names what a result rests on.
+type basis struct {
+	Refrigerant  string `json:"refrigerant"`
+	Model        string `json:"model"`
+	Source       string `json:"source"` // of the equation
+	Datum        string `json:"datum"`
+	Extrapolated bool   `json:"extrapolated"` // some result lies outside the validity of the equation
+	Version      string `json:"version"`      // of the service
+}
+
+// caution is a reservation about a result.
+type caution struct {
+	Code   string `json:"code"`
+	Detail string `json:"detail"`
+}
+
+// modelKind is what all refrigerants are computed from.
+const modelKind = "equation of state explicit in the Helmholtz energy"
+
+// job is a calculation whose refrigerant, datum and units are known.
+type job struct {
+	r           *props.Refrigerant
+	extrapolate bool
+	units       *units
+	basis       basis
+	cautions    []caution
+}
+
+// begin resolves what a request says of its refrigerant, datum and units.
+func (a *API) begin(c *calculation) (*job, error) {
+	u, err := newUnits(c.Units, c.Site)
+	if err != nil {
+		return nil, err
+	}
+	r, err := a.refrigerant(c.Refrigerant, c.Datum)
+	if err != nil {
+		return nil, err
+	}
+	if c.Extrapolate {
+		r = r.Extrapolate()
+	}
+	j := &job{r: r, extrapolate: c.Extrapolate, units: u, cautions: []caution{}, basis: basis{
+		Refrigerant: r.Designation(), Model: modelKind, Source: r.Record().Source, Datum: r.Datum().String(), Version: a.version,
+	}}
+	if c.Datum == "" && r.Datum() != props.IIR {
+		j.caution("datum_not_defined", r.Designation()+" has no saturated liquid at 0 °C, so that IIR, the datum by default, is not defined; "+
+			"enthalpy, entropy and internal energy count from "+r.Datum().String())
+	}
+	return j, nil
+}
+
+// refrigerant finds the refrigerant of a request, counting from the datum with that name.
+func (a *API) refrigerant(name, datum string) (*props.Refrigerant, error) {
+	d, ok := props.ParseDatum(datum)
+	if !ok && datum != "" {
+		return nil, invalid([]MemberError{{
+			Pointer: "#/datum", Code: "not_allowed", Detail: quote(datum) + " is no datum; allowed are " + strings.Join(datumNames(allDatums), ", "),
+		}})
+	}
+	r, err := a.catalogue.Refrigerant(name, d)
+	if err == nil {
+		return r, nil
+	}
+	if e, ok := errors.AsType[*props.DatumError](err); ok && d == props.DefaultDatum {
+		return a.catalogue.Refrigerant(name, e.Allowed[0]) // the request leaves the choice to us
+	}
+	return nil, voice{}.problem(err)
+}
+
+var allDatums = []props.Datum{props.IIR, props.ASHRAE, props.NBP, props.TriplePoint}
+
+func datumNames(datums []props.Datum) []string {
+	names := make([]string, len(datums))
+	for i, d := range datums {
+		names[i] = d.String()
+	}
+	return names
+}
+
+func (j *job) caution(code, detail string) { j.cautions = append(j.cautions, caution{code, detail}) }
+
+// extrapolated says that count of all states lie outside the validity of the equation.
+func (j *job) extrapolated(count, all int) {
+	if count > 0 {
+		j.basis.Extrapolated = true
+		j.caution("extrapolated", fmt.Sprintf("%d of %d states lie outside the validity of the equation of state and are marked; their uncertainty is not known", count, all))
+	}
+}

@@ -1,0 +1,92 @@
+package api
+
+import (
+	"bytes"
+	"encoding/json"
+	"math"
+	"strconv"
+)
+
+// object writes a JSON object member by member. It serves states, which are too many for reflection.
+type object struct{ b []byte }
+
+// begin opens an object at the end of b.
+func begin(b []byte) object { return object{append(b, '{')} }
+
+// end closes the object and returns the text.
+func (o *object) end() []byte { return append(o.b, '}') }
+
+// name writes the name of the next member.
+func (o *object) name(name string) {
+	if o.b[len(o.b)-1] != '{' {
+		o.b = append(o.b, ',')
+	}
+	o.b = append(o.b, '"')
+	o.b = append(o.b, name...) // our own names need no escapes
+	o.b = append(o.b, '"', ':')
+}
+
+// number writes a number, or null when it is not finite.
+func (o *object) number(name string, x float64) {
+	o.name(name)
+	o.b = appendNumber(o.b, x)
+}
+
+func (o *object) text(name, text string) {
+	o.name(name)
+	o.b = appendText(o.b, text)
+}
+
+// value writes any value that [encoding/json] can.
+func (o *object) value(name string, v any) error {
+	o.name(name)
+	var err error
+	o.b, err = appendValue(o.b, v)
+	return err
+}
+
+// appendValue writes v as [encoding/json] does, characters that only HTML minds left alone.
+func appendValue(b []byte, v any) ([]byte, error) {
+	out := bytes.NewBuffer(b)
+	enc := json.NewEncoder(out)
+	enc.SetEscapeHTML(false)
+	err := enc.Encode(v)
+	return bytes.TrimSuffix(out.Bytes(), []byte{'\n'}), err
+}
+
+// appendNumber writes x in the shortest form that reads back as x, laid out as [json.Marshal] does.
+func appendNumber(b []byte, x float64) []byte {
+	size := math.Abs(x)
+	switch {
+	case math.IsNaN(x) || math.IsInf(x, 0):
+		return append(b, "null"...)
+	case x != 0 && (size < 1e-6 || size >= 1e21):
+		b = strconv.AppendFloat(b, x, 'e', -1, 64)
+		if n := len(b); b[n-4] == 'e' && b[n-3] == '-' && b[n-2] == '0' { // e-09 is e-9
+			b = append(b[:n-2], b[n-1])
+		}
+		return b
+	}
+	return strconv.AppendFloat(b, x, 'f', -1, 64)
+}
+
+// appendText writes a JSON string.
+func appendText(b []byte, text string) []byte {
+	for i := range len(text) {
+		if c := text[i]; c < ' ' || c == '"' || c == '\\' || c >= 0x7f {
+			b, _ = appendValue(b, text) // a string cannot fail
+			return b
+		}
+	}
+	b = append(b, '"')
+	b = append(b, text...)
+	return append(b, '"')
+}
+
+// known returns a pointer to x for a member that is null when x is not a number.
+func known(x float64) *float64 {
+	if math.IsNaN(x) || math.IsInf(x, 0) {
+		return nil
+	}
+	return &x
+}

@@ -1,0 +1,117 @@
+package api
+
+import (
+	"errors"
+	"runtime"
+	"time"
+
+	"github.com/gin-gonic/gin"
+	"github.com/prometheus/client_golang/prometheus"
+	"github.com/prometheus/client_golang/prometheus/collectors"
+)
+
+// metrics are what the service tells Prometheus about itself. Label values come from closed sets.
+type metrics struct {
+	requests     *prometheus.CounterVec
+	latency      *prometheus.HistogramVec
+	calculations *prometheus.CounterVec
+	iterations   *prometheus.HistogramVec
+	batches      *prometheus.HistogramVec
+	refused      prometheus.Counter
+	ready        prometheus.Gauge
+}
+
+func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*metrics, error) {
+	m := &metrics{
+		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "dewmark_http_requests_total", Help: "HTTP requests answered.",
+		}, []string{"route", "method", "code"}),
+		latency: prometheus.NewHistogramVec(prometheus.HistogramOpts{
+			Name: "dewmark_http_request_duration_seconds", Help: "Time to serve an HTTP request.",
+			Buckets:                     []float64{.0001, .00025, .0005, .001, .0025, .005, .01, .025, .05, .1, .25, 1, 2.5},
+			NativeHistogramBucketFactor: 1.1, NativeHistogramMaxBucketNumber: 100, NativeHistogramMinResetDuration: time.Hour,
+		}, []string{"route", "method", "code"}),
+		calculations: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "dewmark_calculations_total", Help: "States, saturation rows and cycles computed, by what came of them.",
+		}, []string{"kind", "outcome"}),
+		iterations: prometheus.NewHistogramVec(prometheus.HistogramOpts{
+			Name: "dewmark_solver_iterations", Help: "States that a cycle solver asked for until it had its answer.",
+			Buckets: prometheus.ExponentialBuckets(4, 2, 12),
+		}, []string{"kind"}),
+		batches: prometheus.NewHistogramVec(prometheus.HistogramOpts{
+			Name: "dewmark_batch_items", Help: "Items of a batch request.",
+			Buckets: []float64{1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000, 10000, 100000, 1000000},
+		}, []string{"route"}),
+		refused: prometheus.NewCounter(prometheus.CounterOpts{
+			Name: "dewmark_http_requests_refused_total", Help: "HTTP requests turned away because too many calculations were under way.",
+		}),
+		ready: prometheus.NewGauge(prometheus.GaugeOpts{
+			Name: "dewmark_ready", Help: "1 while the service asks for traffic.",
+		}),
+	}
+	build := prometheus.NewGauge(prometheus.GaugeOpts{
+		Name: "dewmark_build_info", Help: "Always 1; its labels name the build.",
+		ConstLabels: prometheus.Labels{"version": version, "goversion": runtime.Version(), "goarch": runtime.GOARCH},
+	})
+	build.Set(1)
+	underWay := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
+		Name: "dewmark_calculations_in_progress", Help: "Calculating requests under way.",
+	}, func() float64 { return float64(len(slots)) })
+	var errs []error
+	for _, c := range []prometheus.Collector{
+		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, build, underWay,
+		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
+	} {
+		errs = append(errs, r.Register(c))
+	}
+	return m, errors.Join(errs...)
+}
+
+func (m *metrics) request(route, method, code string, seconds float64) {
+	m.requests.WithLabelValues(route, method, code).Inc()
+	m.latency.WithLabelValues(route, method, code).Observe(seconds)
+}
+
+func (m *metrics) batch(c *gin.Context, items int) {
+	m.batches.WithLabelValues(c.FullPath()).Observe(float64(items))
+}
+
+func (m *metrics) setReady(ready bool) {
+	if ready {
+		m.ready.Set(1)
+	} else {
+		m.ready.Set(0)
+	}
+}
+
+// tally counts the calculations of one request by outcome.
+type tally struct {
+	metrics *metrics
+	kind    string
+	good    int
+	bad     map[string]int
+}
+
+func (m *metrics) tally(kind string) *tally { return &tally{metrics: m, kind: kind} }
+
+// count counts one calculation, which p stands for when it failed.
+func (t *tally) count(p *Problem) {
+	if p == nil {
+		t.good++
+		return
+	}
+	if t.bad == nil {
+		t.bad = map[string]int{}
+	}
+	t.bad[p.outcome()]++
+}
+
+// done hands the counts over.
+func (t *tally) done() {
+	if t.good > 0 {
+		t.metrics.calculations.WithLabelValues(t.kind, "ok").Add(float64(t.good))
+	}
+	for outcome, n := range t.bad {
+		t.metrics.calculations.WithLabelValues(t.kind, outcome).Add(float64(n))
+	}
+}

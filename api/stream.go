@@ -1,0 +1,178 @@
+package api
+
+import (
+	"bufio"
+	"bytes"
+	"errors"
+	"io"
+	"net/http"
+	"strconv"
+	"time"
+	"unicode/utf16"
+
+	"github.com/gin-gonic/gin"
+)
+
+// statesHead is the first line of a stream of points: all of a request but its points.
+type statesHead struct {
+	calculation
+	Properties []string `json:"properties" validate:"max=64"`
+}
+
+const (
+	maxLine = 64 << 10 // bytes; a point has a few hundred at most
+	// patience is how long a stream may stand still in either direction.
+	patience = time.Minute
+)
+
+// headHeader carries what a stream or a table of lines has no line for: refrigerant, datum, units, basis and cautions, as
+// JSON in ASCII.
+const headHeader = "Dewmark-Head"
+
+// postStates answers POST /v1/states in the form of the request.
+func (a *API) postStates(c *gin.Context) {
+	if wantMedia(c, mediaLines) != nil {
+		a.handle(a.states)(c)
+		return
+	}
+	if err := a.streamStates(c); err != nil {
+		a.fail(c, err)
+	}
+}
+
+// streamStates answers a stream of points, one line in, one line out, in memory that does not grow. It returns an error
+// while nothing is sent yet.
+func (a *API) streamStates(c *gin.Context) error {
+	if negotiate(c.GetHeader("Accept"), []string{mediaLines}) == "" {
+		return refusal(http.StatusNotAcceptable, "not-acceptable", "Accept does not admit "+mediaLines+", in which a stream is answered")
+	}
+	lines := lineReader{bufio.NewReaderSize(c.Request.Body, maxLine)}
+	first, err := lines.next()
+	if err != nil {
+		return malformed("#", "the first line holds no head")
+	}
+	var head statesHead
+	if err := a.read(first, &head); err != nil {
+		return err
+	}
+	j, err := a.begin(&head.calculation)
+	if err != nil {
+		return err
+	}
+	shown, err := selectFields(head.Properties)
+	if err != nil {
+		return err
+	}
+	if err := j.announce(c, shown.kinds()); err != nil {
+		return err
+	}
+	connection := http.NewResponseController(c.Writer)
+	_ = connection.EnableFullDuplex() // without it HTTP/1 would read all before the first answer; recorders of tests cannot
+	c.Header("Content-Type", mediaLines)
+	c.Status(http.StatusOK)
+
+	tally := a.metrics.tally("state")
+	defer tally.done()
+	out := bufio.NewWriterSize(c.Writer, maxLine)
+	var buffer []byte
+	for n := 0; ; n++ {
+		if !lines.waiting() { // about to wait for the client: hand over what is done
+			if out.Flush() != nil {
+				return nil // the client is gone
+			}
+			_ = connection.Flush()
+			_ = connection.SetReadDeadline(a.now().Add(patience))
+		}
+		line, err := lines.next()
+		if errors.Is(err, io.EOF) {
+			a.metrics.batch(c, n)
+			_ = out.Flush()
+			return nil
+		}
+		if err != nil && !errors.Is(err, bufio.ErrBufferFull) {
+			_ = out.Flush()
+			panic(http.ErrAbortHandler) // the request broke off; the answer must not look complete
+		}
+		item := j.line(line, err, n, shown)
+		tally.count(item.problem)
+		if buffer, err = item.encode(buffer[:0]); err != nil {
+			panic(err) // a state has no value that JSON has not
+		}
+		_ = connection.SetWriteDeadline(a.now().Add(patience))
+		if _, err := out.Write(append(buffer, '\n')); err != nil {
+			return nil // the client is gone
+		}
+	}
+}
+
+// line answers one line of a stream. Its problems point as those of a batch do.
+func (j *job) line(text []byte, err error, n int, shown *selection) stateItem {
+	pointer := "#/points/" + strconv.Itoa(n)
+	if err != nil {
+		return stateItem{problem: invalidItem(MemberError{Pointer: pointer, Code: "too_long", Detail: "a line may have " + strconv.Itoa(maxLine) + " bytes at most"})}
+	}
+	var p point
+	if err := decodeJSON(text, &p); err != nil {
+		return stateItem{id: shorten(p.ID), problem: problemFor(err).below(pointer)}
+	}
+	return j.item(&p, pointer, shown)
+}
+
+// lineReader reads lines that are not empty.
+type lineReader struct{ *bufio.Reader }
+
+// next returns the next line. It returns [bufio.ErrBufferFull] for one that is too long, having read over it.
+func (l lineReader) next() ([]byte, error) {
+	for {
+		line, err := l.ReadSlice('\n')
+		tooLong := err
+		for errors.Is(err, bufio.ErrBufferFull) {
+			_, err = l.ReadSlice('\n')
+		}
+		switch line = bytes.TrimSpace(line); {
+		case err != nil && !errors.Is(err, io.EOF):
+			return nil, err
+		case errors.Is(tooLong, bufio.ErrBufferFull):
+			return nil, tooLong
+		case len(line) > 0:
+			return line, nil // the end of the body shows at the next call
+		case err != nil:
+			return nil, err
+		}
+	}
+}
+
+// waiting reports whether a whole line has arrived already.
+func (l lineReader) waiting() bool {
+	arrived, _ := l.Peek(l.Buffered())
+	return bytes.IndexByte(arrived, '\n') >= 0
+}
+
+// announce sends what lines have no place for in a header.
+func (j *job) announce(c *gin.Context, kinds []kind) error {
+	o := begin(nil)
+	if err := j.head(&o, kinds); err != nil {
+		return err
+	}
+	if err := j.tail(&o); err != nil {
+		return err
+	}
+	c.Header(headHeader, asciiJSON(o.end()))
+	return nil
+}
+
+// asciiJSON escapes what is not ASCII in JSON text.
+func asciiJSON(text []byte) string {
+	const hex = "0123456789abcdef"
+	out := make([]byte, 0, len(text))
+	for _, r := range string(text) {
+		if r < 0x7f {
+			out = append(out, byte(r))
+			continue
+		}
+		for _, u := range utf16.AppendRune(nil, r) {
+			out = append(out, '\\', 'u', hex[u>>12], hex[u>>8&15], hex[u>>4&15], hex[u&15])
+		}
+	}
+	return string(out)
+}

@@ -1,0 +1,198 @@
+package api
+
+import (
+	"math"
+	"strconv"
+	"strings"
+
+	"dewmark/props"
+)
+
+// solved is a state with what its surroundings say about it.
+type solved struct {
+	props.State
+	bubble, dew           float64 // K, saturation temperatures at its pressure; NaN where there are none
+	superheat, subcooling float64 // K; NaN in the wrong phase
+}
+
+// surround adds the saturation at the state's pressure when it is wanted.
+func surround(r *props.Refrigerant, s props.State, wanted bool) solved {
+	nan := math.NaN()
+	around := solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan}
+	if !wanted {
+		return around
+	}
+	T := s.T // of a state inside the dome, its ends included
+	if math.IsNaN(s.Quality) {
+		var err error
+		if T, err = r.SaturationTemperature(s.P); err != nil {
+			return around
+		}
+	}
+	around.bubble, around.dew = T, T
+	switch {
+	case s.Quality == 0:
+		around.subcooling = 0
+	case s.Quality == 1:
+		around.superheat = 0
+	case s.Phase == props.Liquid:
+		around.subcooling = T - s.T
+	case s.Phase == props.Vapour:
+		around.superheat = s.T - T
+	}
+	return around
+}
+
+// stateField is a member of a state.
+type stateField struct {
+	name  string
+	kind  kind
+	value func(*solved) float64 // SI; NaN where the state has no such property
+}
+
+// stateFields are the members of a state in the order they are written.
+var stateFields = [...]stateField{
+	{"phase", kindNone, nil}, // the one member that is no number; always shown
+	{"temperature", kindTemperature, func(s *solved) float64 { return s.T }},
+	{"pressure", kindPressure, func(s *solved) float64 { return s.P }},
+	{"density", kindDensity, func(s *solved) float64 { return s.Rho }},
+	{"specific_volume", kindSpecificVolume, func(s *solved) float64 { return s.V() }},
+	{"enthalpy", kindEnthalpy, func(s *solved) float64 { return s.H }},
+	{"entropy", kindEntropy, func(s *solved) float64 { return s.S }},
+	{"internal_energy", kindEnthalpy, func(s *solved) float64 { return s.U }},
+	{"quality", kindNone, func(s *solved) float64 { return s.Quality }},
+	{"isobaric_heat_capacity", kindEntropy, func(s *solved) float64 { return s.Cp }},
+	{"isochoric_heat_capacity", kindEntropy, func(s *solved) float64 { return s.Cv }},
+	{"speed_of_sound", kindVelocity, func(s *solved) float64 { return s.W }},
+	{"compressibility_factor", kindNone, func(s *solved) float64 { return s.Z }},
+	{"isentropic_exponent", kindNone, func(s *solved) float64 { return s.IsentropicExponent() }},
+	{"joule_thomson_coefficient", kindJouleThomson, func(s *solved) float64 { return s.JouleThomson() }},
+	{"isothermal_compressibility", kindCompressibility, func(s *solved) float64 { return s.IsothermalCompressibility() }},
+	{"volume_expansivity", kindExpansivity, func(s *solved) float64 { return s.Expansivity() }},
+	{"viscosity", kindViscosity, notYet},
+	{"thermal_conductivity", kindThermalConductivity, notYet},
+	{"prandtl_number", kindNone, notYet},
+	{"surface_tension", kindSurfaceTension, notYet},
+	{"dew_temperature", kindTemperature, func(s *solved) float64 { return s.dew }},
+	{"bubble_temperature", kindTemperature, func(s *solved) float64 { return s.bubble }},
+	{"superheat", kindTemperatureDifference, func(s *solved) float64 { return s.superheat }},
+	{"subcooling", kindTemperatureDifference, func(s *solved) float64 { return s.subcooling }},
+}
+
+// notYet stands for the transport properties, which no model computes so far.
+func notYet(*solved) float64 { return math.NaN() }
+
+// firstSaturationField is the first of the fields that the saturation around a state decides; the rest follow it.
+var firstSaturationField = fieldNamed("dew_temperature")
+
+// selection is what a request wants to see of a state besides its phase.
+type selection struct {
+	saturation bool  // some field needs the saturation around the state
+	fields     []int // of stateFields, rising
+}
+
+// everything selects all members.
+var everything = func() *selection {
+	s := &selection{saturation: true}
+	for i := 1; i < len(stateFields); i++ {
+		s.fields = append(s.fields, i)
+	}
+	return s
+}()
+
+// selectFields returns the selection that names make, all members when there are none.
+func selectFields(names []string) (*selection, error) {
+	if len(names) == 0 {
+		return everything, nil
+	}
+	var faults []MemberError
+	var wanted [len(stateFields)]bool
+	for i, name := range names {
+		f := fieldNamed(name)
+		if f <= 0 {
+			faults = append(faults, MemberError{
+				Pointer: "#/properties/" + strconv.Itoa(i), Code: "not_allowed",
+				Detail: quote(name) + " cannot be selected; allowed are " + strings.Join(selectable(), ", "),
+			})
+			continue
+		}
+		wanted[f] = true
+	}
+	s := &selection{}
+	for i, yes := range wanted {
+		if yes {
+			s.fields = append(s.fields, i)
+			s.saturation = s.saturation || i >= firstSaturationField
+		}
+	}
+	return s, invalid(faults)
+}
+
+func fieldNamed(name string) int {
+	for i := range stateFields {
+		if stateFields[i].name == name {
+			return i
+		}
+	}
+	return -1
+}
+
+func selectable() []string {
+	var names []string
+	for _, i := range everything.fields {
+		names = append(names, stateFields[i].name)
+	}
+	return names
+}
+
+// kinds returns the kinds of quantity that the selection shows.
+func (s *selection) kinds() []kind {
+	kinds := make([]kind, len(s.fields))
+	for i, f := range s.fields {
+		kinds[i] = stateFields[f].kind
+	}
+	return kinds
+}
+
+// stateView is a state in the caller's units. Its members stand in the object that holds it.
+type stateView struct {
+	shown        *selection
+	phase        string
+	numbers      [len(stateFields)]float64 // those shown; null where not a number
+	extrapolated bool                      // outside the validity of the equation; written only when it is so
+}
+
+// view turns a state into the caller's units.
+func view(s solved, u *units, shown *selection) stateView {
+	v := stateView{shown: shown, phase: s.Phase.String()}
+	for _, i := range shown.fields {
+		v.numbers[i] = u.out(stateFields[i].kind, stateFields[i].value(&s))
+	}
+	return v
+}
+
+// echo puts the caller's own number in its place: converting there and back can change the last digit.
+func (v *stateView) echo(member string, number float64) {
+	if i := fieldNamed(member); i >= 0 {
+		v.numbers[i] = number
+	}
+}
+
+// write adds the members of v to o.
+func (v *stateView) write(o *object) {
+	o.text("phase", v.phase)
+	for _, i := range v.shown.fields {
+		o.number(stateFields[i].name, v.numbers[i])
+	}
+	if v.extrapolated {
+		o.name("extrapolated")
+		o.b = append(o.b, "true"...)
+	}
+}
+
+// MarshalJSON writes v as an object of its own.
+func (v stateView) MarshalJSON() ([]byte, error) {
+	o := begin(nil)
+	v.write(&o)
+	return o.end(), nil
+}
