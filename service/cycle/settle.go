@@ -25,6 +25,21 @@ func (c *circuit) totals() (t totals) {
 	return t
 }
 
+// works refuses what moves no heat from the evaporator to the condenser.
+func (c *circuit) works(t totals) {
+	perFlow := 1 / c.flow(&c.nodes[c.compressions[0].in]) // J/kg at label 1
+	switch {
+	case !(t.power > 0):
+		c.refuse(Refusal{Code: NoSolution, Component: "compressor", Message: message("the compressor has nothing to do: %s", Number{Enthalpy, t.power * perFlow})})
+	case !(t.cooling > 0):
+		c.refuse(Refusal{Code: NoSolution, Field: c.highField(), Component: "evaporator", Message: message(
+			"the evaporator would take up %s: the refrigerant arrives there with more enthalpy than it leaves with", Number{Enthalpy, t.cooling * perFlow})})
+	case !(t.heating > 0):
+		c.refuse(Refusal{Code: NoSolution, Field: c.highField(), Component: "condenser", Message: message(
+			"the condenser would give off %s: the refrigerant arrives there with less enthalpy than it leaves with", Number{Enthalpy, t.heating * perFlow})})
+	}
+}
+
 // scale returns the factor from the common scale of flows to kg/s.
 func (c *circuit) scale(t totals) float64 {
 	first := &c.compressions[0]
@@ -86,6 +101,7 @@ func (c *circuit) balance(a *account, scale float64) (b balance) {
 // solution settles the accounts.
 func (c *circuit) solution(r *Request) *Solution {
 	t := c.totals()
+	c.works(t)
 	scale := c.scale(t)
 	s := &Solution{
 		Layout: r.Layout, With: r.With, Purpose: c.purpose, PerUnit: c.size.of == perUnit,
