@@ -98,24 +98,26 @@ func (r *Refrigerant) solveDensity(iso *helmholtz.Isotherm, p float64, b branch)
 func (r *Refrigerant) density(iso *helmholtz.Isotherm, p float64, b branch) (fluidState, error) {
 	const limit = 100 // Newton takes 3 to 6 steps; bisection alone would need 60
 	const rounding = 1e-15
+	RT := r.Rs * iso.T
 	lo, hi, rho := b.lo, b.hi, b.start
 	if !(lo <= rho && rho < hi) {
 		rho = lo + (hi-lo)/2
 	}
 	last := math.Inf(1)
 	for range limit {
-		f := r.evaluate(iso, rho)
-		miss := f.p - p
+		d, dd := iso.Density(rho / r.M)
+		miss := rho*RT*(1+d) - p
+		slope := RT * (1 + 2*d + dd)
 		if miss > 0 {
 			hi = math.Min(hi, rho)
 		} else {
 			lo = math.Max(lo, rho)
 		}
-		step := -miss / f.pRho
+		step := -miss / slope
 		next := rho + step
-		if !(f.pRho > 0) || next <= lo || next >= hi {
-			if f.pRho > 0 && math.Abs(step) <= 1e-12*rho {
-				return f, nil // the noise of a cold liquid's pressure knows no bracket
+		if !(slope > 0) || next <= lo || next >= hi {
+			if slope > 0 && math.Abs(step) <= 1e-12*rho {
+				return r.evaluate(iso, rho), nil // the noise of a cold liquid's pressure knows no bracket
 			}
 			next = lo + (hi-lo)/2
 			step = next - rho
@@ -125,7 +127,10 @@ func (r *Refrigerant) density(iso *helmholtz.Isotherm, p float64, b branch) (flu
 			if rho >= b.hi*(1-1e-9) && miss < -1e-9*p {
 				break // even the highest density does not reach the pressure
 			}
-			return f, nil
+			return r.evaluate(iso, rho), nil
+		}
+		if size < 1e-9*rho && last < 1e-4*rho {
+			return r.evaluate(iso, next), nil // quadratic by now: this step is exact to rounding
 		}
 		last = size
 		rho = next

@@ -33,6 +33,9 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 	if math.IsNaN(v) || math.IsInf(v, 0) {
 		return State{}, r.notFinite(y, v)
 	}
+	if at, ok := r.alongIsentrope(s, y, v); ok {
+		return at, nil
+	}
 	var at State
 	miss := func(lnP float64) (float64, error) {
 		var err error
@@ -67,6 +70,40 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 	// Where enthalpy and entropy of a liquid hardly depend on pressure, the pressure found is uncertain, but not what
 	// else the state holds.
 	return at, nil
+}
+
+// alongIsentrope solves by Newton's method in pressure, whose derivative is known. It reports false when an iterate
+// leaves the range or the steps do not settle.
+func (r *Refrigerant) alongIsentrope(s float64, y Property, v float64) (State, bool) {
+	const limit = 30
+	p := r.curve.PCritical / 8 // the middle of where refrigerants work
+	last := math.Inf(1)
+	for range limit {
+		at, err := r.PressureEntropy(p, s)
+		if err != nil {
+			return State{}, false
+		}
+		slope := p / at.Rho // d h/d ln p
+		if y == InternalEnergy {
+			if math.IsNaN(at.W) {
+				return State{}, false // the derivative inside the dome is not worth its formula
+			}
+			slope *= p / (at.Rho * at.W * at.W)
+		}
+		step := (v - pick(&at, y)) / slope
+		if math.Abs(step) < 4e-16 || math.Abs(step) < 1e-9 && math.Abs(step) >= last/2 {
+			return at, true
+		}
+		last = math.Abs(step)
+		if at.Phase == Liquid && step > -0.9 {
+			step = math.Log1p(step) // nearly incompressible: linear in p itself
+		}
+		p *= math.Exp(math.Max(-2.5, math.Min(2.5, step)))
+		if !(p < r.reach().PressureMax) {
+			return State{}, false
+		}
+	}
+	return State{}, false
 }
 
 func pick(s *State, y Property) float64 {

@@ -16,22 +16,30 @@ type shapeKey struct {
 	eta, epsilon float64
 }
 
-// builder collects terms and sorts their factors in delta into groups.
+// builder collects terms, plans the powers of tau that they need and sorts their factors in delta into groups.
 type builder struct {
 	eq      *Equation
-	powerAt map[float64]int
 	shapeAt map[shapeKey]int
 	keys    []shapeKey
+	plain   []plainTerm // power holds no index yet; nt is t
+	special []specialTerm
 }
 
-func (b *builder) exponential(x []float64, l, g float64, kind tauFactor, m float64) error {
-	if l != math.Trunc(l) || l < 0 || l > maxPower {
-		return fmt.Errorf("exponent of delta %g in an exponential is not a whole number from 0 to %d", l, maxPower)
-	}
-	if err := checkPower(x[2]); err != nil {
+func (b *builder) exponential(x []float64, l, g float64) error {
+	key, err := exponentialKey(x[2], l, g)
+	if err != nil {
 		return err
 	}
-	b.add(shapeKey{d: x[2], l: int(l), g: g}, term{n: x[0], t: x[1], kind: kind, beta: m})
+	b.plain = append(b.plain, plainTerm{n: x[0], nt: x[1], shape: b.shape(key)})
+	return nil
+}
+
+func (b *builder) doubleExponential(x []float64) error {
+	key, err := exponentialKey(x[2], x[3], 1)
+	if err != nil {
+		return err
+	}
+	b.special = append(b.special, specialTerm{n: x[0], t: x[1], shape: b.shape(key), kind: tauExp, beta: x[4]})
 	return nil
 }
 
@@ -39,34 +47,91 @@ func (b *builder) gaussian(x []float64, kind tauFactor, inv float64) error {
 	if err := checkPower(x[2]); err != nil {
 		return err
 	}
-	b.add(shapeKey{bell: true, d: x[2], eta: x[3], epsilon: x[6]},
-		term{n: x[0], t: x[1], kind: kind, beta: x[4], gamma: x[5], b: inv})
+	b.special = append(b.special, specialTerm{
+		n: x[0], t: x[1], shape: b.shape(shapeKey{bell: true, d: x[2], eta: x[3], epsilon: x[6]}),
+		kind: kind, beta: x[4], gamma: x[5], b: inv,
+	})
 	return nil
 }
 
-func (b *builder) add(key shapeKey, t term) {
-	p, ok := b.powerAt[t.t]
-	if !ok {
-		p = len(b.eq.powers)
-		b.powerAt[t.t] = p
-		b.eq.powers = append(b.eq.powers, t.t)
+func exponentialKey(d, l, g float64) (shapeKey, error) {
+	if l != math.Trunc(l) || l < 0 || l > maxPower {
+		return shapeKey{}, fmt.Errorf("exponent of delta %g in an exponential is not a whole number from 0 to %d", l, maxPower)
 	}
+	return shapeKey{d: d, l: int(l), g: g}, checkPower(d)
+}
+
+func checkPower(d float64) error {
+	if !(d >= 0 && d <= maxPower) {
+		return fmt.Errorf("exponent of delta %g is not between 0 and %d", d, maxPower)
+	}
+	return nil
+}
+
+// shape returns the number of the factor in delta with that key.
+func (b *builder) shape(key shapeKey) int {
 	s, ok := b.shapeAt[key]
 	if !ok {
 		s = len(b.keys)
 		b.shapeAt[key] = s
 		b.keys = append(b.keys, key)
 	}
-	t.power, t.shape = p, s
-	b.eq.terms = append(b.eq.terms, t)
+	return s
 }
 
-// finish orders the shapes so that each exponential is computed once, and renumbers the terms.
+// finish orders the shapes so that each exponential in delta is computed once, plans the powers of tau, and numbers
+// both in the terms.
 func (b *builder) finish() error {
-	if len(b.keys) > maxTerms || len(b.eq.powers) > maxTerms {
-		return fmt.Errorf("helmholtz: %d distinct factors in delta and %d in tau, at most %d are supported",
-			len(b.keys), len(b.eq.powers), maxTerms)
+	e := b.eq
+	rank := b.orderShapes()
+	if len(e.shapes) > maxShapes || len(e.fraction) > deltaPowers-maxPower-1 {
+		return fmt.Errorf("helmholtz: %d distinct factors in delta, %d fractional exponents; at most %d and %d are supported",
+			len(e.shapes), len(e.fraction), maxShapes, deltaPowers-maxPower-1)
 	}
+
+	var exponents []float64
+	for _, t := range b.plain {
+		exponents = append(exponents, t.nt)
+	}
+	for _, t := range b.special {
+		exponents = append(exponents, t.t)
+		if t.kind == tauExp {
+			exponents = append(exponents, t.beta)
+		}
+	}
+	for _, r := range e.ideal.TauPowers {
+		exponents = append(exponents, r[1])
+	}
+	e.powers = planPowers(exponents)
+	if len(e.powers) > maxPowers {
+		return fmt.Errorf("helmholtz: %d powers of tau, at most %d are supported", len(e.powers), maxPowers)
+	}
+	at := func(t float64) int {
+		return slices.IndexFunc(e.powers, func(p tauPower) bool { return p.t == t })
+	}
+	expand := func(n, t float64, shape int) plainTerm {
+		return plainTerm{power: at(t), shape: shape, n: n, nt: n * t, ntt: n * t * (t - 1)}
+	}
+	for _, t := range b.plain {
+		e.plain = append(e.plain, expand(t.n, t.nt, rank[t.shape]))
+	}
+	for _, t := range b.special {
+		t.shape, t.power = rank[t.shape], at(t.t)
+		if t.kind == tauExp {
+			t.mPower = at(t.beta)
+		}
+		e.special = append(e.special, t)
+	}
+	for _, r := range e.ideal.TauPowers {
+		e.ideal.powers = append(e.ideal.powers, expand(r[0], r[1], 0))
+	}
+	// Terms of one shape in a row keep its coefficient in registers.
+	slices.SortStableFunc(e.plain, func(a, b plainTerm) int { return cmp.Compare(a.shape, b.shape) })
+	return nil
+}
+
+// orderShapes sorts the factors in delta by their exponential, bells last, and returns the new number of each.
+func (b *builder) orderShapes() (rank []int) {
 	order := make([]int, len(b.keys))
 	for i := range order {
 		order[i] = i
@@ -81,7 +146,7 @@ func (b *builder) finish() error {
 		}
 		return cmp.Or(cmp.Compare(p.l, q.l), cmp.Compare(p.g, q.g), cmp.Compare(p.d, q.d))
 	})
-	rank := make([]int, len(order))
+	rank = make([]int, len(order))
 	e := b.eq
 	for at, i := range order {
 		k := b.keys[i]
@@ -89,23 +154,17 @@ func (b *builder) finish() error {
 		e.shapes = append(e.shapes, shape{d: k.d, at: b.powerIndex(k.d)})
 		if k.bell {
 			e.bells = append(e.bells, bell{at: at, eta: k.eta, epsilon: k.epsilon})
-		} else {
-			last := len(e.groups) - 1
-			if last < 0 || e.groups[last].l != k.l || e.groups[last].g != k.g {
-				e.groups = append(e.groups, group{from: at, l: k.l, lf: float64(k.l), g: k.g})
-				last++
-			}
-			e.groups[last].to = at + 1
-			e.maxDelta = max(e.maxDelta, k.l)
+			continue
 		}
+		last := len(e.groups) - 1
+		if last < 0 || e.groups[last].l != k.l || e.groups[last].g != k.g {
+			e.groups = append(e.groups, group{from: at, l: k.l, lf: float64(k.l), g: k.g})
+			last++
+		}
+		e.groups[last].to = at + 1
+		e.maxDelta = max(e.maxDelta, k.l)
 	}
-	if len(e.fraction) > deltaPowers-maxPower-1 {
-		return fmt.Errorf("helmholtz: %d fractional exponents of delta, at most %d are supported", len(e.fraction), deltaPowers-maxPower-1)
-	}
-	for i := range e.terms {
-		e.terms[i].shape = rank[e.terms[i].shape]
-	}
-	return nil
+	return rank
 }
 
 // powerIndex returns where delta^d stands in the table of powers, making room for it.
@@ -122,9 +181,59 @@ func (b *builder) powerIndex(d float64) int {
 	return maxPower + 1 + i
 }
 
-func checkPower(d float64) error {
-	if !(d >= 0 && d <= maxPower) {
-		return fmt.Errorf("exponent of delta %g is not between 0 and %d", d, maxPower)
+// planPowers returns a table that holds tau to every exponent. Exponents that are multiples of one quarter are made by
+// products from tau itself and its roots, the others by one exponential each, or as the product of two others.
+func planPowers(exponents []float64) []tauPower {
+	slices.SortFunc(exponents, func(x, y float64) int {
+		return cmp.Or(cmp.Compare(math.Abs(x), math.Abs(y)), cmp.Compare(y, x))
+	})
+	exponents = slices.Compact(exponents)
+	table := []tauPower{{t: 0, how: powerExp}, {t: 1, how: powerExp}}
+	at := map[float64]int{0: 0, 1: 1}
+	put := func(p tauPower) int {
+		if i, ok := at[p.t]; ok {
+			return i
+		}
+		at[p.t] = len(table)
+		table = append(table, p)
+		return len(table) - 1
 	}
-	return nil
+	var need func(t float64) int
+	need = func(t float64) int {
+		if i, ok := at[t]; ok {
+			return i
+		}
+		if t*4 != math.Trunc(t*4) || math.Abs(t) > 64 {
+			for i, p := range table { // an exact sum of two others
+				if j, ok := at[t-p.t]; ok && p.t+(t-p.t) == t {
+					return put(tauPower{t: t, how: powerProduct, a: i, b: j})
+				}
+			}
+			return put(tauPower{t: t, how: powerExp})
+		}
+		switch {
+		case t < 0:
+			return put(tauPower{t: t, how: powerInverse, a: need(-t)})
+		case t == 0.5 || t == 0.25:
+			return put(tauPower{t: t, how: powerRoot, a: need(2 * t)})
+		}
+		for i, p := range table {
+			if j, ok := at[t-p.t]; ok && p.t > 0 && t-p.t > 0 {
+				return put(tauPower{t: t, how: powerProduct, a: i, b: j})
+			}
+		}
+		part := math.Trunc(t / 2)
+		switch whole := math.Trunc(t); {
+		case t < 1: // three quarters
+			part = 0.5
+		case whole != t:
+			part = whole
+		}
+		a := need(part)
+		return put(tauPower{t: t, how: powerProduct, a: a, b: need(t - part)})
+	}
+	for _, t := range exponents {
+		need(t)
+	}
+	return table
 }

@@ -15,8 +15,12 @@ import (
 	"math"
 )
 
-// maxTerms bounds the coefficient rows of an isotherm, so that it can live on the stack. Water has 51 separable terms.
-const maxTerms = 56
+// maxShapes bounds the distinct factors in delta of an equation, so that an isotherm can live on the stack. Water, the
+// equation with the most terms, has 36.
+const maxShapes = 40
+
+// maxPowers bounds the table of powers of tau, those of the ideal part included.
+const maxPowers = 64
 
 // maxPower bounds the whole exponents of delta; the largest in use is 15.
 const maxPower = 24
@@ -71,9 +75,10 @@ type Equation struct {
 	TRed   float64 // K
 	RhoRed float64 // mol/m3
 
-	ideal    Ideal
-	powers   []float64 // distinct exponents of tau
-	terms    []term    // separable terms
+	ideal    ideal
+	powers   []tauPower // table of powers of tau; each is made from earlier ones where it can be
+	plain    []plainTerm
+	special  []specialTerm
 	shapes   []shape   // distinct factors in delta, grouped by exponential
 	groups   []group   // consecutive shapes that share exp(-g delta^l)
 	bells    []bell    // consecutive shapes after the groups, one Gaussian factor in delta each
@@ -82,23 +87,51 @@ type Equation struct {
 	fraction []float64 // fractional exponents of delta
 }
 
-// term is one separable term n tau^t f(tau) times the factor in delta of its shape.
-type term struct {
+// tauPower says how an entry of the table of powers of tau is made.
+type tauPower struct {
+	t    float64
+	how  powerRule
+	a, b int // entries to multiply
+}
+
+type powerRule uint8
+
+const (
+	powerExp     powerRule = iota // exp(t ln tau)
+	powerProduct                  // product of two earlier entries
+	powerRoot                     // square root of an earlier entry
+	powerInverse                  // reciprocal of an earlier entry
+)
+
+// plainTerm is one term n tau^t times the factor in delta of its shape, with the factors of its derivatives.
+type plainTerm struct {
+	power, shape int
+	n, nt, ntt   float64 // n, n t, n t (t-1)
+}
+
+// specialTerm has a further factor in tau.
+type specialTerm struct {
 	power, shape int
 	n, t         float64
 	kind         tauFactor
 	beta, gamma  float64 // Gaussian and associating; beta is m for tauExp
+	mPower       int     // entry of tau^m for tauExp
 	b            float64 // associating
 }
 
 type tauFactor uint8
 
 const (
-	tauPlain  tauFactor = iota
-	tauExp              // exp(-tau^m)
-	tauBell             // exp(-beta (tau-gamma)^2)
-	tauInvert           // exp(1/(beta (tau-gamma)^2 + b))
+	tauExp    tauFactor = iota // exp(-tau^m)
+	tauBell                    // exp(-beta (tau-gamma)^2)
+	tauInvert                  // exp(1/(beta (tau-gamma)^2 + b))
 )
+
+// ideal is the ideal part with its powers in the table.
+type ideal struct {
+	Ideal
+	powers []plainTerm // shape is not used
+}
 
 // shape is a factor in delta: delta^d times the exponential of its group or bell.
 type shape struct {
@@ -131,8 +164,8 @@ func New(c Coefficients) (*Equation, error) {
 			return nil, fmt.Errorf("helmholtz: gas constant and reducing point must be positive and finite, have %g", v)
 		}
 	}
-	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, ideal: c.Ideal}
-	b := builder{eq: e, powerAt: map[float64]int{}, shapeAt: map[shapeKey]int{}}
+	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, ideal: ideal{Ideal: c.Ideal}}
+	b := builder{eq: e, shapeAt: map[shapeKey]int{}}
 	r := c.Residual
 	for _, form := range []struct {
 		name     string
@@ -140,15 +173,15 @@ func New(c Coefficients) (*Equation, error) {
 		min, max int
 		add      func(row []float64) error
 	}{
-		{"polynomial", r.Polynomial, 3, 3, func(x []float64) error { return b.exponential(x, 0, 1, tauPlain, 0) }},
+		{"polynomial", r.Polynomial, 3, 3, func(x []float64) error { return b.exponential(x, 0, 1) }},
 		{"exponential", r.Exponential, 4, 5, func(x []float64) error {
 			g := 1.0
 			if len(x) == 5 {
 				g = x[4]
 			}
-			return b.exponential(x, x[3], g, tauPlain, 0)
+			return b.exponential(x, x[3], g)
 		}},
-		{"double_exponential", r.DoubleExponential, 5, 5, func(x []float64) error { return b.exponential(x, x[3], 1, tauExp, x[4]) }},
+		{"double_exponential", r.DoubleExponential, 5, 5, func(x []float64) error { return b.doubleExponential(x) }},
 		{"gaussian", r.Gaussian, 7, 7, func(x []float64) error { return b.gaussian(x, tauBell, 0) }},
 		{"associating", r.Associating, 8, 8, func(x []float64) error { return b.gaussian(x, tauInvert, x[7]) }},
 		{"nonanalytic", r.NonAnalytic, 8, 8, func(x []float64) error {

@@ -9,7 +9,7 @@ type Isotherm struct {
 	T        float64 // K
 	Tau      float64
 	Ideal    Alpha // ideal part without ln(delta): A, T and TT are set
-	weights  [maxTerms]weight
+	weights  [maxShapes]weight
 	peakTau1 float64 // tau - 1
 }
 
@@ -21,40 +21,59 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 	s.eq, s.T = e, T
 	tau := e.TRed / T
 	s.Tau, s.peakTau1 = tau, (e.TRed-T)/T
-	lnTau := math.Log(tau)
+	lnTau := log(tau)
 
-	var pw [maxTerms]float64
-	for i, t := range e.powers {
-		pw[i] = power(tau, lnTau, t)
+	var pw [maxPowers]float64
+	pw[0], pw[1] = 1, tau
+	for i := 2; i < len(e.powers); i++ {
+		p := &e.powers[i]
+		switch p.how {
+		case powerProduct:
+			pw[i&(maxPowers-1)] = pw[p.a&(maxPowers-1)] * pw[p.b&(maxPowers-1)]
+		case powerExp:
+			pw[i&(maxPowers-1)] = exp(p.t * lnTau)
+		case powerRoot:
+			pw[i&(maxPowers-1)] = math.Sqrt(pw[p.a&(maxPowers-1)])
+		case powerInverse:
+			pw[i&(maxPowers-1)] = 1 / pw[p.a&(maxPowers-1)]
+		}
 	}
+
 	for i := range e.shapes {
 		s.weights[i] = weight{}
 	}
-	for i := range e.terms {
-		k := &e.terms[i]
+	for i := 0; i < len(e.plain); {
+		at := e.plain[i].shape
+		var w weight
+		for ; i < len(e.plain) && e.plain[i].shape == at; i++ {
+			k := &e.plain[i]
+			z := pw[k.power&(maxPowers-1)]
+			w.c += k.n * z
+			w.ct += k.nt * z
+			w.ctt += k.ntt * z
+		}
+		s.weights[at] = w
+	}
+	for i := range e.special {
+		k := &e.special[i]
 		w := &s.weights[k.shape]
-		c, a := k.n*pw[k.power], k.t
+		c, a := k.n*pw[k.power&(maxPowers-1)], k.t
 		switch k.kind {
-		case tauPlain:
-			w.c += c
-			w.ct += c * a
-			w.ctt += c * a * (a - 1)
-			continue
 		case tauExp:
-			u := power(tau, lnTau, k.beta)
+			u := pw[k.mPower&(maxPowers-1)]
 			v := k.beta * u
-			c *= math.Exp(-u)
+			c *= exp(-u)
 			a -= v
 			w.ctt += c * (a*(a-1) - k.beta*v)
 		case tauBell:
 			x := tau - k.gamma
-			c *= math.Exp(-k.beta * x * x)
+			c *= exp(-k.beta * x * x)
 			a -= 2 * k.beta * tau * x
 			w.ctt += c * (a*(a-1) - 2*k.beta*tau*(tau+x))
 		case tauInvert:
 			x := tau - k.gamma
 			q := 1 / (k.beta*x*x + k.b)
-			c *= math.Exp(q)
+			c *= exp(q)
 			g := 2 * k.beta * tau * x * q * q // -tau dq/dtau
 			a -= g
 			w.ctt += c * (a*(a-1) - 2*k.beta*tau*(tau+x)*q*q + 2*g*g/q)
@@ -62,58 +81,105 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 		w.c += c
 		w.ct += c * a
 	}
-	s.setIdeal(lnTau)
-}
 
-func (s *Isotherm) setIdeal(lnTau float64) {
-	p, tau := &s.eq.ideal, s.Tau
+	p := &e.ideal
 	s.Ideal = Alpha{
 		A:  p.Constant + p.Tau*tau + p.LnTau*lnTau + p.TauLnTau*tau*lnTau,
 		T:  p.Tau*tau + p.LnTau + p.TauLnTau*tau*(lnTau+1),
 		TT: -p.LnTau + p.TauLnTau*tau,
 	}
-	for _, r := range p.TauPowers {
-		c := r[0] * power(tau, lnTau, r[1])
-		s.Ideal.A += c
-		s.Ideal.T += c * r[1]
-		s.Ideal.TT += c * r[1] * (r[1] - 1)
+	for _, k := range p.powers {
+		z := pw[k.power&(maxPowers-1)]
+		s.Ideal.A += k.n * z
+		s.Ideal.T += k.nt * z
+		s.Ideal.TT += k.ntt * z
 	}
 	for _, r := range p.PlanckEinstein {
 		x := r[1] * tau
-		e := math.Exp(-x)
-		y := x * e / (1 - e)
-		s.Ideal.A += r[0] * math.Log(1-e)
+		y := exp(-x)
+		f := 1 / (1 - y)
+		y *= x * f
+		s.Ideal.A -= r[0] * log(f)
 		s.Ideal.T += r[0] * y
-		s.Ideal.TT -= r[0] * x * y / (1 - e)
+		s.Ideal.TT -= r[0] * x * y * f
 	}
+}
+
+// Density returns delta * d alpha/d delta and delta^2 * d2 alpha/d delta2 of the residual part at density rho in mol/m3:
+// all that a search for the density at a given pressure needs, at half the price of [Isotherm.Residual].
+func (s *Isotherm) Density(rho float64) (d, dd float64) {
+	e := s.eq
+	if len(e.peaks) > 0 {
+		r := s.Residual(rho)
+		return r.D, r.DD
+	}
+	delta := rho / e.RhoRed
+	pow := e.deltaTable(delta)
+	for i := range e.groups {
+		g := &e.groups[i]
+		var a0, a1, a2 float64
+		for j := g.from; j < g.to; j++ {
+			sh := &e.shapes[j]
+			c := s.weights[j].c * pow[sh.at&(deltaPowers-1)]
+			dc := sh.d * c
+			a0 += c
+			a1 += dc
+			a2 += (sh.d - 1) * dc
+		}
+		if g.l == 0 {
+			d += a1
+			dd += a2
+			continue
+		}
+		v := g.g * pow[g.l&(deltaPowers-1)]
+		u := g.lf * v
+		f := exp(-v)
+		d += f * (a1 - u*a0)
+		dd += f * (a2 - 2*u*a1 + u*(u-g.lf+1)*a0)
+	}
+	for i := range e.bells {
+		b := &e.bells[i]
+		sh := &e.shapes[b.at]
+		x := delta - b.epsilon
+		a := sh.d - 2*b.eta*delta*x
+		c := s.weights[b.at].c * pow[sh.at&(deltaPowers-1)] * exp(-b.eta*x*x)
+		d += c * a
+		dd += c * (a*(a-1) - 2*b.eta*delta*(delta+x))
+	}
+	return d, dd
+}
+
+// deltaTable returns the powers of delta that the shapes use.
+func (e *Equation) deltaTable(delta float64) (pow [deltaPowers]float64) {
+	pow[0] = 1
+	for i := 1; i <= e.maxDelta; i++ {
+		pow[i&(deltaPowers-1)] = pow[(i-1)&(deltaPowers-1)] * delta
+	}
+	for i, d := range e.fraction {
+		pow[(maxPower+1+i)&(deltaPowers-1)] = math.Pow(delta, d)
+	}
+	return pow
 }
 
 // Residual returns the residual part and its derivatives at density rho in mol/m3, which must be positive.
 func (s *Isotherm) Residual(rho float64) Alpha {
 	e := s.eq
 	delta := rho / e.RhoRed
-	var pow [deltaPowers]float64
-	pow[0] = 1
-	for i := 1; i <= e.maxDelta; i++ {
-		pow[i] = pow[i-1] * delta
-	}
-	for i, d := range e.fraction {
-		pow[(maxPower+1+i)&(deltaPowers-1)] = math.Pow(delta, d)
-	}
+	pow := e.deltaTable(delta)
 	var out Alpha
 	for i := range e.groups {
 		g := &e.groups[i]
 		var a0, a1, a2, t0, t1, tt float64
 		for j := g.from; j < g.to; j++ {
-			w, d := &s.weights[j], e.shapes[j].d
-			z := pow[e.shapes[j].at&(deltaPowers-1)]
+			w, sh := &s.weights[j], &e.shapes[j]
+			z := pow[sh.at&(deltaPowers-1)]
 			c, ct := w.c*z, w.ct*z
-			dc := d * c
+			dc := sh.d * c
 			a0 += c
 			a1 += dc
-			a2 += (d - 1) * dc
+			a2 += (sh.d - 1) * dc
 			t0 += ct
-			t1 += d * ct
+			t1 += sh.d * ct
 			tt += w.ctt * z
 		}
 		if g.l == 0 {
@@ -125,9 +191,9 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 			out.TT += tt
 			continue
 		}
-		v := g.g * pow[g.l]
+		v := g.g * pow[g.l&(deltaPowers-1)]
 		u := g.lf * v
-		f := math.Exp(-v)
+		f := exp(-v)
 		out.A += f * a0
 		out.D += f * (a1 - u*a0)
 		out.DD += f * (a2 - 2*u*a1 + u*(u-g.lf+1)*a0)
@@ -139,7 +205,7 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 		b := &e.bells[i]
 		w, sh := &s.weights[b.at], e.shapes[b.at]
 		x := delta - b.epsilon
-		f := pow[sh.at&(deltaPowers-1)] * math.Exp(-b.eta*x*x)
+		f := pow[sh.at&(deltaPowers-1)] * exp(-b.eta*x*x)
 		a := sh.d - 2*b.eta*delta*x
 		c := f * w.c
 		out.A += c
@@ -153,27 +219,4 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 		s.addPeaks(&out, delta, (rho-e.RhoRed)/e.RhoRed)
 	}
 	return out
-}
-
-// power returns x^t given ln(x); small multiples of one half need no exponential.
-func power(x, lnX, t float64) float64 {
-	n := int(t)
-	if float64(n) == t && n >= 0 && n <= 64 {
-		return wholeExponent(x, n)
-	}
-	if n = int(2 * t); float64(n) == 2*t && n > 0 && n <= 64 {
-		return wholeExponent(x, n>>1) * math.Sqrt(x)
-	}
-	return math.Exp(t * lnX)
-}
-
-func wholeExponent(x float64, n int) float64 {
-	y := 1.0
-	for ; n > 0; n >>= 1 {
-		if n&1 == 1 {
-			y *= x
-		}
-		x *= x
-	}
-	return y
 }

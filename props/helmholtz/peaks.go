@@ -67,7 +67,7 @@ func (s *Isotherm) ThirdDensity(rho float64) float64 {
 			a2 += d * (d - 1) * c
 			a3 += d * (d - 1) * (d - 2) * c
 		}
-		v := g.g * wholeExponent(delta, g.l)
+		v := g.g * math.Pow(delta, g.lf)
 		l, u := g.lf, g.lf*v
 		f := 1.0
 		if g.l > 0 {
