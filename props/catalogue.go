@@ -44,6 +44,9 @@ func NewCatalogue() (*Catalogue, error) {
 			c.byName[key] = f
 		}
 	}
+	if err := addTransport(c.fluids); err != nil {
+		return nil, err
+	}
 	slices.SortFunc(c.fluids, func(a, b *fluid) int { return compareDesignations(a.rec.ID, b.rec.ID) })
 	return c, nil
 }

@@ -14,5 +14,6 @@
 // quality fix a state; [Refrigerant.States] takes any such pair and returns every solution.
 //
 // All values are immutable once made and safe for concurrent use. Errors are typed: [RangeError], [AmbiguousError],
-// [NoSolutionError], [ConvergenceError], [DependentPairError], [UnknownRefrigerantError], [DatumError], [ConditionError].
+// [NoSolutionError], [ConvergenceError], [DependentPairError], [UnknownRefrigerantError], [DatumError], [ConditionError],
+// [transport.StateError].
 package props

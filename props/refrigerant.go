@@ -7,6 +7,7 @@ import (
 	"dewmark/props/data"
 	"dewmark/props/helmholtz"
 	"dewmark/props/saturation"
+	"dewmark/props/transport"
 )
 
 // StandardAtmosphere is the pressure of the normal boiling point, Pa (ISO 2533, sea level).
@@ -43,6 +44,7 @@ type fluid struct {
 	eq    *helmholtz.Equation
 	M     float64 // kg/mol
 	Rs    float64 // J/(kg K)
+	flow  *transport.Model
 	build sync.Once
 	made  *saturation.Curve
 }
