@@ -94,6 +94,7 @@ type cycleResponse struct {
 	Components  []component       `json:"components"`
 	Performance performance       `json:"performance"`
 	Closure     closure           `json:"closure"`
+	Ambient     float64           `json:"ambient_temperature"` // dead state of the exergy account
 	Basis       basis             `json:"basis"`
 	Cautions    []caution         `json:"cautions"`
 }
@@ -143,9 +144,14 @@ type performance struct {
 	VolumetricCoolingCapacity float64  `json:"volumetric_cooling_capacity"`
 }
 
+// closure says how well the accounts close. The exergy account needs source and sink temperature.
 type closure struct {
 	EnergyResidualFraction    float64  `json:"energy_residual_fraction"`
 	SmallestEntropyGeneration *float64 `json:"smallest_entropy_generation"`
+	ExergyDestruction         *float64 `json:"exergy_destruction"` // of all components
+	ExergyDelivered           *float64 `json:"exergy_delivered"`   // with the heat given off
+	ExergyReceived            *float64 `json:"exergy_received"`    // with the heat taken up
+	ExergyResidualFraction    *float64 `json:"exergy_residual_fraction"`
 }
 
 // cycles answers POST /v1/cycles.
@@ -275,8 +281,13 @@ func (j *job) cycleResponse(s *cycle.Solution) *cycleResponse {
 		Closure: closure{
 			EnergyResidualFraction:    s.Closure.EnergyResidualFraction,
 			SmallestEntropyGeneration: known(u.out(kindEntropyFlow, s.Closure.SmallestEntropyGeneration)),
+			ExergyDestruction:         known(u.out(kindPower, s.Closure.ExergyDestruction)),
+			ExergyDelivered:           known(u.out(kindPower, s.Closure.ExergyDelivered)),
+			ExergyReceived:            known(u.out(kindPower, s.Closure.ExergyReceived)),
+			ExergyResidualFraction:    known(s.Closure.ExergyResidualFraction),
 		},
 	}
+	resp.Ambient = u.out(kindTemperature, s.Ambient)
 	outside := 0
 	for _, at := range s.States {
 		v := j.view(at.State, everything)
@@ -307,6 +318,16 @@ func (j *job) cycleResponse(s *cycle.Solution) *cycleResponse {
 		}
 		j.caution(string(c.Code), detail)
 	}
+	j.caution("calculation_aid", j.handling())
 	resp.Basis, resp.Cautions = j.basis, j.cautions
 	return resp
+}
+
+// handling is the caution that goes with whatever someone might build, charge or wire by.
+func (j *job) handling() string {
+	class := "has no safety class on record: treat it as flammable and toxic"
+	if c := j.r.Record().Classification.SafetyClass; c != nil {
+		class = "has safety class " + *c
+	}
+	return j.basis.Refrigerant + " " + class + "; a calculation aid only: equipment documentation, local codes and a licensed person decide what may be charged, pressurised or wired"
 }

@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"encoding/json"
 	"fmt"
-	"io"
 	"reflect"
 	"slices"
 	"strconv"
@@ -19,90 +18,102 @@ const (
 	maxQuote  = 40 // bytes of the client's own text that a message repeats
 )
 
-// decodeJSON reads the one JSON value in body into the struct that v points to, walking the tokens along the struct's
-// fields. It is stricter than [json.Unmarshal]: names match in case, none may be unknown or come twice, and numbers must
-// be finite. Null stands for an absent member. It returns a [*Problem] with a pointer for every defect, which names no Go
-// type. A field may be a struct, pointer, slice, map of strings, string, bool or float64; others panic.
+// decodeJSON reads the one JSON value in body into the struct that v points to. It is stricter than [json.Unmarshal]: names
+// match in case, none may be unknown or come twice, and numbers must be finite. Null stands for an absent member. It
+// returns a [*Problem] with a pointer for every defect, which names no Go type. A field may be a struct, pointer, slice,
+// map of strings, string, bool or float64; others panic.
+//
+// What is JSON and what is not is for the standard library to say. The walk along the fields of the struct finds the rest,
+// and the place where a text stops being JSON.
 func decodeJSON(body []byte, v any) error {
 	if !utf8.Valid(body) {
 		return malformed("#", "the body is not UTF-8 text")
 	}
-	d := decoder{body: body, tokens: json.NewDecoder(bytes.NewReader(body))}
-	d.tokens.UseNumber()
-	if err := d.value(reflect.ValueOf(v).Elem()); err != nil {
+	d := decoder{body: body, valid: json.Valid(body)}
+	err := d.value(reflect.ValueOf(v).Elem())
+	switch {
+	case err != nil:
 		return err
-	}
-	if _, err := d.tokens.Token(); err != io.EOF { //nolint:errorlint // Token returns the bare io.EOF
+	case d.peek() != 0 || d.at < len(body):
 		return malformed("#", "something follows the JSON value"+d.position())
+	case !d.valid:
+		return malformed("#", "the body is not JSON")
 	}
 	return invalid(d.faults)
 }
 
+// decoder walks over JSON text.
 type decoder struct {
 	body   []byte
-	tokens *json.Decoder
+	valid  bool   // the text is JSON
+	at     int    // in body
 	path   []step // to the value being read
 	inside int    // levels below path, in a value that is read over
 	faults []MemberError
 }
 
-// step is one part of a JSON pointer: a member's name, or an element's index where name is not set.
+// step is one part of a JSON pointer: a member's name, or the index of an element of an array.
 type step struct {
 	name  string
 	index int
 	array bool
 }
 
+// token is the start of a value, all of it unless the value is an object or an array.
+type token struct {
+	kind byte   // {, [, ", t for true, f, n, or 0 for a number
+	text []byte // as it stands in the body, quotes included
+}
+
 // value reads the next value into target. It notes a defect of the value and goes on; an error ends the reading.
 func (d *decoder) value(target reflect.Value) error {
-	token, err := d.next()
+	t, err := d.next()
 	if err != nil {
 		return err
 	}
-	return d.assign(target, token)
+	return d.assign(target, t)
 }
 
-// assign stores the value that starts with token.
-func (d *decoder) assign(target reflect.Value, token json.Token) error {
+// assign stores the value that starts with t.
+func (d *decoder) assign(target reflect.Value, t token) error {
 	switch target.Kind() {
 	case reflect.Pointer:
 		target.Set(reflect.New(target.Type().Elem()))
-		return d.assign(target.Elem(), token)
+		return d.assign(target.Elem(), t)
 	case reflect.Struct:
-		if token != json.Delim('{') {
-			return d.mismatch(token, "an object")
+		if t.kind != '{' {
+			return d.mismatch(t, "an object")
 		}
 		return d.object(target)
 	case reflect.Map:
-		if token != json.Delim('{') {
-			return d.mismatch(token, "an object")
+		if t.kind != '{' {
+			return d.mismatch(t, "an object")
 		}
 		return d.texts(target)
 	case reflect.Slice:
-		if token != json.Delim('[') {
-			return d.mismatch(token, "an array")
+		if t.kind != '[' {
+			return d.mismatch(t, "an array")
 		}
 		return d.array(target)
 	case reflect.String:
-		text, ok := token.(string)
-		if !ok {
-			return d.mismatch(token, "a string")
+		if t.kind != '"' {
+			return d.mismatch(t, "a string")
 		}
+		text, err := d.unquote(t)
 		target.SetString(text)
+		return err
 	case reflect.Bool:
-		yes, ok := token.(bool)
-		if !ok {
-			return d.mismatch(token, "true or false")
+		if t.kind != 't' && t.kind != 'f' {
+			return d.mismatch(t, "true or false")
 		}
-		target.SetBool(yes)
+		target.SetBool(t.kind == 't')
 	case reflect.Float64:
-		number, ok := token.(json.Number)
-		if !ok {
-			return d.mismatch(token, "a number")
+		if t.kind != 0 {
+			return d.mismatch(t, "a number")
 		}
-		x, err := strconv.ParseFloat(string(number), 64)
-		if err != nil { // beyond the largest float64; the token is a JSON number
-			return d.fault("out_of_range", shorten(string(number))+" is too large; numbers must lie within 1.7e308 either way")
+		x, err := strconv.ParseFloat(string(t.text), 64)
+		if err != nil { // beyond the largest float64: the token is a number
+			return d.fault("out_of_range", shorten(string(t.text))+" is too large; numbers must lie within 1.7e308 either way")
 		}
 		target.SetFloat(x)
 	default:
@@ -115,7 +126,12 @@ func (d *decoder) assign(target reflect.Value, token json.Token) error {
 func (d *decoder) object(target reflect.Value) error {
 	shape := shapeOf(target.Type())
 	var seen uint64
-	return d.members(func(name string) error {
+	return d.list('}', func() error {
+		name, err := d.name()
+		if err != nil {
+			return err
+		}
+		d.path[len(d.path)-1].name = name
 		i, known := shape.index[name]
 		if !known {
 			return d.refuse("unknown_member", "there is no member "+quote(name)+" here; "+shape.hint(name))
@@ -124,11 +140,11 @@ func (d *decoder) object(target reflect.Value) error {
 			return d.refuse("duplicate_member", "the member comes twice in its object; once is allowed")
 		}
 		seen |= 1 << i
-		token, err := d.next()
-		if err != nil || token == nil { // null
+		t, err := d.next()
+		if err != nil || t.kind == 'n' {
 			return err
 		}
-		return d.assign(target.FieldByIndex(shape.fields[i]), token)
+		return d.assign(target.FieldByIndex(shape.fields[i]), t)
 	})
 }
 
@@ -136,67 +152,155 @@ func (d *decoder) object(target reflect.Value) error {
 func (d *decoder) texts(target reflect.Value) error {
 	into := map[string]string{}
 	target.Set(reflect.ValueOf(into))
-	return d.members(func(name string) error {
+	return d.list('}', func() error {
+		name, err := d.name()
+		if err != nil {
+			return err
+		}
+		d.path[len(d.path)-1].name = name
 		if _, twice := into[name]; twice {
 			return d.refuse("duplicate_member", "the member comes twice in its object; once is allowed")
 		}
 		var text string
-		err := d.value(reflect.ValueOf(&text).Elem())
+		err = d.value(reflect.ValueOf(&text).Elem())
 		into[name] = text
 		return err
 	})
 }
 
-// members calls read with every name up to the closing brace.
-func (d *decoder) members(read func(name string) error) error {
-	for {
-		token, err := d.next()
-		if err != nil || token == json.Delim('}') {
-			return err
-		}
-		name := token.(string) // the decoder lets nothing else stand here
-		d.path = append(d.path, step{name: name})
-		if err := read(name); err != nil {
-			return err
-		}
-		d.path = d.path[:len(d.path)-1]
-	}
-}
-
 // array reads elements up to the closing bracket.
 func (d *decoder) array(target reflect.Value) error {
 	target.Set(reflect.MakeSlice(target.Type(), 0, 0))
-	d.path = append(d.path, step{array: true})
-	for n := 0; ; n++ {
-		d.path[len(d.path)-1].index = n
-		token, err := d.next()
-		if err != nil {
-			return err
-		}
-		if token == json.Delim(']') {
-			d.path = d.path[:len(d.path)-1]
-			return nil
-		}
+	n := 0
+	return d.list(']', func() error {
+		d.path[len(d.path)-1] = step{index: n, array: true}
 		if n == target.Cap() {
 			target.Grow(1)
 		}
-		target.SetLen(n + 1)
-		if err := d.assign(target.Index(n), token); err != nil {
+		n++
+		target.SetLen(n)
+		return d.value(target.Index(n - 1))
+	})
+}
+
+// list calls read for every member or element up to the closing mark. The last step of the path is read's to set.
+func (d *decoder) list(closing byte, read func() error) error {
+	if d.peek() == closing {
+		d.at++
+		return nil
+	}
+	d.path = append(d.path, step{})
+	for {
+		if err := read(); err != nil {
 			return err
+		}
+		c := d.peek()
+		if c != ',' && c != closing {
+			d.path = d.path[:len(d.path)-1]
+			return d.syntax()
+		}
+		d.at++
+		if c == closing {
+			d.path = d.path[:len(d.path)-1]
+			return nil
 		}
 	}
 }
 
-// next returns the next token, or a problem where the text is not JSON or nests too deep.
-func (d *decoder) next() (json.Token, error) {
-	if len(d.path)+d.inside > maxDepth {
-		return nil, malformed(d.pointer(), fmt.Sprintf("the body nests deeper than %d levels", maxDepth))
+// name reads the name of a member and the colon after it.
+func (d *decoder) name() (string, error) {
+	before := d.path
+	d.path = d.path[:len(d.path)-1] // a bad name is a defect of the object
+	if d.peek() != '"' {
+		return "", d.syntax()
 	}
-	token, err := d.tokens.Token()
+	t, err := d.next()
 	if err != nil {
-		return nil, d.syntax()
+		return "", err
 	}
-	return token, nil
+	name, err := d.unquote(t)
+	if err != nil {
+		return "", err
+	}
+	if d.peek() != ':' {
+		return "", d.syntax()
+	}
+	d.at++
+	d.path = before
+	return name, nil
+}
+
+// peek returns the next byte that is no white space, or 0 at the end.
+func (d *decoder) peek() byte {
+	for d.at < len(d.body) {
+		switch c := d.body[d.at]; c {
+		case ' ', '\t', '\r', '\n':
+			d.at++
+		default:
+			return c
+		}
+	}
+	return 0
+}
+
+// next returns the next token, or a problem where there is none or the text nests too deep.
+func (d *decoder) next() (token, error) {
+	c := d.peek()
+	start := d.at
+	switch c {
+	case '{', '[':
+		if len(d.path)+d.inside >= maxDepth {
+			return token{}, malformed(d.pointer(), fmt.Sprintf("the body nests deeper than %d levels", maxDepth))
+		}
+		d.at++
+		return token{kind: c}, nil
+	case '"':
+		for d.at++; d.at < len(d.body); d.at++ {
+			switch d.body[d.at] {
+			case '\\':
+				d.at++
+			case '"':
+				d.at++
+				return d.scalar(c, start)
+			}
+		}
+		d.at = len(d.body)
+	case 't', 'f', 'n':
+		for _, word := range []string{"true", "false", "null"} {
+			if bytes.HasPrefix(d.body[d.at:], []byte(word)) {
+				d.at += len(word)
+				return token{c, d.body[d.at-len(word) : d.at]}, nil
+			}
+		}
+	case '-', '0', '1', '2', '3', '4', '5', '6', '7', '8', '9':
+		for d.at < len(d.body) && strings.IndexByte("+-.0123456789eE", d.body[d.at]) >= 0 {
+			d.at++
+		}
+		return d.scalar(0, start)
+	}
+	return token{}, d.syntax()
+}
+
+// scalar returns the string or number that began at start.
+func (d *decoder) scalar(kind byte, start int) (token, error) {
+	text := d.body[start:d.at]
+	if !d.valid && !json.Valid(text) {
+		d.at = start
+		return token{}, d.syntax()
+	}
+	return token{kind, text}, nil
+}
+
+// unquote returns the text of a string.
+func (d *decoder) unquote(t token) (string, error) {
+	if bytes.IndexByte(t.text, '\\') < 0 {
+		return string(t.text[1 : len(t.text)-1]), nil
+	}
+	var text string
+	if json.Unmarshal(t.text, &text) != nil {
+		return "", d.syntax()
+	}
+	return text, nil
 }
 
 // fault notes a defect. It returns a problem once there are too many.
@@ -213,61 +317,66 @@ func (d *decoder) refuse(code, detail string) error {
 	if err := d.fault(code, detail); err != nil {
 		return err
 	}
-	token, err := d.next()
+	t, err := d.next()
 	if err != nil {
 		return err
 	}
-	return d.skip(token)
+	return d.skip(t)
 }
 
 // mismatch notes a value of the wrong kind and reads over it.
-func (d *decoder) mismatch(token json.Token, want string) error {
-	if err := d.fault("wrong_type", "must be "+want+", not "+describe(token)); err != nil {
+func (d *decoder) mismatch(t token, want string) error {
+	if err := d.fault("wrong_type", "must be "+want+", not "+describe(t)); err != nil {
 		return err
 	}
-	return d.skip(token)
+	return d.skip(t)
 }
 
-// skip reads over the rest of a value that starts with token.
-func (d *decoder) skip(token json.Token) error {
+// skip reads over the rest of a value that starts with t.
+func (d *decoder) skip(t token) error {
+	if t.kind != '{' && t.kind != '[' {
+		return nil
+	}
+	d.inside++
 	for {
-		switch token {
-		case json.Delim('{'), json.Delim('['):
-			d.inside++
-		case json.Delim('}'), json.Delim(']'):
+		switch d.peek() {
+		case '}', ']':
+			d.at++
 			d.inside--
-		}
-		if d.inside == 0 {
 			return nil
-		}
-		var err error
-		if token, err = d.next(); err != nil {
-			return err
+		case ',', ':': // where they belong, the library has seen to
+			d.at++
+		default:
+			inner, err := d.next()
+			if err != nil {
+				return err
+			}
+			if err := d.skip(inner); err != nil {
+				return err
+			}
 		}
 	}
 }
 
-// describe says what a value is that starts with token.
-func describe(token json.Token) string {
-	switch t := token.(type) {
-	case nil:
-		return "null"
-	case string:
-		return "the string " + quote(t)
-	case json.Number:
-		return "the number " + shorten(string(t))
-	case bool:
-		return strconv.FormatBool(t)
-	}
-	if token == json.Delim('[') {
+// describe says what a value is that starts with t.
+func describe(t token) string {
+	switch t.kind {
+	case '{':
+		return "an object"
+	case '[':
 		return "an array"
+	case '"':
+		return "the string " + shorten(string(t.text))
+	case 0:
+		return "the number " + shorten(string(t.text))
 	}
-	return "an object"
+	return string(t.text)
 }
 
 // syntax explains why no token could be read.
 func (d *decoder) syntax() error {
-	rest := d.rest()
+	d.peek()
+	rest := d.body[d.at:]
 	switch {
 	case len(bytes.TrimSpace(d.body)) == 0:
 		return malformed("#", "the body is empty; a JSON object is required")
@@ -282,22 +391,13 @@ func (d *decoder) syntax() error {
 	return malformed(d.pointer(), "the body is not JSON"+d.position())
 }
 
-// rest is what follows the last token, separators left out.
-func (d *decoder) rest() []byte {
-	return bytes.TrimLeft(d.body[min(d.tokens.InputOffset(), int64(len(d.body))):], " \t\r\n,:")
-}
-
 // position says where the reading stands.
 func (d *decoder) position() string {
-	rest := d.rest()
-	done := d.body[:len(d.body)-len(rest)]
+	done, rest := d.body[:d.at], d.body[d.at:]
 	line := 1 + bytes.Count(done, []byte{'\n'})
-	column := len(done) - bytes.LastIndexByte(done, '\n')
-	near := rest[:min(len(rest), maxQuote/2)]
-	if len(near) == 0 {
-		return ""
-	}
-	return fmt.Sprintf(" (line %d, byte %d, at %s)", line, column, strconv.QuoteToASCII(string(near)))
+	column := d.at - bytes.LastIndexByte(done, '\n')
+	near := strings.ToValidUTF8(string(rest[:min(len(rest), maxQuote/2)]), "")
+	return fmt.Sprintf(" (line %d, byte %d, at %s)", line, column, strconv.QuoteToASCII(near))
 }
 
 // pointer returns the path as a JSON pointer (RFC 6901) in its form of a URI fragment.

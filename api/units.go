@@ -299,8 +299,18 @@ func (u *units) optional(k kind, number *float64) *float64 {
 	return new(u.in(k, *number))
 }
 
-// out converts an SI value to the caller's unit.
+// out converts an SI value to the caller's unit, as it is written. Temperatures and their differences are written to
+// 1e-11 of a degree: solvers are not sure of more, and 50 reads better than 49.999999999999716.
 func (u *units) out(k kind, si float64) float64 {
+	x := u.exact(k, si)
+	if k == kindTemperature || k == kindTemperatureDifference {
+		return math.Round(x*1e11) / 1e11
+	}
+	return x
+}
+
+// exact converts an SI value to the caller's unit.
+func (u *units) exact(k kind, si float64) float64 {
 	if k == kindNone {
 		return si
 	}
