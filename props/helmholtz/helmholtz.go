@@ -11,6 +11,7 @@
 package helmholtz
 
 import (
+	"errors"
 	"fmt"
 	"math"
 )
@@ -156,13 +157,15 @@ type bell struct {
 type peak struct{ n, a, b, beta, A, B, C, D float64 }
 
 // New prepares an equation. It returns an error that names the row when a row has the wrong length, a value that is not
-// finite, or an exponent of delta beyond what the tables of
-// powers hold.
+// finite, or an exponent of delta beyond what the tables of powers hold.
 func New(c Coefficients) (*Equation, error) {
 	for _, v := range []float64{c.GasConstant, c.ReducingTemperature, c.ReducingDensity} {
 		if !(v > 0) || math.IsInf(v, 0) {
 			return nil, fmt.Errorf("helmholtz: gas constant and reducing point must be positive and finite, have %g", v)
 		}
+	}
+	if err := c.Ideal.check(); err != nil {
+		return nil, err
 	}
 	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, ideal: ideal{Ideal: c.Ideal}}
 	b := builder{eq: e, shapeAt: map[shapeKey]int{}}
@@ -203,5 +206,27 @@ func New(c Coefficients) (*Equation, error) {
 			}
 		}
 	}
-	return e, b.finish()
+	if err := b.finish(); err != nil {
+		return nil, err
+	}
+	return e, nil
+}
+
+func (p *Ideal) check() error {
+	numbers := []float64{p.Constant, p.Tau, p.LnTau, p.TauLnTau}
+	for _, row := range p.TauPowers {
+		numbers = append(numbers, row[:]...)
+	}
+	for _, row := range p.PlanckEinstein {
+		numbers = append(numbers, row[:]...)
+		if row[1] <= 0 {
+			return fmt.Errorf("helmholtz: theta %g in the ideal part is not positive", row[1])
+		}
+	}
+	for _, v := range numbers {
+		if math.IsNaN(v) || math.IsInf(v, 0) {
+			return errors.New("helmholtz: a number of the ideal part is not finite")
+		}
+	}
+	return nil
 }
