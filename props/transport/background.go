@@ -203,5 +203,5 @@ func (p *packing) limit(tau float64) float64 {
 	if p.r134a {
 		return p.c[2] / (1 + (p.c[0]+p.c[1]/tau)/tau)
 	}
-	return p.g0 * (1 + polynomial(p.g, tau, math.Log(tau)))
+	return p.g0 * (1 + polynomial(p.g, tau))
 }

@@ -22,10 +22,11 @@ const (
 )
 
 // A conformal state must lie within these factors of the one by the critical constants; a solution farther off is another
-// branch.
+// branch. Its weight fades over the last part before the limits, so that nothing jumps where a solution drifts out.
 const (
 	conformalTMin, conformalTMax     = 0.75, 1.35
 	conformalRhoMin, conformalRhoMax = 0.5, 2.5
+	conformalTFade, conformalRhoFade = 0.03, 0.05 // of the limits
 )
 
 const (
@@ -52,8 +53,12 @@ func conform(p *point, f, reference *Fluid) conformal {
 		return s
 	}
 	if T0, rho0, ok := solveConformal(p, reference, s.T1, s.rho1); ok {
-		s.T0, s.rho0 = T0, rho0
-		s.simple = max(0, (denseEnough-d)/(denseEnough-thinGas))
+		within := min(inside(T0/s.T1, conformalTMin, conformalTMax, conformalTFade),
+			inside(rho0/s.rho1, conformalRhoMin, conformalRhoMax, conformalRhoFade))
+		if within > 0 {
+			s.T0, s.rho0 = T0, rho0
+			s.simple = 1 - within*min(1, (d-thinGas)/(denseEnough-thinGas))
+		}
 	}
 	return s
 }
@@ -61,6 +66,11 @@ func conform(p *point, f, reference *Fluid) conformal {
 // beyond reports whether the conformal state is outside the range of the reference fluid's equation of state.
 func (s *conformal) beyond() bool {
 	return s.T0 < s.fluid.TemperatureMin || s.T0 > s.fluid.TemperatureMax || s.rho0 > s.fluid.DensityMax
+}
+
+// inside returns 1 well between two limits, 0 at and beyond them, and a straight line over the fraction fade in between.
+func inside(x, low, high, fade float64) float64 {
+	return max(0, min(1, (x/low-1)/fade, (1-x/high)/fade))
 }
 
 // solveConformal finds the conformal state by Newton's method in ln T0 and ln c0, started at (T1, c1).
@@ -86,8 +96,7 @@ func solveConformal(p *point, reference *Fluid, T1, rho1 float64) (T0, rho0 floa
 			return 0, 0, false
 		}
 		if math.Abs(du) < conformalTolerance && math.Abs(dv) < conformalTolerance {
-			x, y := math.Exp(u), math.Exp(v)
-			return T1 * x, rho1 * y, conformalTMin < x && x < conformalTMax && conformalRhoMin < y && y < conformalRhoMax
+			return T1 * math.Exp(u), rho1 * math.Exp(v), true
 		}
 	}
 	return 0, 0, false

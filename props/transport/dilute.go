@@ -39,14 +39,12 @@ type (
 )
 
 func (g *powerGas) at(T float64) float64 {
-	x := T / g.temperature
-	return polynomial(g.rows, x, math.Log(x))
+	return polynomial(g.rows, T/g.temperature)
 }
 
 func (g *rationalGas) at(T float64) float64 {
 	x := T / g.temperature
-	lnX := math.Log(x)
-	return polynomial(g.num, x, lnX) / polynomial(g.den, x, lnX)
+	return polynomial(g.num, x) / polynomial(g.den, x)
 }
 
 func (g *logGas) at(T float64) float64 {
@@ -59,16 +57,16 @@ func (g *sphereGas) at(T float64) float64 {
 
 func (g *inverseGas) at(T float64) float64 {
 	x := T / g.temperature
-	return g.factor * math.Sqrt(x) / polynomial(g.rows, x, math.Log(x))
+	return g.factor * math.Sqrt(x) / polynomial(g.rows, x)
 }
 
 func (g *exponentialGas) at(T float64) float64 {
-	lnT := math.Log(T)
+	b := base{x: T}
 	var sum float64
 	for _, r := range g.rows {
-		c := r[0] * power(T, lnT, r[1])
+		c := r[0] * b.power(r[1])
 		if r[2] != 0 {
-			c *= math.Exp(r[2] * power(T, lnT, r[3]))
+			c *= math.Exp(r[2] * b.power(r[3]))
 		}
 		sum += c
 	}

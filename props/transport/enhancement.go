@@ -15,6 +15,10 @@ const (
 	waterReach    = 1e-5
 )
 
+// criticalHeat limits cv to a multiple of the ideal heat capacity. Only equations with non-analytic terms, of water and R744,
+// exceed it, and only next to their critical point.
+const criticalHeat = 5
+
 // fluctuation holds what the theory of critical fluctuations needs of a fluid. The correlation length is
 // xi0 (D/gamma0)^(nu/gamma) for a reduced susceptibility D above that of a reference temperature.
 type fluctuation struct {
@@ -62,8 +66,9 @@ func (f *fluctuation) conductivity(p *point, slope, eta float64) (float64, bool)
 	if y < 1e-7 { // rounding exceeds the result
 		return 0, limited
 	}
-	cp := p.heatCapacity(k)
-	q := p.cv / cp
+	cv := min(p.cv, criticalHeat*p.cp0)
+	cp := p.heatCapacity(k) + cv - p.cv
+	q := cv / cp
 	r := f.rhoc / p.Rho
 	omega := (1-q)*math.Atan(y) + q*y
 	omega0 := -math.Expm1(-1 / (1/y + y*y*r*r/3))

@@ -36,9 +36,42 @@ type entropyFit struct {
 	n, exponents []float64
 	xi           float64
 	halves       bool // exponents 1, 1.5, 2, 2.5
+
+	// The s+ beyond which the fit is continued in proportion to s+, infinite for most, and Q there.
+	end, last float64
 }
 
+// Some fits of viscosity bend down in a cold liquid, until it gets thinner with falling temperature. All the others grow
+// faster than s+ there. From the first s+ above bendFrom at which a fit grows slower, it is continued in proportion. The rule
+// is this project's own; it concerns R12, R142b, R143a, R1224yd(Z) and R1336mzz(Z) below 0.6 of the critical temperature.
+const (
+	bendFrom = 4.0 // thinner states are within every fit
+	bendTo   = 20.0
+)
+
+// bound finds the end of the fit.
+func (f *entropyFit) bound() {
+	const step = 0.01
+	before := f.sum(bendFrom) / bendFrom
+	for s := bendFrom + step; s < bendTo; s += step {
+		ratio := f.sum(s) / s
+		if ratio < before && before > 0 {
+			f.end, f.last = s-step, before*(s-step)
+			return
+		}
+		before = ratio
+	}
+}
+
+// q returns Q.
 func (f *entropyFit) q(splus float64) float64 {
+	if splus > f.end {
+		return f.last * splus / f.end
+	}
+	return f.sum(splus)
+}
+
+func (f *entropyFit) sum(splus float64) float64 {
 	x := splus / f.xi
 	if f.halves {
 		r := math.Sqrt(x)
@@ -153,12 +186,17 @@ func (f *entropyForm) compile(fluid *Fluid) (entropyModel, error) {
 	case len(f.N) != len(set.exponents):
 		return entropyModel{}, fmt.Errorf("n has %d numbers, want %d", len(f.N), len(set.exponents))
 	}
+	fit.end = math.Inf(1)
 	return entropyModel{fit, f.sphere, fluid.MolarMass}, nil
 }
 
 func (f *entropyForm) viscosity(fluid *Fluid) (viscosityModel, error) {
 	m, err := f.compile(fluid)
-	return &entropyScaledViscosity{m, f.InMixtures}, err
+	if err != nil {
+		return nil, err
+	}
+	m.fit.bound()
+	return &entropyScaledViscosity{m, f.InMixtures}, nil
 }
 
 func (f *entropyForm) conductivity(fluid *Fluid) (conductivityModel, error) {

@@ -152,17 +152,24 @@ func (m *Mixture) viscosityAt(p *point, dilutes *[maxComponents]float64, x []flo
 			eta += x[i] * dilutes[i] / m.collisions(i, x, dilutes)
 		}
 	}
+	var continued bool
 	if splus := p.residualEntropy(); p.mass >= thinnest && splus > 0 {
 		var q float64
 		for i, c := range m.components {
-			q += x[i] * c.scaledViscosity.model.(*entropyScaledViscosity).fit.q(splus)
+			fit := &c.scaledViscosity.model.(*entropyScaledViscosity).fit
+			q += x[i] * fit.q(splus)
+			continued = continued || x[i] > 0 && splus > fit.end
 		}
 		eta += entropyViscosity(p, q, splus, mean)
 	}
 	if !(eta > 0) || !finite(eta) {
 		return Value{}, m.refuse(Viscosity, p.State)
 	}
-	return m.value(Viscosity, p, x, eta), nil
+	v := m.value(Viscosity, p, x, eta)
+	if continued {
+		v.continued()
+	}
+	return v, nil
 }
 
 func (m *Mixture) conductivityAt(p *point, dilutes *[maxComponents]float64, s *MixtureState, mean, eta float64) (Value, error) {
@@ -240,20 +247,21 @@ func (m *Mixture) fluctuation(x []float64) fluctuation {
 // diluteViscosity returns the dilute part of the recommended viscosity, or that of entropy scaling where it is out of the
 // question.
 func (m *Model) diluteViscosity(T float64) float64 {
-	return plausible(m.viscosity[0].model.dilute(T), m.scaledViscosity.model.dilute(T))
+	own, general := m.viscosity[0].model.dilute(T), m.scaledViscosity.model.dilute(T)
+	if !plausible(own, general) {
+		return general
+	}
+	return own
 }
 
 // diluteConductivity does the same for the thermal conductivity. The factor 1.32 of entropy scaling overpredicts many
 // refrigerants by 10 to 35 %, so that the recommended part matters.
 func (m *Model) diluteConductivity(T, cp0 float64) float64 {
-	return plausible(m.conductivity[0].model.dilute(T, cp0), m.scaledConductivity.model.dilute(T, cp0))
-}
-
-func plausible(v, general float64) float64 {
-	if v < gasFactor*general && general < gasFactor*v {
-		return v
+	own, general := m.conductivity[0].model.dilute(T, cp0), m.scaledConductivity.model.dilute(T, cp0)
+	if !plausible(own, general) {
+		return general
 	}
-	return general
+	return own
 }
 
 func (m *Mixture) value(property Property, p *point, x []float64, y float64) Value {

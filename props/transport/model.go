@@ -150,9 +150,10 @@ func (m *Model) ViscosityAndConductivity(s State) (eta, lambda Value, err error)
 	return eta, lambda, err
 }
 
-// Outside its range of temperature the dilute part of a correlation may bend away or turn negative. A gas property that is
-// not within this factor of entropy scaling, which is sound in a gas, is replaced by it. The rule is this project's own.
-const gasFactor = 2
+// Outside its range of temperature the dilute part of a correlation may bend away or turn negative. Where it is not within
+// this factor of that of entropy scaling, which is sound, a gas property comes from there. The rule is this project's own;
+// inside their ranges the dilute parts agree within 10 % (viscosity) and 35 % (conductivity).
+const gasFactor = 1.5
 
 // extrapolated is the least relative uncertainty that is stated outside the range of a record: the order of the spread
 // between correlations of one fluid where no data restrain them.
@@ -161,12 +162,14 @@ const extrapolated = 0.10
 // viscosityAt evaluates the recommended viscosity, or entropy scaling where that is not usable.
 func (m *Model) viscosityAt(p *point) (Value, error) {
 	v, ok := m.viscosityOf(&m.viscosity[0], p)
-	if !ok || m.suspect(&v, p) {
-		general, can := m.viscosityOf(m.scaledViscosity, p)
-		v, ok = prefer(v, general, ok, can)
+	if ok && m.gasOutside(&v, p) {
+		ok = v.compare(m.viscosity[0].model.dilute(p.T), m.scaledViscosity.model.dilute(p.T))
 	}
 	if !ok {
-		return Value{}, m.refuse(Viscosity, p.State)
+		if v, ok = m.viscosityOf(m.scaledViscosity, p); !ok {
+			return Value{}, m.refuse(Viscosity, p.State)
+		}
+		v.reservations |= substituted
 	}
 	return v, nil
 }
@@ -178,6 +181,9 @@ func (m *Model) viscosityOf(r *viscosityRecord, p *point) (Value, bool) {
 	p.conformTo(&m.fluid, r.conforms)
 	eta, ok := r.model.viscosity(*p)
 	v := m.value(&r.Record, p, eta)
+	if s, scaled := r.model.(*entropyScaledViscosity); scaled && p.residualEntropy() > s.fit.end {
+		v.continued()
+	}
 	if r.conforms != nil && p.conforms.beyond() {
 		v.extrapolate(beyondReference)
 	}
@@ -190,12 +196,14 @@ func (m *Model) viscosityOf(r *viscosityRecord, p *point) (Value, bool) {
 // conductivityAt evaluates the recommended thermal conductivity, or entropy scaling where that is not usable.
 func (m *Model) conductivityAt(p *point, eta float64) (Value, error) {
 	v, ok := m.conductivityOf(&m.conductivity[0], p, eta)
-	if !ok || m.suspect(&v, p) {
-		general, can := m.conductivityOf(m.scaledConductivity, p, eta)
-		v, ok = prefer(v, general, ok, can)
+	if ok && m.gasOutside(&v, p) {
+		ok = v.compare(m.conductivity[0].model.dilute(p.T, p.cp0), m.scaledConductivity.model.dilute(p.T, p.cp0))
 	}
 	if !ok {
-		return Value{}, m.refuse(ThermalConductivity, p.State)
+		if v, ok = m.conductivityOf(m.scaledConductivity, p, eta); !ok {
+			return Value{}, m.refuse(ThermalConductivity, p.State)
+		}
+		v.reservations |= substituted
 	}
 	return v, nil
 }
@@ -203,7 +211,6 @@ func (m *Model) conductivityAt(p *point, eta float64) (Value, error) {
 func (m *Model) conductivityOf(r *conductivityRecord, p *point, eta float64) (Value, bool) {
 	p.conformTo(&m.fluid, r.conforms)
 	lambda, ok := r.model.background(*p)
-	ok = ok && lambda > 0
 	v := m.value(&r.Record, p, lambda)
 	if r.conforms != nil && p.conforms.beyond() {
 		v.extrapolate(beyondReference)
@@ -222,22 +229,26 @@ func (m *Model) conductivityOf(r *conductivityRecord, p *point, eta float64) (Va
 			v.reservations |= nearCritical
 		}
 	}
-	return v, ok && finite(v.Value)
+	return v, ok && lambda > 0 && v.Value > 0 && finite(v.Value)
 }
 
-// suspect reports whether v is a gas property outside the temperature range of its record.
-func (m *Model) suspect(v *Value, p *point) bool {
+// gasOutside reports whether v is a gas property outside the temperature range of its record.
+func (m *Model) gasOutside(v *Value, p *point) bool {
 	return v.reservations&beyondTemperature != 0 && p.Rho <= m.fluid.Critical.Rho
 }
 
-// prefer returns v unless it is not usable or differs so much from the general value that it must be wrong.
-func prefer(v, general Value, ok, can bool) (Value, bool) {
-	if ok && (!can || v.Value < gasFactor*general.Value && general.Value < gasFactor*v.Value) {
-		return v, true
+// compare reports whether the dilute part of a correlation outside its range is plausible beside the general one. What they
+// differ by is the least uncertainty of v.
+func (v *Value) compare(own, general float64) bool {
+	if !plausible(own, general) {
+		return false
 	}
-	general.reservations |= substituted
-	return general, can
+	v.Uncertainty = max(v.Uncertainty, math.Abs(math.Log(own/general)))
+	return true
 }
+
+// plausible reports whether the dilute part of a correlation is within a factor of the general one.
+func plausible(v, general float64) bool { return v < gasFactor*general && general < gasFactor*v }
 
 // SurfaceTension returns the surface tension in N/m at temperature T in K, or a [*StateError]. It vanishes at and above
 // merge, the temperature in K at which the two phases of the equation of state merge.

@@ -31,20 +31,26 @@ func (p powers) check() error {
 
 // of fills out with the powers of x, which must not be negative.
 func (p powers) of(x float64, out *[maxPowers]float64) {
-	lnX := math.Log(x)
+	b := base{x: x}
 	for i, t := range p {
-		out[i&(maxPowers-1)] = power(x, lnX, t)
+		out[i&(maxPowers-1)] = b.power(t)
 	}
 }
 
-// power returns x^t given ln x. Whole exponents are exact and defined at x = 0.
-func power(x, lnX, t float64) float64 {
+// base is a number whose powers are wanted. Its logarithm is taken once, when the first broken exponent comes.
+type base struct{ x, ln float64 }
+
+// power returns x^t. Whole exponents are exact and defined at x = 0.
+func (b *base) power(t float64) float64 {
 	n := int(math.Abs(t))
 	if float64(n) != math.Abs(t) || n > 32 {
-		return math.Exp(t * lnX)
+		if b.ln == 0 {
+			b.ln = math.Log(b.x)
+		}
+		return math.Exp(t * b.ln)
 	}
 	y := 1.0
-	for z := x; n > 0; n >>= 1 {
+	for z := b.x; n > 0; n >>= 1 {
 		if n&1 == 1 {
 			y *= z
 		}
@@ -57,10 +63,11 @@ func power(x, lnX, t float64) float64 {
 }
 
 // polynomial returns sum rows[i][0]*x^rows[i][1].
-func polynomial(rows [][2]float64, x, lnX float64) float64 {
+func polynomial(rows [][2]float64, x float64) float64 {
+	b := base{x: x}
 	var sum float64
 	for _, r := range rows {
-		sum += r[0] * power(x, lnX, r[1])
+		sum += r[0] * b.power(r[1])
 	}
 	return sum
 }

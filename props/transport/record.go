@@ -69,7 +69,7 @@ type head struct {
 	Verification string       `json:"verification"`
 }
 
-// estimate is what a kind of model is good for where its record states nothing. The figures of the general methods are
+// kinds says what a kind of model is good for where its record states nothing. The figures of the general methods are
 // the spread of these against the reference correlations along saturation, which a test of this package measures; those
 // of reference correlations are common practice: their papers state 1 to 5 % with a coverage factor of 2.
 var kinds = map[string]struct {
@@ -82,10 +82,16 @@ var kinds = map[string]struct {
 	"iapws_2011":           {Correlation, Uncertainty{0.01, 0.015, "IAPWS R15-11, from memory: 1 to 4 %"}},
 	"shan_2000":            {Correlation, Uncertainty{0.05, 0.05, "residual concentration model, no published check value"}},
 	"corresponding_states": {CorrespondingStates, Uncertainty{0.05, 0.05, "usual for fitted shape factors"}},
-	"entropy_scaling":      {EntropyScaling, Uncertainty{0.05, 0.08, "spread against reference correlations"}},
+	"entropy_scaling":      {EntropyScaling, Uncertainty{}},
 	"sigma_sum":            {Correlation, Uncertainty{0.02, 0.02, "independent fits agree within 3 %"}},
 	"iapws_surface":        {Correlation, Uncertainty{0.005, 0.005, "IAPWS R1-76, from memory: 0.2 to 2 %"}},
 	"brock_bird":           {BoilingPointRule, Uncertainty{0.08, 0.08, "spread against published fits"}},
+}
+
+// entropyUncertainty is that of entropy scaling, by property.
+var entropyUncertainty = [...]Uncertainty{
+	Viscosity:           {0.04, 0.09, "spread of the method against reference correlations along saturation"},
+	ThermalConductivity: {0.06, 0.12, "spread of the method against reference correlations along saturation"},
 }
 
 // describe makes the description of a record that has been read.
@@ -99,6 +105,9 @@ func describe(h *head, p Property, f *Fluid) (Record, error) {
 	}
 	r := Record{Property: p, Rank: h.Rank, Method: k.method, Source: h.Source, Note: h.Note, Verification: h.Verification,
 		Range: Range{f.TemperatureMin, f.TemperatureMax, f.PressureMax}, Uncertainty: k.uncertainty}
+	if k.method == EntropyScaling {
+		r.Uncertainty = entropyUncertainty[p]
+	}
 	if h.Range != nil {
 		r.Range = *h.Range
 		if r.Range.PressureMax == 0 {

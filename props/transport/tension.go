@@ -17,6 +17,10 @@ type tensionModel interface {
 type tensionRecord struct {
 	Record
 	model tensionModel
+
+	// Beyond its range a fit may turn down or negative; these are the temperatures from which the law of Guggenheim
+	// continues it then.
+	floor, ceiling float64 // K
 }
 
 // tensionSum is sum s (1 - T/T_c)^n.
@@ -28,8 +32,7 @@ type tensionSum struct {
 func (m *tensionSum) criticalT() float64 { return m.tc }
 
 func (m *tensionSum) tension(T float64) float64 {
-	t := 1 - T/m.tc
-	return polynomial(m.rows, t, math.Log(t))
+	return polynomial(m.rows, max(0, 1-T/m.tc))
 }
 
 // waterTension is IAPWS R1-76 (2014).
@@ -38,7 +41,7 @@ type waterTension struct{ tc, B, b, mu float64 }
 func (m *waterTension) criticalT() float64 { return m.tc }
 
 func (m *waterTension) tension(T float64) float64 {
-	t := 1 - T/m.tc
+	t := max(0, 1-T/m.tc)
 	return m.B * math.Pow(t, m.mu) * (1 + m.b*t)
 }
 
@@ -58,8 +61,11 @@ func newBoilingTension(f *Fluid, boiling float64) (*boilingTension, error) {
 func (m *boilingTension) criticalT() float64 { return m.tc }
 
 func (m *boilingTension) tension(T float64) float64 {
-	return m.factor * math.Pow(1-T/m.tc, 11.0/9)
+	return m.factor * math.Pow(max(0, 1-T/m.tc), guggenheim)
 }
+
+// guggenheim is the exponent of the law of van der Waals and Guggenheim, sigma ~ (1 - T/T_c)^(11/9).
+const guggenheim = 11.0 / 9
 
 // mergeFrom is the reduced temperature above which the temperature scale of a record is stretched, so that the tension
 // vanishes where the two phases of the equation of state merge and not at the critical point that the record assumes.
@@ -73,7 +79,44 @@ func (r *tensionRecord) at(T, merge float64) float64 {
 	if x := T / merge; x > mergeFrom {
 		T += (r.model.criticalT() - merge) * (x - mergeFrom) / (1 - mergeFrom)
 	}
+	if T < r.floor {
+		return r.guggenheim(r.floor, T)
+	}
+	if T > r.ceiling {
+		return r.guggenheim(r.ceiling, T)
+	}
 	return r.model.tension(T)
+}
+
+// guggenheim continues the model from temperature end to T.
+func (r *tensionRecord) guggenheim(end, T float64) float64 {
+	tc := r.model.criticalT()
+	return r.model.tension(end) * math.Pow(max(0, tc-T)/(tc-end), guggenheim)
+}
+
+// bound sets where the model must not be used.
+func (r *tensionRecord) bound(low float64) {
+	r.floor, r.ceiling = 0, math.Inf(1)
+	if start := r.Range.TemperatureMin; low < start && !sound(r.model, low, start) {
+		r.floor = start
+	}
+	if end, tc := r.Range.TemperatureMax, r.model.criticalT(); end < tc && !sound(r.model, end, tc) {
+		r.ceiling = end
+	}
+}
+
+// sound reports whether the model falls all the way from temperature low to high and is not negative.
+func sound(m tensionModel, low, high float64) bool {
+	const steps = 400
+	before := math.Inf(1)
+	for i := range steps + 1 {
+		v := m.tension(low + (high-low)*float64(i)/steps)
+		if !(v < before && v >= 0) {
+			return false
+		}
+		before = v
+	}
+	return true
 }
 
 // tensionForm is a surface tension record of any kind.
@@ -113,6 +156,9 @@ func newTension(b json.RawMessage, f *Fluid) (tensionRecord, error) {
 	if c := r.model.criticalT(); !(math.Abs(c/f.Critical.T-1) < 0.01) {
 		return tensionRecord{}, fmt.Errorf("T_c %g K is not that of the fluid", c)
 	}
-	r.Record, err = describe(&form.head, SurfaceTension, f)
-	return r, err
+	if r.Record, err = describe(&form.head, SurfaceTension, f); err != nil {
+		return tensionRecord{}, err
+	}
+	r.bound(f.TemperatureMin)
+	return r, nil
 }

@@ -50,6 +50,7 @@ const (
 	beyondTemperature reservation = 1 << iota
 	beyondPressure
 	beyondReference
+	beyondEntropy
 	substituted
 	nearCritical
 )
@@ -60,6 +61,15 @@ func (v *Value) extrapolate(r reservation) {
 		v.reservations |= r
 		v.Uncertainty = max(v.Uncertainty, extrapolated)
 	}
+}
+
+// continuedUncertainty is the spread of continued fits against the recommended records of the refrigerants concerned.
+const continuedUncertainty = 0.3
+
+// continued marks a value by entropy scaling beyond the end of its fit.
+func (v *Value) continued() {
+	v.reservations |= beyondEntropy
+	v.Uncertainty = max(v.Uncertainty, continuedUncertainty)
 }
 
 // Cautions returns the reservations about v, none when it is as good as its record says.
@@ -85,6 +95,7 @@ func (v Value) Cautions() []Caution {
 		}
 	}
 	remark(beyondReference, OutsideRange, "%s by corresponding states with a state of the reference fluid that is outside its range", name)
+	remark(beyondEntropy, OutsideRange, "%s by entropy scaling beyond the residual entropy where its fit is sound", name)
 	remark(substituted, Substituted, "%s by %s, since the recommended correlation has a pole or is meaningless at this state", name, r.Method)
 	remark(nearCritical, NearCritical, "%s so near the critical point that its enhancement is limited or left out", name)
 	return out

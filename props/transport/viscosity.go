@@ -71,7 +71,7 @@ func (b *viscosityVirial) at(T float64) float64 {
 	if b.rows == nil {
 		return b.scale * rainwaterFriend(x)
 	}
-	return b.scale * polynomial(b.rows, x, math.Log(x))
+	return b.scale * polynomial(b.rows, x)
 }
 
 // viscosityForm is the viscosity record of a coefficient file, any kind but those of water and R23.
