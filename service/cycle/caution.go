@@ -94,9 +94,9 @@ func (c *circuit) raiseAt(n *node) {
 			c.caution(Caution{Code: FlashBeforeValve, Label: n.label(), Message: message(
 				"liquid flashes before the expansion valve: quality %s at its inlet", plain(n.Quality))})
 		}
-		if n.place == valveInlet && n.T < c.low.dew-aboveEnough {
+		if n.place == valveInlet && n.T < c.evaporating[n.side]-aboveEnough {
 			c.caution(Caution{Code: SubcooledBelowEvaporation, Label: n.label(), Message: message(
-				"liquid reaches the expansion valve at %s, colder than it evaporates, %s", temperature(n.T), temperature(c.low.dew))})
+				"liquid reaches the expansion valve at %s, colder than it evaporates, %s", temperature(n.T), temperature(c.evaporating[n.side]))})
 		}
 	}
 }

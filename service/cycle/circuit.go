@@ -27,19 +27,20 @@ type node struct {
 
 func (n *node) label() string { return placeNames[n.side][n.place].label }
 
-// pair holds the indexes of one or two nodes; noNode fills the rest.
-type pair [2]int8
+// ports holds the indexes of the nodes on one side of a component; noNode fills the rest.
+type ports [3]int8
 
 const noNode = -1
 
-func one(n *node) pair    { return pair{n.index, noNode} }
-func two(a, b *node) pair { return pair{a.index, b.index} }
+func one(n *node) ports         { return ports{n.index, noNode, noNode} }
+func two(a, b *node) ports      { return ports{a.index, b.index, noNode} }
+func three(a, b, c *node) ports { return ports{a.index, b.index, c.index} }
 
 // account is what a component does with a kilogram of its first inlet's stream. The flows come in when all are known.
 type account struct {
 	part    part
 	side    side
-	in, out pair
+	in, out ports
 	heat    float64 // J/kg, into the refrigerant
 	work    float64 // J/kg, likewise
 	heatT   float64 // K, of what the heat comes from or goes to; NaN when not known
@@ -74,8 +75,10 @@ type circuit struct {
 	side         side
 	low          lowSide
 	high         highSide
-
-	intermediate float64 // pressure, Pa; NaN in a layout without one
+	middle       middle
+	evaporating  [sideCount]float64 // dew temperatures, K
+	meanTrial    float64            // evaporating pressure on trial, Pa; NaN outside the search for a mean temperature
+	searching    bool               // inside the search for another pressure
 
 	flows            [streamCount]float64 // kg/s, on any common scale
 	nodes            [maxNodes]node
@@ -86,6 +89,7 @@ type circuit struct {
 	compressionCount int
 
 	evaporatorInlet float64 // temperature at 6, K
+	optima          []Optimum
 	figures         Figures
 	refused         *Refusal
 }
@@ -111,7 +115,7 @@ func (c *circuit) put(at place, of stream, s props.State, err error, field strin
 	return n
 }
 
-func (c *circuit) record(p part, in, out pair, heat, work, heatT float64) {
+func (c *circuit) record(p part, in, out ports, heat, work, heatT float64) {
 	if c.refused != nil {
 		return
 	}

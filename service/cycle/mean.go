@@ -47,24 +47,18 @@ func (c *circuit) meanEvaporation() {
 		if c.refused != nil {
 			return nan
 		}
-		dew, err := c.saturationTemperature(p, gas)
-		if err != nil {
-			c.refuse(c.noState(evaporatorOutlet, e.field(), err))
-			return nan
-		}
-		c.setLowAt(e, p, dew)
-		c.setOrder()
-		c.assemble()
-		return (c.evaporatorInlet+dew)/2 - e.temperature
+		c.meanTrial = p
+		c.atLowSide()
+		return (c.evaporatorInlet+c.evaporatingDew())/2 - e.temperature
 	}
-	p := c.low.pressure
-	f := (c.evaporatorInlet+c.low.dew)/2 - e.temperature
+	c.atLowSide() // at the dew point
+	p, f := c.figures.EvaporatingPressure, (c.evaporatorInlet+c.evaporatingDew())/2-e.temperature
 	factor := meanFactor
 	if f > 0 {
 		factor = 1 / factor
 	}
 	for range meanSteps {
-		if math.Abs(f) <= meanTolerance*e.temperature || c.refused != nil {
+		if c.refused != nil || math.Abs(f) <= meanTolerance*e.temperature {
 			return
 		}
 		next := p * factor
@@ -82,4 +76,12 @@ func (c *circuit) meanEvaporation() {
 		Code: NoSolution, Field: e.field(),
 		Message: message("no evaporating pressure has a mean temperature of %s", temperature(e.temperature)),
 	})
+}
+
+// evaporatingDew returns the dew temperature in the machine's evaporator.
+func (c *circuit) evaporatingDew() float64 {
+	if c.layout == Cascade {
+		return c.evaporating[lower]
+	}
+	return c.evaporating[only]
 }

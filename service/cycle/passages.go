@@ -62,6 +62,7 @@ func (c *circuit) exchange(as part, in, out *node, T float64) {
 func (c *circuit) evaporate(in, out *node) {
 	c.exchange(evaporator, in, out, c.source)
 	c.evaporatorInlet = in.T
+	c.figures.EvaporatingPressure = out.P
 }
 
 // reject gives heat to the sink.

@@ -23,6 +23,7 @@ const (
 	condenserInlet                    // 3
 	condenserOutlet                   // 4
 	liquidLineOutlet                  // 4m
+	branchedLiquid                    // 4i
 	injectionValveInlet               // 5i
 	injectionValveOutlet              // 6i
 	injection                         // 7i
@@ -60,6 +61,7 @@ var plainPlaces = [placeCount]name{
 	condenserInlet:       {"3", "condenser inlet"},
 	condenserOutlet:      {"4", "condenser outlet"},
 	liquidLineOutlet:     {"4m", "liquid line outlet"},
+	branchedLiquid:       {"4i", "liquid behind the branch"},
 	injectionValveInlet:  {"5i", "injection valve inlet"},
 	injectionValveOutlet: {"6i", "injection valve outlet"},
 	injection:            {"7i", "injection vapour"},
@@ -91,11 +93,13 @@ const (
 	condenser
 	gasCooler
 	liquidLine
+	liquidBranch
 	internalExchanger
 	economiser
 	injectionValve
 	highValve
 	flashTank
+	receiver
 	interstageMixer
 	ejector
 	separator
@@ -120,11 +124,13 @@ var plainParts = [partCount]string{
 	condenser:          "condenser",
 	gasCooler:          "gas_cooler",
 	liquidLine:         "liquid_line",
+	liquidBranch:       "liquid_branch",
 	internalExchanger:  "internal_exchanger",
 	economiser:         "economiser",
 	injectionValve:     "injection_valve",
 	highValve:          "high_pressure_valve",
 	flashTank:          "flash_tank",
+	receiver:           "receiver",
 	interstageMixer:    "interstage_mixer",
 	ejector:            "ejector",
 	separator:          "separator",

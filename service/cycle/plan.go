@@ -39,10 +39,14 @@ type evaporation struct {
 	mean                  bool
 	superheat, quality    float64
 	superheatField        string
+	levelField            string // path of what fixes the pressure, where it is no field of the evaporation
 }
 
 // field returns the path of what fixes the evaporating pressure.
 func (e *evaporation) field() string {
+	if e.levelField != "" {
+		return e.levelField
+	}
 	if isGiven(e.pressure) {
 		return "evaporation.pressure"
 	}
@@ -54,10 +58,14 @@ type condensation struct {
 	mean                  bool
 	subcooling            float64
 	subcoolingField       string
+	levelField            string // as in an evaporation
 }
 
 // field returns the path of what fixes the condensing pressure.
 func (k *condensation) field() string {
+	if k.levelField != "" {
+		return k.levelField
+	}
 	if isGiven(k.pressure) {
 		return "condensation.pressure"
 	}

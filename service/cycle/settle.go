@@ -105,7 +105,7 @@ func (c *circuit) solution(r *Request) *Solution {
 	scale := c.scale(t)
 	s := &Solution{
 		Layout: r.Layout, With: r.With, Purpose: c.purpose, PerUnit: c.size.of == perUnit,
-		Ambient: c.ambient, Figures: c.figures,
+		Ambient: c.ambient, Figures: c.figures, Optima: c.optima,
 	}
 	c.settleStates(s, scale)
 	c.settleComponents(s, scale, t)
@@ -141,12 +141,18 @@ func (c *circuit) settleStates(s *Solution, scale float64) {
 	}
 }
 
-func (c *circuit) labels(p pair) []string {
+func (c *circuit) labels(p ports) []string {
 	a := &c.nodes[p[0]]
 	if p[1] == noNode {
 		return labelLists[a.side][a.place]
 	}
-	return []string{a.label(), c.nodes[p[1]].label()}
+	labels := make([]string, 0, len(p))
+	for _, i := range p {
+		if i != noNode {
+			labels = append(labels, c.nodes[i].label())
+		}
+	}
+	return labels
 }
 
 func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
@@ -168,8 +174,10 @@ func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
 			Heat:     b.heat, Work: b.work, HeatTemperature: nan,
 			EntropyGeneration: b.entropy, ExergyDestruction: c.ambient * b.entropy,
 		}
-		if a.mixes() {
-			comp.MassFlow += scale * c.flow(&c.nodes[a.in[1]])
+		for _, i := range a.in[1:] {
+			if i != noNode && a.part.mixes() {
+				comp.MassFlow += scale * c.flow(&c.nodes[i])
+			}
 		}
 		k.EnergyResidualFraction += math.Abs(b.residual)
 		k.ExergyDestruction += comp.ExergyDestruction
@@ -197,9 +205,9 @@ func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
 	}
 }
 
-// mixes reports whether two inlets become one flow.
-func (a *account) mixes() bool {
-	return a.in[1] != noNode && a.part != internalExchanger && a.part != economiser && a.part != cascadeExchanger
+// mixes reports whether all inlets of a component become one flow.
+func (p part) mixes() bool {
+	return p != internalExchanger && p != economiser && p != cascadeExchanger
 }
 
 func (c *circuit) settleCompressors(s *Solution, scale float64) {
@@ -233,7 +241,7 @@ func (c *circuit) settlePerformance(s *Solution, scale float64, t totals) {
 		CarnotCOPHeating:          nan,
 		CarnotCOPCooling:          nan,
 		IsentropicEfficiency:      first.IsentropicEfficiency,
-		PressureRatio:             c.high.discharge / c.nodes[c.compressions[0].in].P,
+		PressureRatio:             first.PressureRatio,
 		SuctionVolumeFlow:         first.SuctionVolumeFlow,
 		SweptVolumeFlow:           first.SweptVolumeFlow,
 		VolumetricHeatingCapacity: scale * t.heating / first.SuctionVolumeFlow,
@@ -241,6 +249,9 @@ func (c *circuit) settlePerformance(s *Solution, scale float64, t totals) {
 	}
 	for i := range s.Compressors {
 		p.DischargeTemperature = max(p.DischargeTemperature, s.Compressors[i].DischargeTemperature)
+	}
+	if c.layout != Cascade {
+		p.PressureRatio = c.high.discharge / c.nodes[c.compressions[0].in].P
 	}
 	if c.sink > c.source {
 		p.CarnotCOPHeating = c.sink / (c.sink - c.source)
@@ -252,6 +263,7 @@ func (c *circuit) settlePerformance(s *Solution, scale float64, t totals) {
 		p.SecondLawEfficiency = p.COPCooling / p.CarnotCOPCooling
 	}
 	f := &s.Figures
-	f.EvaporatingPressure, f.HighPressure = c.low.pressure, c.high.outlet.P
+	f.HighPressure = c.high.outlet.P
+	f.IntermediatePressure = c.middle.pressure
 	f.InternalExchangerHeat *= scale
 }

@@ -1,6 +1,10 @@
 package cycle
 
-import "dewmark/props"
+import (
+	"errors"
+
+	"dewmark/props"
+)
 
 // lowSide is the evaporator's end of a circuit.
 type lowSide struct {
@@ -17,8 +21,8 @@ type highSide struct {
 	discharge float64     // pressure at 2, Pa
 }
 
-// setLow fixes the low side. An evaporation with a mean reference starts at its dew point, see meanEvaporation.
-func (c *circuit) setLow(e *evaporation) {
+// setLow fixes the low side. An evaporation with a mean reference is at the pressure that meanEvaporation tries.
+func (c *circuit) setLow(e *evaporation, loss Drop) {
 	critical := c.fluid.Critical()
 	if e.temperature >= critical.T || e.pressure >= critical.P {
 		c.refuse(Refusal{
@@ -27,24 +31,22 @@ func (c *circuit) setLow(e *evaporation) {
 		})
 		return
 	}
-	p, T := e.pressure, e.temperature
+	p, dew := e.pressure, e.temperature
+	if e.mean && isGiven(c.meanTrial) {
+		p = c.meanTrial
+	}
 	var err error
 	if isGiven(p) {
-		T, err = c.saturationTemperature(p, gas)
+		dew, err = c.saturationTemperature(p, gas)
 	} else {
-		p, err = c.saturationPressure(T, gas)
+		p, err = c.saturationPressure(dew, gas)
 	}
 	if err != nil {
 		c.refuse(c.noState(evaporatorOutlet, e.field(), err))
 		return
 	}
-	c.setLowAt(e, p, T)
-}
-
-// setLowAt fixes the low side at a dew point.
-func (c *circuit) setLowAt(e *evaporation, p, dew float64) {
 	c.low = lowSide{pressure: p, dew: dew}
-	var err error
+	c.evaporating[c.side] = dew
 	field := e.superheatField
 	switch {
 	case isGiven(e.quality):
@@ -59,11 +61,11 @@ func (c *circuit) setLowAt(e *evaporation, p, dew float64) {
 		c.refuse(c.noState(evaporatorOutlet, field, err))
 		return
 	}
-	c.low.inlet = c.before(c.evaporatorDrop, p, "evaporator")
+	c.low.inlet = c.before(loss, p, "evaporator")
 }
 
 // setCondenser fixes the high side at a condensation.
-func (c *circuit) setCondenser(k *condensation) {
+func (c *circuit) setCondenser(k *condensation, loss Drop) {
 	critical := c.fluid.Critical()
 	if k.temperature >= critical.T || k.pressure >= critical.P {
 		c.refuse(Refusal{
@@ -88,7 +90,30 @@ func (c *circuit) setCondenser(k *condensation) {
 		c.refuse(c.noState(condenserOutlet, k.subcoolingField, err))
 		return
 	}
-	c.setHighAt(outlet)
+	c.setHigh(outlet, loss, k.field())
+}
+
+// setGasCooler fixes the high side at a gas cooler's outlet temperature and a pressure.
+func (c *circuit) setGasCooler(p float64) {
+	g := &c.gasCooling
+	if critical := c.fluid.Critical(); p <= critical.P {
+		c.refuse(Refusal{
+			Code: BelowCritical, Field: g.field(), Label: placeNames[c.side][condenserOutlet].label,
+			Message: message("a gas cooler works above the critical pressure, %s, not at %s; below it give condensation and another layout",
+				pressure(critical.P), pressure(p)),
+		})
+		return
+	}
+	outlet, err := c.fluid.TemperaturePressure(g.outlet, p)
+	if err != nil {
+		field := g.outletField
+		if e, ok := errors.AsType[*props.RangeError](err); ok && e.Property == props.Pressure {
+			field = g.field()
+		}
+		c.refuse(c.noState(condenserOutlet, field, err))
+		return
+	}
+	c.setHigh(outlet, c.condenserDrop, g.field())
 }
 
 // condensing returns the pressure of a condensation and the bubble temperature there.
@@ -112,23 +137,21 @@ func (c *circuit) condensing(k *condensation) (p, bubble float64, err error) {
 	return p, bubble, err
 }
 
-// setHighAt fixes the high side at its outlet.
-func (c *circuit) setHighAt(outlet props.State) {
+// setHigh fixes the high side at its outlet and refuses one that is not above the low side. The field is what fixed it.
+func (c *circuit) setHigh(outlet props.State, loss Drop, field string) {
 	c.high.outlet = outlet
-	c.high.inlet = c.before(c.condenserDrop, outlet.P, "condenser")
+	c.high.inlet = c.before(loss, outlet.P, "condenser")
 	c.high.discharge = c.before(c.dischargeLine.Drop, c.high.inlet, "discharge_line")
-	c.setOrder()
-}
-
-// setOrder refuses a high side that is not above the low side.
-func (c *circuit) setOrder() {
-	if c.high.outlet.P > c.low.pressure {
+	if outlet.P > c.low.pressure {
 		return
 	}
+	if c.side != lower {
+		field = c.evaporation.field()
+	}
 	c.refuse(Refusal{
-		Code: PressuresOutOfOrder, Field: c.evaporation.field(),
+		Code: PressuresOutOfOrder, Field: field,
 		Message: message("evaporation must be below condensation: the evaporator has %s (dew point %s), the condenser or gas cooler %s",
-			pressure(c.low.pressure), temperature(c.low.dew), pressure(c.high.outlet.P)),
+			pressure(c.low.pressure), temperature(c.low.dew), pressure(outlet.P)),
 	})
 }
 

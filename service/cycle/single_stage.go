@@ -3,21 +3,31 @@ package cycle
 // singleStage is a compressor, a condenser or gas cooler, a valve and an evaporator, with or without an internal
 // exchanger.
 func (c *circuit) singleStage() {
-	vapour := c.put(evaporatorOutlet, mainStream, c.low.outlet, nil, "")
-	cooled := c.put(condenserOutlet, mainStream, c.high.outlet, nil, "")
-	liquid, gas := c.beforeExpansion(cooled, vapour, valveInlet)
-	hot := c.compress(onlyStage, &c.first, gas, c.high.discharge)
-	c.reject(c.throughDischargeLine(hot), cooled)
-	c.evaporate(c.valve(expansionValve, liquid, c.low.inlet, evaporatorInlet), vapour)
+	ends := c.loop(mainStream, &c.first)
+	c.reject(ends.hot, ends.cooled)
+	c.evaporate(ends.wet, ends.vapour)
 }
 
-// beforeExpansion leads liquid to an expansion and vapour to the compressor at label 1, through the internal exchanger
-// where there is one: liquid line, exchanger, expansion; evaporator, exchanger, suction line.
-func (c *circuit) beforeExpansion(cooled, vapour *node, at place) (liquid, gas *node) {
+// loop is a single stage without its two exchangers: what enters and leaves them.
+type loop struct{ hot, cooled, wet, vapour *node }
+
+func (c *circuit) loop(of stream, e *efficiencies) (ends loop) {
+	ends.vapour = c.put(evaporatorOutlet, of, c.low.outlet, nil, "")
+	ends.cooled = c.put(condenserOutlet, of, c.high.outlet, nil, "")
+	liquid, gas := c.beforeExpansion(ends.cooled, ends.vapour)
+	ends.hot = c.throughDischargeLine(c.compress(onlyStage, e, gas, c.high.discharge))
+	ends.wet = c.valve(expansionValve, liquid, c.low.inlet, evaporatorInlet)
+	return ends
+}
+
+// beforeExpansion leads liquid to the expansion valve and vapour to the compressor, through the internal exchanger where
+// there is one: liquid line, exchanger, valve; evaporator, exchanger, suction line.
+func (c *circuit) beforeExpansion(cooled, vapour *node) (liquid, gas *node) {
 	if !c.exchanger {
-		return c.throughLiquidLine(cooled, at), c.throughSuctionLine(vapour, suction)
+		return c.throughLiquidLine(cooled, valveInlet), c.throughSuctionLine(vapour, suction)
 	}
 	warm := c.throughLiquidLine(cooled, liquidLineOutlet)
-	liquid, vapour = c.exchangeInternally(warm, vapour, at, exchangerVapour)
+	most := c.internalLimits(warm, vapour)
+	liquid, vapour = c.exchangeInternally(warm, vapour, &most, valveInlet, exchangerVapour)
 	return liquid, c.throughSuctionLine(vapour, suction)
 }

@@ -1,46 +1,168 @@
 package cycle
 
+import "math"
+
 // Solve computes the cycle that r describes. It returns a [*RefusedError] for a request that cannot be.
 func Solve(r *Request) (*Solution, error) {
 	var c circuit
 	if c.fill(r); len(c.refusals) > 0 {
 		return nil, &RefusedError{c.refusals}
 	}
-	c.fluid = r.Refrigerant
-	c.refrigerants[only] = r.Refrigerant
-	c.figures = noFigures
-	c.run()
-	if c.refused != nil {
-		return nil, &RefusedError{[]Refusal{*c.refused}}
-	}
-	s := c.solution(r)
-	if c.refused != nil {
-		return nil, &RefusedError{[]Refusal{*c.refused}}
-	}
-	return s, nil
-}
-
-// run fixes the pressures and puts the machine together.
-func (c *circuit) run() {
-	c.setLow(&c.evaporation)
-	if c.refused != nil {
-		return
-	}
-	c.setCondenser(&c.condensation)
-	if c.refused != nil {
-		return
-	}
-	c.assemble()
+	c.start(r)
 	if c.evaporation.mean {
 		c.meanEvaporation()
+	} else {
+		c.atLowSide()
 	}
+	if c.refused == nil {
+		if s := c.solution(r); c.refused == nil {
+			return s, nil
+		}
+	}
+	return nil, &RefusedError{[]Refusal{*c.refused}}
+}
+
+// start takes over what a plan does not hold.
+func (c *circuit) start(r *Request) {
+	c.fluid = r.Refrigerant
+	c.refrigerants = [sideCount]Refrigerant{only: r.Refrigerant, lower: r.Refrigerant, upper: c.cascade.upper}
+	c.middle.pressure, c.meanTrial = nan, nan
+	c.figures = noFigures
+}
+
+// Pressures are found from the outside in: the evaporator's, the condenser's or gas cooler's, the intermediate one. Each
+// of the next three methods fixes one, or searches it with all that lies further in at each trial.
+
+// atLowSide goes on at the evaporating pressure of the request, or at the one on trial.
+func (c *circuit) atLowSide() {
+	if c.layout == Cascade {
+		c.atCascadePressure()
+		return
+	}
+	c.setLow(&c.evaporation, c.evaporatorDrop)
+	if c.refused == nil {
+		c.atHighSide()
+	}
+}
+
+// atHighSide goes on at the condensing pressure, or at the gas cooler's.
+func (c *circuit) atHighSide() {
+	g := &c.gasCooling
+	switch {
+	case !c.gasCooled:
+		c.setCondenser(&c.condensation, c.condenserDrop)
+	case g.optimise:
+		low := max(c.fluid.Critical().P, c.low.pressure) * aboveBracketEnd
+		c.search(g.field(), low, g.pressureMax, highPressureStep, func(p float64) {
+			c.setGasCooler(p)
+			c.atIntermediatePressure()
+		})
+		return
+	case g.correlation != NoCorrelation:
+		c.setGasCooler(c.correlated())
+	default:
+		c.setGasCooler(g.pressure)
+	}
+	c.atIntermediatePressure()
+}
+
+// atIntermediatePressure puts the machine together, at its intermediate pressure where it has one.
+func (c *circuit) atIntermediatePressure() {
+	if c.refused != nil {
+		return
+	}
+	if !c.hasSecond() {
+		c.assemble()
+		return
+	}
+	m := &c.intermediate
+	if m.optimise {
+		ceiling := min(c.high.outlet.P, c.fluid.Critical().P) / aboveBracketEnd
+		c.search(m.field(), c.low.pressure*aboveBracketEnd, ceiling, nan, func(p float64) {
+			c.setMiddle(p)
+			c.assemble()
+		})
+		return
+	}
+	p := math.Sqrt(c.low.pressure * c.high.outlet.P)
+	switch {
+	case isGiven(m.pressure):
+		p = m.pressure
+	case isGiven(m.temperature):
+		p = c.intermediateAt(m.temperature)
+	}
+	c.checkBetween(p, c.low.pressure, c.high.outlet.P)
+	c.setMiddle(p)
+	c.assemble()
+}
+
+// atCascadePressure puts a cascade together at the condensing pressure of its lower circuit.
+func (c *circuit) atCascadePressure() {
+	c.side, c.fluid = lower, c.refrigerants[lower]
+	m := &c.intermediate
+	low, high := c.cascadeBounds()
+	switch {
+	case c.refused != nil:
+	case m.optimise:
+		c.search(m.field(), low*aboveBracketEnd, high/aboveBracketEnd, nan, func(p float64) {
+			c.middle.pressure = p
+			c.assemble()
+		})
+		return
+	case isGiven(m.pressure):
+		c.middle.pressure = m.pressure
+	case isGiven(m.temperature):
+		c.middle.pressure = c.intermediateAt(m.temperature)
+	}
+	c.assemble()
+}
+
+// intermediateAt returns the pressure with that dew temperature.
+func (c *circuit) intermediateAt(T float64) float64 {
+	p, err := c.saturationPressure(T, gas)
+	if err != nil {
+		c.refuse(Refusal{
+			Code: NoState, Field: "intermediate.temperature",
+			Message: message("%s is no temperature of boiling", temperature(T)), Cause: err,
+		})
+	}
+	return p
+}
+
+// checkBetween refuses an intermediate pressure that does not lie between the low and the high one.
+func (c *circuit) checkBetween(p, low, high float64) {
+	if low <= p && p <= high {
+		return
+	}
+	c.refuse(Refusal{
+		Code: PressuresOutOfOrder, Field: c.intermediate.field(),
+		Message: message("the intermediate pressure, %s, must lie between the low pressure, %s, and the high pressure, %s",
+			pressure(p), pressure(low), pressure(high)),
+	})
 }
 
 // assemble puts the machine together at the pressures in force.
 func (c *circuit) assemble() {
 	c.clear()
+	if c.refused != nil {
+		return
+	}
 	switch c.layout {
 	case SingleStage:
 		c.singleStage()
+	case EconomisedSubcooler:
+		c.economisedSubcooler()
+	case EconomisedFlash:
+		c.economisedFlash()
+	case TwoStageFlash:
+		c.twoStageFlash()
+	case TwoStageIntercooled:
+		c.twoStageIntercooled()
+	case Cascade:
+		c.cascadeCircuits()
+	case ParallelCompression:
+		c.parallelCompression()
+	case Ejector:
+		c.ejectorExpansion()
 	}
 }

@@ -78,6 +78,18 @@ func (w *worked) checkState(t *testing.T, row string, s props.State) {
 	}
 }
 
+// checkStates compares every state of the case; label says where each is in the solution.
+func (w *worked) checkStates(t *testing.T, s *cycle.Solution, label map[string]string) {
+	t.Helper()
+	for row := range w.states {
+		if label[row] == "" {
+			t.Errorf("%s: state %s is not compared", w.name, row)
+			continue
+		}
+		w.checkState(t, row, at(t, s, label[row]))
+	}
+}
+
 // check compares results in J/kg or without unit with the table's kJ/kg.
 func (w *worked) check(t *testing.T, got map[string]float64) {
 	t.Helper()
