@@ -1,5 +1,6 @@
-# The builder's base is an argument, so that a machine without a registry can name an image of its own that holds Go.
-ARG GO_IMAGE=golang:1.26.8
+# The newest patch release of Go. The builder's base is an argument, so that a machine without a registry can name an image
+# of its own that holds Go.
+ARG GO_IMAGE=golang:1.26
 FROM ${GO_IMAGE} AS build
 WORKDIR /src
 COPY go.mod go.sum ./
