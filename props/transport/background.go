@@ -2,6 +2,7 @@ package transport
 
 import (
 	"encoding/json"
+	"errors"
 	"fmt"
 	"math"
 )
@@ -57,7 +58,7 @@ type backgroundForm struct {
 
 func (f *backgroundForm) compile() (*background, error) {
 	if !(f.Temperature > 0 && f.Density > 0) {
-		return nil, fmt.Errorf("residual: temperature and density must be positive")
+		return nil, errors.New("residual: temperature and density must be positive")
 	}
 	b := &background{temperature: f.Temperature, density: f.Density}
 	for i, raw := range f.Terms {
@@ -128,7 +129,7 @@ func (b *background) add(raw json.RawMessage) error {
 
 func (b *background) monomials(rows [][]float64, width int) ([]monomial, error) {
 	if len(rows) == 0 {
-		return nil, fmt.Errorf("no rows")
+		return nil, errors.New("no rows")
 	}
 	out := make([]monomial, len(rows))
 	for i, r := range rows {

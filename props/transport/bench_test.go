@@ -15,8 +15,13 @@ func BenchmarkExp(b *testing.B) {
 
 func BenchmarkViscosityAndConductivity(b *testing.B) {
 	for _, c := range []struct{ name, n string }{
-		{"correlation/R134a", "R134a"}, {"correlation/R290", "R290"}, {"correlation/R1234yf", "R1234yf"}, {"IAPWS/R718", "R718"},
-		{"corresponding-states/R22", "R22"}, {"entropy-scaling/R1130(E)", "R1130(E)"}, {"concentration/R23", "R23"},
+		{"correlation/R134a", "R134a"},
+		{"correlation/R290", "R290"},
+		{"correlation/R1234yf", "R1234yf"},
+		{"IAPWS/R718", "R718"},
+		{"corresponding-states/R22", "R22"},
+		{"entropy-scaling/R1130(E)", "R1130(E)"},
+		{"concentration/R23", "R23"},
 	} {
 		r := refrigerants()[c.n]
 		T := 0.8 * r.curve.TCritical

@@ -232,7 +232,7 @@ func (f *conformalForm) compile(fluid *Fluid, references []*Model, shape []float
 		return conformalModel{}, nil, err
 	}
 	if !(f.Scale > 0) || len(shape) == 0 {
-		return conformalModel{}, nil, errors.New("F_c and psi or chi must be given")
+		return conformalModel{}, nil, errors.New("scale F_c and shape psi or chi must be given")
 	}
 	for _, r := range references {
 		if r.fluid.Designation == f.Reference {

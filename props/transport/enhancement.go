@@ -117,8 +117,10 @@ func (f *enhancementForm) compile(fluid *Fluid, reach float64) (*enhancement, er
 	if !(f.ReferenceT > fluid.Critical.T) {
 		return nil, errors.New("critical: T_ref must be above the critical temperature")
 	}
-	e := &enhancement{fluctuation: fluctuation{referenceT: f.ReferenceT, xi0: f.Xi0, gamma0: f.Gamma0, qD: f.QD, r0: f.R0,
-		exponent: f.Nu / f.Gamma, ceiling: f.Gamma0 * math.Pow(reach, -f.Gamma), pc: fluid.Critical.P, rhoc: fluid.Critical.Rho}}
+	e := &enhancement{fluctuation: fluctuation{
+		referenceT: f.ReferenceT, xi0: f.Xi0, gamma0: f.Gamma0, qD: f.QD, r0: f.R0,
+		exponent: f.Nu / f.Gamma, ceiling: f.Gamma0 * math.Pow(reach, -f.Gamma), pc: fluid.Critical.P, rhoc: fluid.Critical.Rho,
+	}}
 	if f.PC != nil {
 		e.pc = *f.PC
 	}

@@ -58,8 +58,10 @@ func NewMixture(components ...*Model) (*Mixture, error) {
 		names[i] = c.fluid.Designation
 	}
 	for p := Viscosity; p <= SurfaceTension; p++ {
-		r := Record{Property: p, Rank: 1, Method: EntropyScaling, Uncertainty: mixtureUncertainty[p],
-			Range: Range{0, math.Inf(1), math.Inf(1)}}
+		r := Record{
+			Property: p, Rank: 1, Method: EntropyScaling, Uncertainty: mixtureUncertainty[p],
+			Range: Range{0, math.Inf(1), math.Inf(1)},
+		}
 		if p == SurfaceTension {
 			r.Method = Parachor
 		}
@@ -312,13 +314,12 @@ func (m *Mixture) SurfaceTension(T, merge float64, liquid, vapour Phase, curves 
 		return v, nil
 	}
 	var root float64
-	for i, c := range m.components {
+	for i, k := range curves {
 		// Near the critical point a parachor is a quotient of two vanishing numbers, of which the equation of state gives
 		// one badly; it hardly depends on temperature.
-		k := &curves[i]
 		Ti := min(max(T/merge*k.TCritical, k.TMin), 0.98*k.TCritical)
 		_, l, g := k.At(Ti)
-		parachor := math.Sqrt(math.Sqrt(c.tension[0].at(Ti, k.TCritical))) / (l - g)
+		parachor := math.Sqrt(math.Sqrt(m.components[i].tension[0].at(Ti, k.TCritical))) / (l - g)
 		root += parachor * (liquid.X[i]*liquid.Rho - vapour.X[i]*vapour.Rho)
 	}
 	v.Value = root * root * root * root

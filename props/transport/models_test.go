@@ -42,8 +42,10 @@ var refrigerants = sync.OnceValue(func() map[string]refrigerant {
 		if order(r.ID) == 0 {
 			references = append(references, m)
 		}
-		curve, err := saturation.New(f.Equation, saturation.Options{TMin: r.Validity.TemperatureMin,
-			TCritical: r.Critical.Temperature, RhoCritical: r.Critical.Density, Acentric: r.Acentric})
+		curve, err := saturation.New(f.Equation, saturation.Options{
+			TMin:      r.Validity.TemperatureMin,
+			TCritical: r.Critical.Temperature, RhoCritical: r.Critical.Density, Acentric: r.Acentric,
+		})
 		if err != nil {
 			panic(err)
 		}
@@ -60,12 +62,16 @@ func order(id string) int {
 }
 
 func fluidOf(r data.Record) (Fluid, error) {
-	eq, err := helmholtz.New(helmholtz.Coefficients{GasConstant: r.GasConstant, ReducingTemperature: r.Reducing.Temperature,
-		ReducingDensity: r.Reducing.Density, Ideal: r.Ideal, Residual: r.Residual})
-	return Fluid{Designation: r.ID, MolarMass: r.MolarMass, Equation: eq,
+	eq, err := helmholtz.New(helmholtz.Coefficients{
+		GasConstant: r.GasConstant, ReducingTemperature: r.Reducing.Temperature,
+		ReducingDensity: r.Reducing.Density, Ideal: r.Ideal, Residual: r.Residual,
+	})
+	return Fluid{
+		Designation: r.ID, MolarMass: r.MolarMass, Equation: eq,
 		Critical:       Critical{r.Critical.Temperature, r.Critical.Pressure, r.Critical.Density},
 		TemperatureMin: r.Validity.TemperatureMin, TemperatureMax: r.Validity.TemperatureMax,
-		PressureMax: r.Validity.PressureMax, DensityMax: r.Validity.DensityMax}, err
+		PressureMax: r.Validity.PressureMax, DensityMax: r.Validity.DensityMax,
+	}, err
 }
 
 // names returns the designations in a fixed order.

@@ -75,8 +75,8 @@ func polynomial(rows [][2]float64, x float64) float64 {
 // horner returns c[0] + c[1]*x + c[2]*x^2 + ...
 func horner(c []float64, x float64) float64 {
 	var sum float64
-	for i := len(c) - 1; i >= 0; i-- {
-		sum = sum*x + c[i]
+	for _, v := range slices.Backward(c) {
+		sum = sum*x + v
 	}
 	return sum
 }

@@ -103,8 +103,10 @@ func describe(h *head, p Property, f *Fluid) (Record, error) {
 	if h.Rank < 1 || h.Source == "" {
 		return Record{}, errors.New("rank and source must not be empty")
 	}
-	r := Record{Property: p, Rank: h.Rank, Method: k.method, Source: h.Source, Note: h.Note, Verification: h.Verification,
-		Range: Range{f.TemperatureMin, f.TemperatureMax, f.PressureMax}, Uncertainty: k.uncertainty}
+	r := Record{
+		Property: p, Rank: h.Rank, Method: k.method, Source: h.Source, Note: h.Note, Verification: h.Verification,
+		Range: Range{f.TemperatureMin, f.TemperatureMax, f.PressureMax}, Uncertainty: k.uncertainty,
+	}
 	if k.method == EntropyScaling {
 		r.Uncertainty = entropyUncertainty[p]
 	}
@@ -121,12 +123,16 @@ func describe(h *head, p Property, f *Fluid) (Record, error) {
 		r.Uncertainty = *h.Uncertainty
 	}
 	if h.Estimate {
-		r.standing = append(r.standing, Caution{Code: Estimated, Property: p,
-			Text: fmt.Sprintf("%s of %s is estimated: %s", p, f.Designation, h.Source)})
+		r.standing = append(r.standing, Caution{
+			Code: Estimated, Property: p,
+			Text: fmt.Sprintf("%s of %s is estimated: %s", p, f.Designation, h.Source),
+		})
 	}
 	if h.Doubtful != "" {
-		r.standing = append(r.standing, Caution{Code: Doubtful, Property: p,
-			Text: fmt.Sprintf("%s of %s is doubtful. %s", p, f.Designation, h.Doubtful)})
+		r.standing = append(r.standing, Caution{
+			Code: Doubtful, Property: p,
+			Text: fmt.Sprintf("%s of %s is doubtful. %s", p, f.Designation, h.Doubtful),
+		})
 	}
 	return r, nil
 }

@@ -154,7 +154,7 @@ func newTension(b json.RawMessage, f *Fluid) (tensionRecord, error) {
 		return tensionRecord{}, err
 	}
 	if c := r.model.criticalT(); !(math.Abs(c/f.Critical.T-1) < 0.01) {
-		return tensionRecord{}, fmt.Errorf("T_c %g K is not that of the fluid", c)
+		return tensionRecord{}, fmt.Errorf("critical temperature T_c %g K is not that of the fluid", c)
 	}
 	if r.Record, err = describe(&form.head, SurfaceTension, f); err != nil {
 		return tensionRecord{}, err

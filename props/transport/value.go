@@ -80,8 +80,10 @@ func (v Value) Cautions() []Caution {
 	r, name := v.Record, v.Record.Property
 	out := append([]Caution(nil), r.standing...)
 	limit := func(quantity string, value, low, high float64) {
-		out = append(out, Caution{OutsideRange, name, fmt.Sprintf("%s is extrapolated beyond the range of its source", name),
-			quantity, value, low, high})
+		out = append(out, Caution{
+			OutsideRange, name, fmt.Sprintf("%s is extrapolated beyond the range of its source", name),
+			quantity, value, low, high,
+		})
 	}
 	if v.reservations&beyondTemperature != 0 {
 		limit("temperature", v.T, r.Range.TemperatureMin, r.Range.TemperatureMax)

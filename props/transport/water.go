@@ -3,6 +3,7 @@ package transport
 import (
 	"errors"
 	"math"
+	"slices"
 )
 
 // waterViscosity is IAPWS R12-08 (2008): Huber, Perkins, Laesecke, Friend, Sengers, Assael, Metaxa, Vogel, Mares,
@@ -75,8 +76,8 @@ func (m *waterConductivity) background(p point) (float64, bool) {
 	d := p.mass / m.density
 	a, b := m.temperature/p.T-1, d-1
 	var sum float64
-	for i := len(m.l1) - 1; i >= 0; i-- {
-		sum = sum*a + horner(m.l1[i], b)
+	for _, c := range slices.Backward(m.l1) {
+		sum = sum*a + horner(c, b)
 	}
 	return m.dilute(p.T, 0) * math.Exp(d*sum), true // eqs 15, 17
 }
@@ -102,7 +103,7 @@ type waterViscosityForm struct {
 
 func (f *waterViscosityForm) compile(fluid *Fluid) (*waterViscosity, error) {
 	if !(f.Temperature > 0 && f.Density > 0) || len(f.H0) == 0 {
-		return nil, errors.New("T_star, rho_star and H0 must be given")
+		return nil, errors.New("constants T_star, rho_star and H0 must be given")
 	}
 	m := &waterViscosity{temperature: f.Temperature, density: f.Density, h0: f.H0, exponent: f.Critical.Exponent, qC: f.Critical.QC}
 	for _, r := range f.H1 {
@@ -113,8 +114,10 @@ func (f *waterViscosityForm) compile(fluid *Fluid) (*waterViscosity, error) {
 		m.h1[i][j] = r[2]
 	}
 	c := f.Critical
-	e := enhancementForm{ReferenceT: c.ReferenceT * f.Temperature, Xi0: c.Xi0, Gamma0: c.Gamma0, QD: c.QD, R0: 1,
-		Nu: c.Nu, Gamma: c.Gamma, RhoC: &f.Density}
+	e := enhancementForm{
+		ReferenceT: c.ReferenceT * f.Temperature, Xi0: c.Xi0, Gamma0: c.Gamma0, QD: c.QD, R0: 1,
+		Nu: c.Nu, Gamma: c.Gamma, RhoC: &f.Density,
+	}
 	var err error
 	m.critical, err = e.compile(fluid, waterReach)
 	return m, err
@@ -141,13 +144,15 @@ type waterConductivityForm struct {
 
 func (f *waterConductivityForm) compile(fluid *Fluid) (*waterConductivity, *enhancement, error) {
 	if !(f.Temperature > 0 && f.Density > 0 && f.Pressure > 0) || len(f.L0) == 0 || len(f.L1) == 0 {
-		return nil, nil, errors.New("T_star, rho_star, p_star, L0 and L1 must be given")
+		return nil, nil, errors.New("constants T_star, rho_star, p_star, L0 and L1 must be given")
 	}
 	c := f.Critical
 	// The release gathers the constants of the enhancement in one number, for reference viscosity 1 uPa s and
 	// conductivity 1 mW/(m K).
 	r0 := c.Amplitude * 1e-9 * 6 * math.Pi / (f.Density * c.R * f.Temperature * boltzmann * c.QD)
-	e, err := (&enhancementForm{ReferenceT: c.ReferenceT * f.Temperature, Xi0: c.Xi0, Gamma0: c.Gamma0, QD: c.QD, R0: r0,
-		Nu: c.Nu, Gamma: c.Gamma, PC: &f.Pressure, RhoC: &f.Density}).compile(fluid, waterReach)
+	e, err := (&enhancementForm{
+		ReferenceT: c.ReferenceT * f.Temperature, Xi0: c.Xi0, Gamma0: c.Gamma0, QD: c.QD, R0: r0,
+		Nu: c.Nu, Gamma: c.Gamma, PC: &f.Pressure, RhoC: &f.Density,
+	}).compile(fluid, waterReach)
 	return &waterConductivity{f.Temperature, f.Density, f.L0, f.L1}, e, err
 }
