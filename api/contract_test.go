@@ -9,6 +9,7 @@ import (
 	"log/slog"
 	"net/http"
 	"net/http/httptest"
+	"os"
 	"strings"
 	"sync"
 	"testing"
@@ -23,6 +24,11 @@ import (
 	"dewmark/openapi"
 	"dewmark/props"
 )
+
+func TestMain(m *testing.M) {
+	gin.SetMode(gin.ReleaseMode)
+	os.Exit(m.Run())
+}
 
 // contract is the description of the interface, ready to judge requests and responses.
 type contract struct {
@@ -82,7 +88,6 @@ func ask(t testing.TB, h http.Handler, r *http.Request) *httptest.ResponseRecord
 
 // testAPI is ready and logs nothing; tests that change an API make their own.
 var testAPI = sync.OnceValues(func() (*API, error) {
-	gin.SetMode(gin.ReleaseMode)
 	catalogue, err := props.NewCatalogue()
 	if err != nil {
 		return nil, err
@@ -134,7 +139,10 @@ func (c *contract) check(r *http.Request, body []byte, w *httptest.ResponseRecor
 	if w.Code >= 400 {
 		return checkProblem(r, w)
 	}
-	r.Body = io.NopCloser(bytes.NewReader(withoutNulls(body)))
+	if body = goodPart(body, w.Body.Bytes()); r.Method == http.MethodPost && body == nil {
+		return nil
+	}
+	r.Body = io.NopCloser(bytes.NewReader(body))
 	if err := openapi3filter.ValidateRequest(r.Context(), input); err != nil {
 		return errors.Join(errors.New("a request was answered that the description forbids"), err)
 	}
@@ -229,15 +237,32 @@ func visit(schema *openapi3.Schema, text []byte) error {
 	return schema.VisitJSON(v, openapi3.EnableJSONSchema2020())
 }
 
-// withoutNulls removes the members that are null from JSON text: in a request they stand for members left out.
-func withoutNulls(text []byte) []byte {
+// goodPart returns what of a request must fit the description when it was answered: without the members that are null,
+// which stand for members left out, and without the points of a batch that became problems.
+func goodPart(request, answer []byte) []byte {
 	var v any
-	if json.Unmarshal(text, &v) != nil {
-		return text // a stream of lines
+	var answered struct{ States []struct{ Problem any } }
+	if json.Unmarshal(request, &v) != nil || json.Unmarshal(answer, &answered) != nil {
+		return request // a stream of lines
+	}
+	if object, ok := v.(map[string]any); ok {
+		points, _ := object["points"].([]any)
+		var good []any
+		for i, state := range answered.States {
+			if state.Problem == nil && i < len(points) {
+				good = append(good, points[i])
+			}
+		}
+		if good == nil && points != nil {
+			return nil
+		}
+		if points != nil {
+			object["points"] = good
+		}
 	}
 	b, err := json.Marshal(pruned(v))
 	if err != nil {
-		return text
+		return request
 	}
 	return b
 }
@@ -258,4 +283,58 @@ func pruned(v any) any {
 		}
 	}
 	return v
+}
+
+// The contract is worth what it notices: each of these changes to a good exchange must be an error.
+func TestContractNotices(t *testing.T) {
+	const (
+		good       = `{"refrigerant": "R290", "points": [{"temperature": 5, "pressure": 400}]}`
+		impossible = `{"refrigerant": "R290", "points": []}`
+	)
+	state := func(answer map[string]any) map[string]any { return answer["states"].([]any)[0].(map[string]any) }
+	for _, tt := range []struct {
+		name, body string
+		change     func(w *httptest.ResponseRecorder, answer map[string]any)
+	}{
+		{"nothing", good, func(*httptest.ResponseRecorder, map[string]any) {}},
+		{"a status that is not described", good, func(w *httptest.ResponseRecorder, _ map[string]any) { w.Code = http.StatusCreated }},
+		{"another media type", good, func(w *httptest.ResponseRecorder, _ map[string]any) { w.Header().Set("Content-Type", "text/html") }},
+		{"a member that is missing", good, func(_ *httptest.ResponseRecorder, a map[string]any) { delete(a, "basis") }},
+		{"a member too many", good, func(_ *httptest.ResponseRecorder, a map[string]any) { a["extra"] = 1 }},
+		{"a state without a member", good, func(_ *httptest.ResponseRecorder, a map[string]any) { delete(state(a), "density") }},
+		{"a state with a member too many", good, func(_ *httptest.ResponseRecorder, a map[string]any) { state(a)["extra"] = 1 }},
+		{"a number as text", good, func(_ *httptest.ResponseRecorder, a map[string]any) { state(a)["density"] = "8.3" }},
+		{"a null where there is always a number", good, func(_ *httptest.ResponseRecorder, a map[string]any) { state(a)["density"] = nil }},
+		{"a number out of bounds", good, func(_ *httptest.ResponseRecorder, a map[string]any) { state(a)["density"] = -1 }},
+		{"an unknown choice", good, func(_ *httptest.ResponseRecorder, a map[string]any) { state(a)["phase"] = "plasma" }},
+		{"an answer to a forbidden request", `{"refrigerant": "R290", "points": [{"temperature": "5", "pressure": 400}]}`, nil},
+		{"a problem of another status", impossible, func(_ *httptest.ResponseRecorder, a map[string]any) { a["status"] = 400 }},
+		{"a problem of another resource", impossible, func(_ *httptest.ResponseRecorder, a map[string]any) { a["instance"] = "/" }},
+		{"a problem as plain JSON", impossible, func(w *httptest.ResponseRecorder, _ map[string]any) {
+			w.Header().Set("Content-Type", "application/json")
+		}},
+	} {
+		sent := tt.body
+		if tt.change == nil {
+			sent = good // the answer to another request
+			tt.change = func(*httptest.ResponseRecorder, map[string]any) {}
+		}
+		r := httptest.NewRequestWithContext(t.Context(), http.MethodPost, "/v1/states", strings.NewReader(sent))
+		r.Header.Set("Content-Type", "application/json")
+		w := httptest.NewRecorder()
+		testHandler(t).ServeHTTP(w, r)
+		var answer map[string]any
+		if err := json.Unmarshal(w.Body.Bytes(), &answer); err != nil {
+			t.Fatal(err)
+		}
+		tt.change(w, answer)
+		b, err := json.Marshal(answer)
+		if err != nil {
+			t.Fatal(err)
+		}
+		w.Body = bytes.NewBuffer(b)
+		if err := loadContract(t).check(r, []byte(tt.body), w); (err == nil) != (tt.name == "nothing") {
+			t.Errorf("%s: %v", tt.name, err)
+		}
+	}
 }
