@@ -4,6 +4,7 @@ import (
 	"errors"
 	"math"
 	"math/rand/v2"
+	"sync"
 	"testing"
 )
 
@@ -174,6 +175,29 @@ func TestNoJumps(t *testing.T) {
 			}
 		}
 	}
+}
+
+// One model answers many goroutines with the same numbers; the race detector looks on.
+func TestConcurrentUse(t *testing.T) {
+	r := refrigerants()["R22"]
+	_, liquid, _ := r.curve.At(300)
+	s := r.State(300, liquid)
+	eta, lambda, err := r.ViscosityAndConductivity(s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var wg sync.WaitGroup
+	for range 4 {
+		wg.Go(func() {
+			for range 50 {
+				e, l, err := r.ViscosityAndConductivity(s)
+				if err != nil || e != eta || l != lambda {
+					t.Errorf("%g and %g, want %g and %g, %v", e.Value, l.Value, eta.Value, lambda.Value, err)
+				}
+			}
+		})
+	}
+	wg.Wait()
 }
 
 // An evaluation needs no heap.

@@ -198,11 +198,11 @@ func (m *Mixture) conductivityAt(p *point, dilutes *[maxComponents]float64, s *M
 		}
 		lambda += entropyConductivity(p, q, splus, mean)
 	}
+	var add float64
 	var limited bool
 	if c := s.Critical; c != nil {
 		f := m.fluctuation(s.X)
 		f.pc, f.rhoc = c.P, c.Rho
-		var add float64
 		add, limited = f.conductivity(p, c.Slope, eta)
 		lambda += add
 	}
@@ -211,6 +211,7 @@ func (m *Mixture) conductivityAt(p *point, dilutes *[maxComponents]float64, s *M
 	}
 	v := m.value(ThermalConductivity, p, s.X, lambda)
 	if limited {
+		v.Uncertainty = math.Hypot(v.Uncertainty, add/lambda)
 		v.reservations |= nearCritical
 	}
 	return v, nil

@@ -151,8 +151,7 @@ func (m *Model) ViscosityAndConductivity(s State) (eta, lambda Value, err error)
 }
 
 // Outside its range of temperature the dilute part of a correlation may bend away or turn negative. Where it is not within
-// this factor of that of entropy scaling, which is sound, a gas property comes from there. The rule is this project's own;
-// inside their ranges the dilute parts agree within 10 % (viscosity) and 35 % (conductivity).
+// this factor of that of entropy scaling, which is sound, a gas property comes from there. The rule is this project's own.
 const gasFactor = 1.5
 
 // extrapolated is the least relative uncertainty that is stated outside the range of a record: the order of the spread
@@ -219,11 +218,12 @@ func (m *Model) conductivityOf(r *conductivityRecord, p *point, eta float64) (Va
 	case r.critical != nil:
 		add, limited := r.critical.at(p, eta)
 		v.Value += add
-		if limited {
+		if limited { // as uncertain as it is large
+			v.Uncertainty = math.Hypot(v.Uncertainty, add/v.Value)
 			v.reservations |= nearCritical
 		}
 	case !r.peaked:
-		// The record knows no enhancement; what the general method has there is the measure of what is missing.
+		// The record knows no enhancement; that of the general method measures what is missing.
 		if add, _ := m.scaledConductivity.critical.at(p, eta); add > v.Uncertainty*lambda {
 			v.Uncertainty = math.Hypot(v.Uncertainty, add/lambda)
 			v.reservations |= nearCritical

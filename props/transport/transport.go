@@ -10,7 +10,18 @@
 // 1.2 % at the worst.
 //
 // Each property has ranked records. The one of lowest rank answers; where it has a pole, residual-entropy scaling stands
-// in for it. Whatever limits an answer is told by [Value.Cautions].
+// in for it. Whatever limits an answer is told by [Value.Cautions]. The kinds of records are
+//
+//   - viscosity_sum, conductivity_sum: a dilute gas, an initial density dependence and a residual sum, the conductivity
+//     with the critical enhancement of Olchowy and Sengers;
+//   - iapws_2008, iapws_2011, iapws_surface: the releases for water;
+//   - shan_2000: the residual concentration model of R23;
+//   - corresponding_states: the background of a reference fluid at a conformal state;
+//   - entropy_scaling: a function of the residual entropy, fitted to the fluid or to its group;
+//   - sigma_sum, brock_bird: surface tension by a sum of powers or from the boiling point.
+//
+// Densities in coefficient files are kg/m3 (mol/L for R23), viscosities uPa s, conductivities W/(m K) (mW/(m K) for
+// R23), lengths m but for molecules in nm.
 //
 // Models are immutable and safe for concurrent use; an evaluation needs no heap.
 package transport
@@ -68,7 +79,7 @@ const (
 	SurfaceTension                          // N/m
 )
 
-var propertyNames = [...]string{"", "viscosity", "thermal_conductivity", "surface_tension"}
+var propertyNames = [...]string{"", "viscosity", "thermal conductivity", "surface tension"}
 
 func (p Property) String() string { return propertyNames[p] }
 

@@ -44,9 +44,9 @@ func (m *waterViscosity) factor(p *point) float64 {
 	}
 	c, d := m.qC*xi, m.critical.qD*xi
 	var y float64
-	if xi < 0.3817016416e-9 { // eq 17, nm in the release
+	if xi < 0.3817016416e-9 { // m; where the release changes from one form to the other
 		y = 0.2 * c * math.Pow(d, 5) * (1 - c + c*c - 765.0/504*d*d)
-	} else { // eqs 16, 18, 19
+	} else {
 		psi := math.Acos(1 / math.Sqrt(1+d*d))
 		w := math.Sqrt(math.Abs((c-1)/(c+1))) * math.Tan(psi/2)
 		l := 2 * math.Atan(math.Abs(w))
