@@ -285,6 +285,10 @@ func (u *units) in(k kind, number float64) float64 {
 	}
 	unit := u.of[k]
 	si := (number + unit.shift) * unit.scale
+	if k == kindTemperature && unit.code != "K" {
+		// 0.01 + 273.15 is a hair less than 273.16, where water is solid. A limit that was converted out must come back.
+		si = math.Round(si*1e12) / 1e12
+	}
 	if unit.gauge {
 		si += u.ambient
 	}

@@ -109,7 +109,7 @@ func inCode(t *testing.T, k kind, code string) *units {
 	return u
 }
 
-// Every unit brings numbers back: to 1e-14 of the number, or of its SI value where the zeros differ.
+// Every unit brings numbers back: to 1e-14 of the number, of its SI value where the zeros differ, or of 273 K.
 func TestUnitsRoundTrip(t *testing.T) {
 	for k := range kindCount {
 		for _, unit := range quantities[k].units {
@@ -118,6 +118,9 @@ func TestUnitsRoundTrip(t *testing.T) {
 				si := u.in(k, x)
 				back := u.exact(k, si)
 				size := math.Max(math.Abs(x), math.Abs(si/unit.scale))
+				if k == kindTemperature {
+					size = math.Max(size, 273.15/unit.scale)
+				}
 				if unit.gauge {
 					size = math.Max(size, u.ambient/unit.scale)
 				}
