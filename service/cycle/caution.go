@@ -23,7 +23,8 @@ const (
 	Extrapolated              CautionCode = "extrapolated"                // a state outside the validity of the equation of state
 	OptimumAtLimit            CautionCode = "optimum_at_limit"            // the search ended at its bound
 	CorrelationRange          CautionCode = "correlation_range"           // a correlation outside its stated range
-	OptimisticEjector         CautionCode = "optimistic_ejector"          // real ejectors do worse than the model with assumed losses
+	OptimisticEjector         CautionCode = "optimistic_ejector"          // better than real ejectors
+	CompositionShift          CautionCode = "composition_shift"           // a vessel parts the components of a blend, which is neglected
 )
 
 // Caution is a reservation about an answer.
@@ -39,6 +40,8 @@ const (
 	usualDischarge    = 120 + 273.15 // K, at the flange, halocarbons and hydrocarbons; 120 to 130 °C are usual
 	hardyDischarge    = 140 + 273.15 // K, R717 and R744; 140 to 150 °C are usual
 	usualRatio        = 10.0         // one stage, reciprocating; 8 to 10 are usual
+	poorEjector       = 0.15         // efficiency by Elbel and Hrnjak
+	bestEjector       = 0.35
 	nearCriticalShare = 0.98         // of the critical pressure: latent heat and densities change steeply from there
 	atmosphere        = 101325.0     // Pa
 )
@@ -76,6 +79,17 @@ func (c *circuit) raise(s *Solution) {
 	}
 	for i := range c.nodeCount {
 		c.raiseAt(&c.nodes[i])
+	}
+	for i := range c.optima {
+		if o := &c.optima[i]; o.AtLimit {
+			c.caution(Caution{Code: OptimumAtLimit, Field: o.Field, Message: message(
+				"the COP still rises at the end of the search, %s", pressure(o.Pressure))})
+		}
+	}
+	if e := c.figures.EjectorEfficiency; c.ejector.assumed || e > bestEjector {
+		c.caution(Caution{Code: OptimisticEjector, Field: "ejector", Message: message(
+			"the model in one dimension gives the ejector an efficiency of %s; real ones reach %s to %s, the poorer away from their design point (common practice)",
+			plain(e), plain(poorEjector), plain(bestEjector))})
 	}
 }
 

@@ -79,7 +79,26 @@ func (c *circuit) mixing(warm, vapour *node) (m mixing) {
 		return m
 	}
 	c.setMiddle(max(p, section.pressure)) // without any speed the diffuser gains nothing, and rounding must not lose
-	return c.mixedAt(warm, vapour, &section)
+	m = c.mixedAt(warm, vapour, &section)
+	c.checkEjector(&m)
+	return m
+}
+
+// leastShare keeps the flows of a trial apart from none at all.
+const leastShare = 1e-3
+
+// checkEjector refuses an ejector that does not lift the pressure enough, or a separator without one of its flows.
+func (c *circuit) checkEjector(m *mixing) {
+	r := Refusal{Code: NoSolution, Field: "ejector", Component: "ejector"}
+	switch {
+	case c.middle.pressure < c.low.inlet:
+		r.Message = message("the ejector reaches %s, and the evaporator needs %s at its inlet", pressure(c.middle.pressure), pressure(c.low.inlet))
+	case m.entrainment <= leastShare || 1/m.entrainment <= leastShare:
+		r.Message = message("the separator cannot close its balance at %s", pressure(c.middle.pressure))
+	default:
+		return
+	}
+	c.refuse(r)
 }
 
 // ejectorBracket widens the search for the separator's pressure below the mixing pressure, for an ejector that gains
@@ -87,8 +106,12 @@ func (c *circuit) mixing(warm, vapour *node) (m mixing) {
 const ejectorBracket = 1e-6
 
 func (c *circuit) mixingSection(vapour *node) (x mixingSection) {
-	x.pressure = c.behind(Drop{Pressure: c.ejector.drop}, vapour.P, gas, "ejector.suction")
-	if c.refused != nil {
+	x.pressure = vapour.P - c.ejector.drop
+	if !(x.pressure > 0) {
+		c.refuse(Refusal{
+			Code: OutOfBounds, Field: "ejector.suction_pressure_drop", Component: "ejector",
+			Message: message("a pressure drop of %s leaves nothing of %s", Number{PressureDifference, c.ejector.drop}, pressure(vapour.P)),
+		})
 		return x
 	}
 	var err error
@@ -130,12 +153,7 @@ func (c *circuit) mixedAt(warm, vapour *node, x *mixingSection) (m mixing) {
 	}
 	bubble, dew := &c.middle.bubble, &c.middle.dew
 	share := (vapour.H - bubble.H) / (vapour.H - m.motive.H + dew.H - bubble.H) // of the motive flow
-	if c.refused == nil && !(0 < share && share < 1) {
-		c.refuse(Refusal{
-			Code: NoSolution, Field: "ejector", Component: "ejector",
-			Message: message("the separator cannot close its balance at %s: the motive flow would be %s of the whole", pressure(c.middle.pressure), plain(share)),
-		})
-	}
+	share = min(max(share, leastShare), 1-leastShare)                           // the search may pass where no separator works
 	m.entrainment = 1/share - 1
 	m.enthalpy = share*m.motive.H + (1-share)*vapour.H
 	m.motiveSpeed, m.suctionSpeed = c.nozzle(&m.motive, x.pressure, c.ejector.motive), x.suctionSpeed

@@ -136,7 +136,10 @@ type cascading struct {
 	approach, superheat, subcooling float64
 }
 
-type ejecting struct{ motive, suction, diffuser, drop float64 }
+type ejecting struct {
+	motive, suction, diffuser, drop float64
+	assumed                         bool // at least one of the efficiencies
+}
 
 // sizing says which result the size fixes.
 type sizing uint8

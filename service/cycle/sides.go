@@ -90,7 +90,7 @@ func (c *circuit) setCondenser(k *condensation, loss Drop) {
 		c.refuse(c.noState(condenserOutlet, k.subcoolingField, err))
 		return
 	}
-	c.setHigh(outlet, loss, k.field())
+	c.setHigh(outlet, loss)
 }
 
 // setGasCooler fixes the high side at a gas cooler's outlet temperature and a pressure.
@@ -113,7 +113,7 @@ func (c *circuit) setGasCooler(p float64) {
 		c.refuse(c.noState(condenserOutlet, field, err))
 		return
 	}
-	c.setHigh(outlet, c.condenserDrop, g.field())
+	c.setHigh(outlet, c.condenserDrop)
 }
 
 // condensing returns the pressure of a condensation and the bubble temperature there.
@@ -137,16 +137,17 @@ func (c *circuit) condensing(k *condensation) (p, bubble float64, err error) {
 	return p, bubble, err
 }
 
-// setHigh fixes the high side at its outlet and refuses one that is not above the low side. The field is what fixed it.
-func (c *circuit) setHigh(outlet props.State, loss Drop, field string) {
+// setHigh fixes the high side at its outlet and refuses one that is not above the low side.
+func (c *circuit) setHigh(outlet props.State, loss Drop) {
 	c.high.outlet = outlet
 	c.high.inlet = c.before(loss, outlet.P, "condenser")
 	c.high.discharge = c.before(c.dischargeLine.Drop, c.high.inlet, "discharge_line")
 	if outlet.P > c.low.pressure {
 		return
 	}
-	if c.side != lower {
-		field = c.evaporation.field()
+	field := c.evaporation.field()
+	if c.side != only {
+		field = c.intermediate.field()
 	}
 	c.refuse(Refusal{
 		Code: PressuresOutOfOrder, Field: field,

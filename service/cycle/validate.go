@@ -34,9 +34,9 @@ func (v *plan) fill(r *Request) {
 	}
 	v.arrangement(r)
 	v.temperatures(r)
-	v.sides(r)
 	v.first = v.compressor(&firstFields, &r.Compressor)
 	v.second = v.secondCompressor(r)
+	v.sides(r)
 	v.drops(r)
 	v.parts(r)
 	v.sized(r.Size)
@@ -269,6 +269,7 @@ func (v *plan) gasCooler(g *GasCooler) {
 		v.wrong(NotAllowed, "gas_cooler.correlation", message("correlation must be one of "+strings.Join(Correlations(), ", ")))
 	}
 	v.objective("gas_cooler.optimise", g.Optimise)
+	v.optimisable("gas_cooler.optimise", g.Optimise != NoObjective)
 	if g.PressureMax != nil && g.Optimise == NoObjective {
 		v.surplus("gas_cooler.pressure_max", "pressure_max bounds the search for an optimum; it goes with optimise")
 	}
@@ -540,6 +541,7 @@ func (v *plan) ejectorPart(x *EjectorGeometry) {
 		x = &EjectorGeometry{}
 	}
 	v.ejector = ejecting{
+		assumed:  x.MotiveEfficiency == nil || x.SuctionEfficiency == nil || x.DiffuserEfficiency == nil,
 		motive:   v.orAssume("ejector.motive_efficiency", x.MotiveEfficiency, &nozzleBounds, defaultNozzleEfficiency, "no motive nozzle efficiency given: %s assumed"),
 		suction:  v.orAssume("ejector.suction_efficiency", x.SuctionEfficiency, &nozzleBounds, defaultNozzleEfficiency, "no suction nozzle efficiency given: %s assumed"),
 		diffuser: v.orAssume("ejector.diffuser_efficiency", x.DiffuserEfficiency, &nozzleBounds, defaultDiffuserEfficiency, "no diffuser efficiency given: %s assumed"),

@@ -1,7 +1,6 @@
 package cycle_test
 
 import (
-	"math"
 	"testing"
 
 	"dewmark/props"
@@ -125,7 +124,8 @@ func TestWorkedEjector(t *testing.T) {
 		"COP_cooling_without_ejector": plain.Performance.COPCooling,
 	})
 	checkClosed(t, s)
-	if math.IsNaN(f.EjectorEfficiency) || f.EjectorEfficiency < 0.15 || f.EjectorEfficiency > 0.6 {
+	// Real ejectors reach 0.15 to 0.35 by this measure (common practice), and the case's losses are at the good end.
+	if !(f.EjectorEfficiency > 0.15 && f.EjectorEfficiency < 0.4) {
 		t.Errorf("ejector efficiency %g", f.EjectorEfficiency)
 	}
 }
