@@ -271,8 +271,13 @@ func (m *maker) powerPiece() error {
 func (m *maker) invert() {
 	c := m.curve
 	top := math.Log(c.PCritical)
+	// The expansions meet at the edge of the critical piece to their error only; no piece here may cross that step.
+	edge := math.Log(c.Pressure(c.TCritical * (1 - c.critical.hi*c.critical.hi)))
 	for lo := math.Log(c.PMin); lo < top; {
 		hi := math.Min(top, lo+4)
+		if lo < edge && edge < hi {
+			hi = edge
+		}
 		for {
 			k := inversePiece{lo: lo, hi: hi, scale: 2 / (hi - lo)}
 			var T [degree + 1]float64
@@ -285,7 +290,8 @@ func (m *maker) invert() {
 				x := (nodes[i] + nodes[i+1]) / 2
 				worst = math.Max(worst, math.Abs(k.T.at(x)/m.boiling(lo+(x+1)/k.scale)-1))
 			}
-			if worst < goal/10 || hi-lo < 0.002 {
+			// Near the critical point T bends ever more with ln p; only there is a piece made narrower than 0.002.
+			if worst < goal/10 || hi-lo < 0.002 && worst < 5e-13 || hi-lo < 1e-5 {
 				c.inverse = append(c.inverse, k)
 				c.bounds.Temperature = math.Max(c.bounds.Temperature, worst)
 				lo = hi
