@@ -3,6 +3,7 @@ package blend
 import (
 	"fmt"
 	"math"
+	"slices"
 	"sync"
 
 	"dewmark/props/data"
@@ -146,19 +147,32 @@ func (b *Blend) Cricondenbar() Point { return b.point(b.d.topP) }
 
 func (b *Blend) point(e edgePoint) Point { return Point{e.T, e.p, e.rho * b.whole.M} }
 
-// Envelope returns points of the phase envelope in order, from the cold end of the bubble line over the critical point to
-// the cold end of the dew line.
-func (b *Blend) Envelope() []Point {
-	var out []Point
-	passed := false
-	for i := range b.d.nodes {
-		n := &b.d.nodes[i]
-		if n.S > 0 && !passed {
-			out, passed = append(out, b.Critical()), true
+// Envelope returns saturated states along the whole phase envelope, in order from the cold end of the bubble line, closely
+// past the critical point, to the cold end of the dew line. It returns at least n states, and a [*ConvergenceError] when
+// one of them can not be solved.
+func (b *Blend) Envelope(n int) ([]State, error) {
+	s := b.solver()
+	defer b.release(s)
+	half := max(n/2+1, 8)
+	var out []State
+	for _, end := range []float64{b.d.min[dense].S, b.d.min[light].S} {
+		var branch []State
+		for i := range half {
+			// Closer steps towards the critical point, where pictures of the envelope bend most.
+			r := float64(i+1) / float64(half)
+			a, ok := s.saturatedAtSpread(b.d, s.iso, end*r*r)
+			if !ok {
+				return nil, s.stuck(constraint{Temperature, a.T}, constraint{Pressure, a.p})
+			}
+			r0 := a.result()
+			branch = append(branch, b.state(&r0))
 		}
-		out = append(out, b.point(n.point()))
+		if end < 0 {
+			slices.Reverse(branch)
+		}
+		out = append(out, branch...)
 	}
-	return out
+	return out, nil
 }
 
 // SaturationLimits returns the lowest temperature of the bubble and the dew line in K, and their pressures there in Pa.

@@ -177,5 +177,5 @@ func (c *chord) write(r float64, u split) {
 	for i := range n {
 		u[i] = c.at.lnK[i] + ratio
 	}
-	u[n], u[n+1], u[n+2] = math.Log((1-beta)*c.at.vL), math.Log(beta*c.at.vV), math.Log(c.at.T)
+	u[n], u[n+1], u[n+2] = -math.Log(c.at.vL), -math.Log(c.at.vV), math.Log(c.at.T)
 }

@@ -41,6 +41,13 @@ func (s *solver) newDome(Tmin float64) (*dome, error) {
 		return nil, err
 	}
 	d := &dome{envelope: e}
+	places := manyPlaces
+	if s.m.listed != nil {
+		places = 1 // the cold end; a test looks at the rest
+	}
+	if Tmin, err = s.stableFrom(d, Tmin, places); err != nil {
+		return nil, err
+	}
 	iso := newIsotherm(s.m.whole)
 	ends := [2]float64{
 		min(-lineSpread, e.topT.S-lineClearance, e.topP.S-lineClearance),
@@ -96,8 +103,12 @@ func (l *line) saturated(T float64) saturated {
 	}
 }
 
-// farFromTop is the distance in S from the highest temperature or pressure at which these fix a point well.
-const farFromTop = 0.1
+const (
+	// farFromTop is the distance in S from the highest temperature or pressure at which these fix a point well.
+	farFromTop = 0.1
+	// spreadNoise is the relative error of temperature and pressure that a given spread near the critical point leaves.
+	spreadNoise = 1e-10
+)
 
 // interpolated returns a point so close to the critical one that its phases can not be told apart by solving.
 func (s *solver) interpolated(d *dome, iso *isotherm, S float64) saturated {
@@ -189,11 +200,11 @@ func (s *solver) saturatedAt(d *dome, iso *isotherm, field int, target float64, 
 		top = d.topP.S
 	}
 	u := edge(v[:n+2])
+	fixed, value := fixedT, target
+	if field == 1 {
+		fixed, value = fixedP, math.Exp(target)
+	}
 	if math.Abs(S-top) > farFromTop && math.Abs(S) > gap {
-		fixed, value := fixedT, target
-		if field == 1 {
-			fixed, value = fixedP, math.Exp(target)
-		}
 		if s.solveEdge(u, fixed, value, true) && math.Abs(math.Log(s.inc.rho/s.bulk.rho)-S) < 0.1 {
 			return s.finish(iso), true
 		}
@@ -216,7 +227,12 @@ func (s *solver) saturatedAt(d *dome, iso *isotherm, field int, target float64, 
 			hi = S
 		}
 		next := S + (target-w)/dw
-		if math.Abs(target-w) < 1e-13 || math.Abs(next-S) < 1e-11 {
+		if math.Abs(target-w) < spreadNoise || hi-lo < 1e-9 {
+			// Close enough to fix temperature or pressure itself, but at the very top.
+			copy(u, nd.v)
+			if s.solveEdge(u, fixed, value, true) && math.Abs(math.Log(s.inc.rho/s.bulk.rho)-S) < 1e-4 {
+				return s.finish(iso), true
+			}
 			return s.saturatedAtSpread(d, iso, S)
 		}
 		if !(lo < next && next < hi) {

@@ -44,6 +44,8 @@ type solver struct {
 	splitStep    []float64
 	liquidAmount []float64
 	vapourAmount []float64
+	liquidMoles  float64
+	vapourMoles  float64
 }
 
 func newSolver(m *mixture) *solver {

@@ -77,14 +77,11 @@ func (s *solver) trace(a node, h float64, done func(*node) bool) ([]node, bool) 
 	for len(nodes) < maxNodes {
 		b := nodes[len(nodes)-1]
 		S := b.S + h
-		if math.Abs(S) < gap { // over the critical point
-			S = math.Copysign(gap, h)
-			if math.Abs(S-b.S) < 1e-9 {
-				S = b.S + h
-			}
-		}
-		if b.S*S < 0 {
-			S = math.Copysign(gap, h)
+		switch { // over the critical point in one step, from one end of the gap to the other
+		case b.S == -gap && h > 0, b.S == gap && h < 0:
+			S = -b.S
+		case b.S < -gap && S > -gap*1.05, b.S > gap && S < gap*1.05:
+			S = math.Copysign(gap, b.S)
 		}
 		if len(nodes) == 1 {
 			for i := range u {

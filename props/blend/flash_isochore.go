@@ -127,7 +127,7 @@ func (s *solver) isochoreTwoPhase(v float64, of Property, value float64, edge *s
 		}
 	}
 	if c != nil && s.solveSplit(u, fixed, other) && s.near(c) && Tmin*(1-1e-9) <= s.inc.T && s.inc.T <= edge.T*(1+1e-9) {
-		o := s.outcome(u)
+		o := s.outcome()
 		return o.result(), nil
 	}
 

@@ -9,7 +9,7 @@ func (s *solver) between(a, b tie, fixed, other constraint) (outcome, bool) {
 	u := make(split, len(s.m.z)+3)
 	c.aim(other.of, other.value, u)
 	if s.solveSplit(u, fixed, other) && s.belongs(c) {
-		return s.outcome(u), true
+		return s.outcome(), true
 	}
 	return s.creep(c, fixed, other)
 }
@@ -30,11 +30,15 @@ func (s *solver) belongs(c *chord) bool {
 	return inside(lnL, math.Log(c.a.vL), math.Log(c.b.vL), 0.3) && inside(lnV, math.Log(c.a.vV), math.Log(c.b.vV), 0.3)
 }
 
-// creep approaches the split in short steps along the chord, from the end a: each solution is the start for the next.
+// creep approaches the split in short steps along the chord, from the end where the phases differ more: each solution is
+// the start for the next.
 func (s *solver) creep(c *chord, fixed, other constraint) (outcome, bool) {
 	n := len(s.m.z)
 	u, try := make(split, n+3), make(split, n+3)
-	const first = 0.02
+	first := 0.02
+	if math.Abs(math.Log(c.a.vV/c.a.vL)) < math.Abs(math.Log(c.b.vV/c.b.vL)) {
+		first = 1 - first
+	}
 	from := c.look(first, other.of)
 	c.write(first, u)
 	if !s.solveSplit(u, fixed, constraint{other.of, from}) {
@@ -54,7 +58,7 @@ func (s *solver) creep(c *chord, fixed, other constraint) (outcome, bool) {
 			return outcome{}, false
 		}
 	}
-	return s.outcome(u), true
+	return s.outcome(), true
 }
 
 // edgeAtT returns the point of a side of the envelope at T.

@@ -58,6 +58,7 @@ func componentLimits(m *model, z []float64, Tred float64) Limits {
 // molarLimits returns the limits of a mixture whose envelope is known, with the density in mol/m3.
 func (m *mixture) molarLimits(d *dome) Limits {
 	l := componentLimits(m.model, m.z, m.whole.T)
+	l.TemperatureMin = d.min[dense].T // warmer where the cold liquid would split
 	l.TemperatureMax = math.Max(l.TemperatureMax, 1.02*d.topT.T)
 	l.PressureMax = math.Max(l.PressureMax, pressureHeadroom*d.topP.p)
 	l.DensityMax = math.Max(l.DensityMax, d.min[dense].rho*(1+1e-9))

@@ -4,8 +4,8 @@ import "math"
 
 // A split is a state of two phases in equilibrium that hold one mole of the blend between them. Its unknowns are, in
 // this order, w_i = ln(v_i/l_i) with the amounts v_i and l_i of component i in vapour and liquid, the logarithms of the
-// volumes of liquid and vapour in m3 and of the temperature. The amounts always add up, nothing can turn negative, and in
-// an ideal system the equations are linear in the unknowns.
+// densities of liquid and vapour in mol/m3 and of the temperature. The amounts always add up, nothing can turn negative,
+// and moving from one phase to the other at an azeotrope, where the system is nearly singular, changes no other unknown.
 type split []float64
 
 const splitIterations = 40
@@ -36,7 +36,7 @@ func (s *solver) solveSplit(u split, a, b constraint) bool {
 	last := math.Inf(1)
 	for range splitIterations {
 		s.evaluateSplit(u)
-		worst := s.fillSplit(u, a, b)
+		worst := s.fillSplit(a, b)
 		if math.IsNaN(worst) {
 			return false
 		}
@@ -72,7 +72,7 @@ func (s *solver) solveSplit(u split, a, b constraint) bool {
 func (s *solver) evaluateSplit(u split) {
 	n := len(s.m.z)
 	liquid, vapour := s.bulk, s.inc
-	vl, vv, T := math.Exp(u[n]), math.Exp(u[n+1]), math.Exp(u[n+2])
+	T := math.Exp(u[n+2])
 	liquid.T, vapour.T = T, T
 	var nl, nv float64
 	for i, w := range u[:n] {
@@ -90,17 +90,19 @@ func (s *solver) evaluateSplit(u split) {
 	for i := range n {
 		liquid.x[i], vapour.x[i] = s.liquidAmount[i]/nl, s.vapourAmount[i]/nv
 	}
-	liquid.rho, vapour.rho = nl/vl, nv/vv
+	liquid.rho, vapour.rho = math.Exp(u[n]), math.Exp(u[n+1])
+	s.liquidMoles, s.vapourMoles = nl, nv
 	s.k.evaluate(liquid, true)
 	s.k.evaluate(vapour, true)
 }
 
-// fillSplit sets up the linear system at u, where the phases are evaluated. It returns the largest residual over its
+// fillSplit sets up the linear system where the phases are evaluated. It returns the largest residual over its
 // tolerance.
-func (s *solver) fillSplit(u split, a, b constraint) float64 {
+func (s *solver) fillSplit(a, b constraint) float64 {
 	n := len(s.m.z)
 	liquid, vapour, l := s.bulk, s.inc, s.split
-	vl, vv, T := math.Exp(u[n]), math.Exp(u[n+1]), math.Exp(u[n+2])
+	vl, vv, T := s.liquidMoles/liquid.rho, s.vapourMoles/vapour.rho, liquid.T
+	// At first with the volumes of both phases in place of the densities.
 	// d ln(l_j)/d w_j = -v_j/z_j and d ln(v_j)/d w_j = l_j/z_j.
 	worst := 0.0
 	scale := math.Abs(vapour.p)
@@ -129,7 +131,18 @@ func (s *solver) fillSplit(u split, a, b constraint) float64 {
 	worst = math.Max(worst, math.Abs(l.b[n])/(10*equilibriumTolerance+1e-13*s.m.whole.R*T*liquid.rho/scale))
 
 	worst = math.Max(worst, s.constrain(l.row(n+1), &l.b[n+1], a, vl, vv))
-	return math.Max(worst, s.constrain(l.row(n+2), &l.b[n+2], b, vl, vv))
+	worst = math.Max(worst, s.constrain(l.row(n+2), &l.b[n+2], b, vl, vv))
+
+	// From volumes to densities: ln(volume) = ln(moles) - ln(rho).
+	for i := range n + 3 {
+		row := l.row(i)
+		inL, inV := row[n], row[n+1]
+		for j := range n {
+			row[j] += s.liquidAmount[j] * s.vapourAmount[j] / s.m.z[j] * (inV/s.vapourMoles - inL/s.liquidMoles)
+		}
+		row[n], row[n+1] = -inL, -inV
+	}
+	return worst
 }
 
 // constrain fills in the row of a constraint and returns its residual over its tolerance.
@@ -197,10 +210,10 @@ func (s *solver) extensive(row []float64, vl, vv, scale float64, c func(ph *phas
 }
 
 // outcome returns the split that was solved last.
-func (s *solver) outcome(u split) outcome {
+func (s *solver) outcome() outcome {
 	n := len(s.m.z)
 	liquid, vapour := s.bulk, s.inc
-	vl, vv := math.Exp(u[n]), math.Exp(u[n+1])
+	vl, vv := s.liquidMoles/liquid.rho, s.vapourMoles/vapour.rho
 	o := outcome{
 		T: vapour.T, p: vapour.p, v: vl + vv, s: vl*liquid.s + vv*vapour.s,
 		x: append([]float64(nil), liquid.x...), y: append([]float64(nil), vapour.x...), rhoL: liquid.rho, rhoV: vapour.rho,
@@ -213,15 +226,21 @@ func (s *solver) outcome(u split) outcome {
 	o.quality /= s.m.whole.M
 
 	// The slope of pressure along the isochore: the response of the system to a change of temperature alone.
-	s.fillSplit(u, constraint{Density, o.v}, constraint{Temperature, o.T})
+	s.fillSplit(constraint{Density, o.v}, constraint{Temperature, o.T})
 	o.dpdT = math.NaN()
 	if s.split.factorise() {
 		clear(s.split.b)
 		s.split.b[n+2] = 1
 		s.split.solve(s.splitStep)
-		dp := vapour.pT * s.splitStep[n+2]
+		d := s.splitStep
+		var moles float64
+		for j := range n {
+			moles += s.liquidAmount[j] * s.vapourAmount[j] / s.m.z[j] * d[j]
+		}
+		moles /= s.vapourMoles
+		dp := vapour.pT * d[n+2]
 		for j, pc := range vapour.pC {
-			dp += pc * (s.liquidAmount[j]/s.m.z[j]*s.splitStep[j] - s.splitStep[n+1])
+			dp += pc * (s.liquidAmount[j]/s.m.z[j]*d[j] - moles + d[n+1])
 		}
 		o.dpdT = dp / o.T
 	}
