@@ -25,7 +25,7 @@ func (c *circuit) cascadeCircuits() {
 
 // enterLower turns to the lower circuit.
 func (c *circuit) enterLower() {
-	c.side, c.fluid = lower, c.refrigerants[lower]
+	c.enter(lower)
 	c.setLow(&c.evaporation, c.evaporatorDrop)
 	c.setCondenser(&condensation{
 		temperature: nan, pressure: c.middle.pressure, levelField: c.intermediate.field(),
@@ -35,12 +35,12 @@ func (c *circuit) enterLower() {
 
 // enterUpper turns to the upper circuit, which evaporates below the lower one's condensing temperature by the approach.
 func (c *circuit) enterUpper() {
-	condensing, err := c.saturationTemperature(c.middle.pressure, gas)
+	condensing, err := c.fluid.saturationTemperature(c.middle.pressure, gas)
 	if err != nil {
 		c.refuse(c.noState(condenserOutlet, c.intermediate.field(), err))
 		return
 	}
-	c.side, c.fluid = upper, c.refrigerants[upper]
+	c.enter(upper)
 	c.setLow(&evaporation{
 		temperature: condensing - c.cascade.approach, pressure: nan, levelField: c.intermediate.field(),
 		superheat: c.cascade.superheat, quality: nan, superheatField: "cascade.superheat",
@@ -55,15 +55,15 @@ func (c *circuit) cascadeBounds() (low, high float64) {
 	c.setLow(&c.evaporation, c.evaporatorDrop)
 	coldest := c.low.dew
 	low = c.low.pressure
-	c.side, c.fluid = upper, c.refrigerants[upper]
+	c.enter(upper)
 	warmest := c.condensation.temperature
 	if c.refused == nil && !isGiven(warmest) {
 		var err error
-		if warmest, err = c.saturationTemperature(c.condensation.pressure, gas); err != nil {
+		if warmest, err = c.fluid.saturationTemperature(c.condensation.pressure, gas); err != nil {
 			c.refuse(c.noState(condenserOutlet, c.condensation.field(), err))
 		}
 	}
-	c.side, c.fluid = lower, c.refrigerants[lower]
+	c.enter(lower)
 	if c.refused != nil {
 		return nan, nan
 	}

@@ -1,7 +1,5 @@
 package cycle
 
-import "dewmark/props"
-
 // CautionCode is a stable name for a reservation about an answer.
 type CautionCode string
 
@@ -42,9 +40,12 @@ const (
 	usualRatio        = 10.0         // one stage, reciprocating; 8 to 10 are usual
 	poorEjector       = 0.15         // efficiency by Elbel and Hrnjak
 	bestEjector       = 0.35
-	nearCriticalShare = 0.98         // of the critical pressure: latent heat and densities change steeply from there
-	atmosphere        = 101325.0     // Pa
+	nearCriticalShare = 0.98     // of the critical pressure: latent heat and densities change steeply from there
+	atmosphere        = 101325.0 // Pa
 )
+
+// noticedGlide is the difference of dew and bubble temperature from which a vessel parts the components of a blend, K.
+const noticedGlide = 0.01
 
 // aboveEnough is the temperature difference that counts, K; less is rounding.
 const aboveEnough = 1e-6
@@ -56,12 +57,9 @@ func (p *plan) caution(k Caution) {
 	p.cautions = append(p.cautions, k)
 }
 
-// extrapolator is a property model that answers outside its validity and knows it.
-type extrapolator interface{ Extrapolated(props.State) bool }
-
 // raise looks over a solved cycle as a practitioner would.
 func (c *circuit) raise(s *Solution) {
-	c.raiseCompressors(s)
+	c.raiseCompressors()
 	lowest := -1
 	for i := range s.States {
 		at := &s.States[i]
@@ -79,6 +77,10 @@ func (c *circuit) raise(s *Solution) {
 	}
 	for i := range c.nodeCount {
 		c.raiseAt(&c.nodes[i])
+	}
+	if glide := c.middle.dew.T - c.middle.bubble.T; glide > noticedGlide {
+		c.caution(Caution{Code: CompositionShift, Field: "refrigerant", Message: message(
+			"liquid and vapour of the vessel at the intermediate pressure differ in composition, with a glide of %s; both are taken as the blend itself", difference(glide))})
 	}
 	for i := range c.optima {
 		if o := &c.optima[i]; o.AtLimit {
@@ -134,7 +136,7 @@ func (c *circuit) raiseCondensed(n *node) {
 }
 
 // raiseCompressors looks at the ends of each compression.
-func (c *circuit) raiseCompressors(s *Solution) {
+func (c *circuit) raiseCompressors() {
 	for i := range c.compressionCount {
 		k := &c.compressions[i]
 		in, out := &c.nodes[k.in], &c.nodes[k.out]

@@ -70,7 +70,7 @@ const (
 type circuit struct {
 	plan
 
-	fluid        Refrigerant // of the circuit that is being put together
+	fluid        model // of the circuit that is being put together
 	refrigerants [sideCount]Refrigerant
 	side         side
 	low          lowSide
@@ -100,6 +100,9 @@ func (c *circuit) clear() {
 	c.flows = [streamCount]float64{mainStream: 1, highStream: 1}
 	c.figures = noFigures
 }
+
+// enter turns to one circuit of a cascade.
+func (c *circuit) enter(s side) { c.side, c.fluid.Refrigerant = s, c.refrigerants[s] }
 
 // put puts refrigerant at a place. The field of the request is to blame when the property model has no such state.
 func (c *circuit) put(at place, of stream, s props.State, err error, field string) *node {

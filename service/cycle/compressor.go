@@ -33,7 +33,7 @@ func (c *circuit) compress(s stage, e *efficiencies, in *node, p float64) *node 
 	var out *node
 	switch measured := e.dischargeTemperature; {
 	case measured == measured: // given
-		st, err := c.fluid.TemperaturePressure(measured, p)
+		st, err := c.fluid.atTemperature(p, measured)
 		out = c.put(s.discharge, in.stream, st, err, e.fields.discharge)
 		work = (out.H - in.H) / kept
 		if c.refused == nil && !(work > 0 && ideal <= work*(1+efficiencyRounding)) {
@@ -42,7 +42,7 @@ func (c *circuit) compress(s stage, e *efficiencies, in *node, p float64) *node 
 	case kept*work == ideal:
 		out = c.put(s.discharge, in.stream, end.State, nil, "")
 	default:
-		st, err := c.fluid.PressureEnthalpy(p, in.H+kept*work)
+		st, err := c.fluid.atEnthalpy(p, in.H+kept*work)
 		out = c.put(s.discharge, in.stream, st, err, e.fields.isentropic)
 	}
 	c.record(s.part, one(in), one(out), 0-e.heatLoss*work, work, c.ambient) // no negative zero
@@ -66,7 +66,7 @@ func (c *circuit) putIsentropic(at place, in *node, p float64) *node {
 	if p == in.P {
 		return c.put(at, in.stream, in.State, nil, "")
 	}
-	st, err := c.fluid.PressureEntropy(p, in.S)
+	st, err := c.fluid.atEntropy(p, in.S)
 	return c.put(at, in.stream, st, err, "")
 }
 
@@ -78,7 +78,7 @@ func (c *circuit) impossibleDischarge(s stage, e *efficiencies, in, end *node, w
 	}
 	least := end.State // what a lossless compressor that loses the same fraction of heat would discharge
 	if e.heatLoss > 0 {
-		if st, err := c.fluid.PressureEnthalpy(end.P, in.H+(1-e.heatLoss)*(end.H-in.H)); err == nil {
+		if st, err := c.fluid.atEnthalpy(end.P, in.H+(1-e.heatLoss)*(end.H-in.H)); err == nil {
 			least = st
 		}
 	}

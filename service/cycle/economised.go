@@ -28,11 +28,7 @@ func (c *circuit) economisedSubcooler() {
 // that leaves, or is given. Where the liquid is cold enough already, nothing is injected.
 func (c *circuit) economise(warm, wet *node) (liquid, injected *node) {
 	e := &c.economiser
-	st, err := c.fluid.TemperaturePressure(c.middle.dew.T+e.superheat, c.middle.pressure)
-	if e.superheat == 0 {
-		st, err = c.middle.dew, nil
-	}
-	injected = c.put(injection, branchStream, st, err, "economiser.injection_superheat")
+	injected = c.injectionVapour(e.superheat)
 	gain := injected.H - wet.H // J per kg injected
 	target := c.middle.dew.T + e.approach
 	switch {
@@ -43,7 +39,7 @@ func (c *circuit) economise(warm, wet *node) (liquid, injected *node) {
 		c.share(0)
 		liquid = c.put(valveInlet, mainStream, warm.State, nil, "")
 	default:
-		st, err := c.fluid.TemperaturePressure(target, warm.P)
+		st, err := c.fluid.atTemperature(warm.P, target)
 		liquid = c.put(valveInlet, mainStream, st, err, "economiser.approach")
 		loss := warm.H - liquid.H // J per kg subcooled
 		c.share(loss / (loss + gain))
@@ -57,6 +53,15 @@ func (c *circuit) economise(warm, wet *node) (liquid, injected *node) {
 	}
 	c.record(economiser, two(warm, wet), two(liquid, injected), 0, 0, nan)
 	return liquid, injected
+}
+
+// injectionVapour puts vapour of the intermediate pressure, superheated.
+func (c *circuit) injectionVapour(superheat float64) *node {
+	if superheat == 0 {
+		return c.put(injection, branchStream, c.middle.dew, nil, "")
+	}
+	st, err := c.fluid.atTemperature(c.middle.pressure, c.middle.dew.T+superheat)
+	return c.put(injection, branchStream, st, err, "economiser.injection_superheat")
 }
 
 // injected is the gas side of a compressor with a port at the intermediate pressure: two steps of compression with the

@@ -25,7 +25,7 @@ func (c *circuit) ejectorExpansion() {
 	if c.exchanger {
 		motive, gas = c.exchangeInternally(warm, separated, &m.most, valveInlet, exchangerVapour)
 	}
-	st, err := c.fluid.PressureEnthalpy(c.middle.pressure, m.enthalpy)
+	st, err := c.fluid.atEnthalpy(c.middle.pressure, m.enthalpy)
 	mixed := c.put(ejectorOutlet, branchStream, st, err, "ejector")
 	c.record(ejector, two(motive, vapour), one(mixed), 0, 0, nan)
 	c.record(separator, one(mixed), two(liquid, separated), 0, 0, nan)
@@ -49,6 +49,7 @@ type mixingSection struct {
 	pressure     float64
 	bubble, dew  props.State
 	suctionSpeed float64
+	motiveSpeed  float64 // without an internal exchanger, which makes it depend on the separator's pressure
 }
 
 // mixing finds the separator's pressure and with it the state of the ejector, by constant-pressure mixing in one dimension:
@@ -56,7 +57,7 @@ type mixingSection struct {
 // vapour that the compressor draws when the quality behind the diffuser is the motive share of the flow; together with the
 // energy balance this gives the entrainment at any pressure, and the diffuser's balance is left for the search.
 func (c *circuit) mixing(warm, vapour *node) (m mixing) {
-	section := c.mixingSection(vapour)
+	section := c.mixingSection(warm, vapour)
 	if c.refused != nil {
 		return m
 	}
@@ -68,9 +69,18 @@ func (c *circuit) mixing(warm, vapour *node) (m mixing) {
 		m = c.mixedAt(warm, vapour, &section)
 		return c.diffuserMiss(&m, &section)
 	}
+	// A diffuser that gains nothing sits at the low end, and rounding must leave it inside the bracket. Most gain little of
+	// what there is to the critical pressure, where there is nothing to separate.
 	low := section.pressure * (1 - ejectorBracket)
 	high := min(c.fluid.Critical().P, warm.P) * (1 - ejectorBracket)
-	p, err := root(low, high, miss)
+	p, f := low, miss(low)
+	next, fNext := p, f
+	for step := ejectorStep; fNext < 0 && next < high; step *= 2 {
+		p, f = next, fNext
+		next = min(next*(1+step), high)
+		fNext = miss(next)
+	}
+	p, err := root(p, f, next, fNext, miss)
 	if err != nil {
 		c.refuse(Refusal{
 			Code: NoSolution, Field: "ejector", Component: "ejector",
@@ -101,11 +111,12 @@ func (c *circuit) checkEjector(m *mixing) {
 	c.refuse(r)
 }
 
-// ejectorBracket widens the search for the separator's pressure below the mixing pressure, for an ejector that gains
-// nothing, and keeps it off the critical pressure, where there is nothing to separate.
-const ejectorBracket = 1e-6
+const (
+	ejectorBracket = 1e-6 // relative distance of the search from its natural limits
+	ejectorStep    = 0.1  // relative first step in search of a bracket; usual lifts are 5 to 20 %
+)
 
-func (c *circuit) mixingSection(vapour *node) (x mixingSection) {
+func (c *circuit) mixingSection(warm, vapour *node) (x mixingSection) {
 	x.pressure = vapour.P - c.ejector.drop
 	if !(x.pressure > 0) {
 		c.refuse(Refusal{
@@ -115,14 +126,17 @@ func (c *circuit) mixingSection(vapour *node) (x mixingSection) {
 		return x
 	}
 	var err error
-	if x.bubble, err = c.fluid.BubblePointAtPressure(x.pressure); err == nil {
-		x.dew, err = c.fluid.DewPointAtPressure(x.pressure)
+	if x.bubble, err = c.fluid.bubbleAt(x.pressure); err == nil {
+		x.dew, err = c.fluid.dewAt(x.pressure)
 	}
 	if err != nil {
 		c.refuse(c.noState(ejectorOutlet, "ejector.suction_pressure_drop", err))
 		return x
 	}
 	x.suctionSpeed = c.nozzle(&vapour.State, x.pressure, c.ejector.suction)
+	if !c.exchanger {
+		x.motiveSpeed = c.nozzle(&warm.State, x.pressure, c.ejector.motive)
+	}
 	return x
 }
 
@@ -131,7 +145,7 @@ func (c *circuit) nozzle(in *props.State, p, efficiency float64) float64 {
 	if efficiency == 0 || p == in.P {
 		return 0
 	}
-	end, err := c.fluid.PressureEntropy(p, in.S)
+	end, err := c.fluid.atEntropy(p, in.S)
 	if err != nil {
 		c.refuse(c.noState(ejectorOutlet, "ejector", err))
 		return nan
@@ -141,22 +155,22 @@ func (c *circuit) nozzle(in *props.State, p, efficiency float64) float64 {
 
 // mixedAt returns the ejector at the separator pressure in force.
 func (c *circuit) mixedAt(warm, vapour *node, x *mixingSection) (m mixing) {
-	m.motive = warm.State
+	m.motive, m.motiveSpeed, m.suctionSpeed = warm.State, x.motiveSpeed, x.suctionSpeed
 	if c.exchanger {
 		m.most = c.internalLimits(warm, &node{State: c.middle.dew, place: separatorVapour})
 		if q, _ := m.most.heat(c.internal.effectiveness, 1); q != 0 && c.refused == nil {
 			var err error
-			if m.motive, err = c.fluid.PressureEnthalpy(m.most.liquidPressure, warm.H-q); err != nil {
+			if m.motive, err = c.fluid.atEnthalpy(m.most.liquidPressure, warm.H-q); err != nil {
 				c.refuse(c.noState(valveInlet, "internal_exchanger.effectiveness", err))
 			}
 		}
+		m.motiveSpeed = c.nozzle(&m.motive, x.pressure, c.ejector.motive)
 	}
 	bubble, dew := &c.middle.bubble, &c.middle.dew
 	share := (vapour.H - bubble.H) / (vapour.H - m.motive.H + dew.H - bubble.H) // of the motive flow
 	share = min(max(share, leastShare), 1-leastShare)                           // the search may pass where no separator works
 	m.entrainment = 1/share - 1
 	m.enthalpy = share*m.motive.H + (1-share)*vapour.H
-	m.motiveSpeed, m.suctionSpeed = c.nozzle(&m.motive, x.pressure, c.ejector.motive), x.suctionSpeed
 	m.speed = share*m.motiveSpeed + (1-share)*m.suctionSpeed // momentum
 	return m
 }
@@ -171,7 +185,7 @@ func (c *circuit) diffuserMiss(m *mixing, x *mixingSection) float64 {
 	if q := (s - bubble.S) / (dew.S - bubble.S); 0 <= q && q <= 1 {
 		return bubble.H + q*(dew.H-bubble.H) - h - c.ejector.diffuser*kinetic
 	}
-	end, err := c.fluid.PressureEntropy(c.middle.pressure, s)
+	end, err := c.fluid.atEntropy(c.middle.pressure, s)
 	if err != nil {
 		c.refuse(c.noState(ejectorOutlet, "ejector", err))
 		return nan
@@ -184,7 +198,7 @@ func (c *circuit) entropyAt(x *mixingSection, h float64) float64 {
 	if q := (h - x.bubble.H) / (x.dew.H - x.bubble.H); 0 <= q && q <= 1 {
 		return x.bubble.S + q*(x.dew.S-x.bubble.S)
 	}
-	st, err := c.fluid.PressureEnthalpy(x.pressure, h)
+	st, err := c.fluid.atEnthalpy(x.pressure, h)
 	if err != nil {
 		c.refuse(c.noState(ejectorOutlet, "ejector", err))
 	}
@@ -201,11 +215,11 @@ func (c *circuit) rateEjector(m mixing, vapour *node) {
 	if c.refused != nil || c.searching {
 		return
 	}
-	compressed, err := c.fluid.PressureEntropy(c.middle.pressure, vapour.S)
+	compressed, err := c.fluid.atEntropy(c.middle.pressure, vapour.S)
 	if err != nil {
 		return // the efficiency stays unknown
 	}
-	expanded, err := c.fluid.PressureEntropy(c.middle.pressure, m.motive.S)
+	expanded, err := c.fluid.atEntropy(c.middle.pressure, m.motive.S)
 	if err != nil {
 		return
 	}

@@ -14,11 +14,11 @@ func (c *circuit) internalLimits(warm, cold *node) (most internalLimits) {
 	if c.refused != nil || warm.T <= cold.T {
 		return most
 	}
-	coldest, err := c.fluid.TemperaturePressure(cold.T, most.liquidPressure)
+	coldest, err := c.fluid.atTemperature(most.liquidPressure, cold.T)
 	if err != nil {
 		c.refuse(c.noState(warm.place, "internal_exchanger.effectiveness", err))
 	}
-	warmest, err := c.fluid.TemperaturePressure(warm.T, most.vapourPressure)
+	warmest, err := c.fluid.atTemperature(most.vapourPressure, warm.T)
 	if err != nil {
 		c.refuse(c.noState(cold.place, "internal_exchanger.effectiveness", err))
 	}
@@ -53,6 +53,6 @@ func (c *circuit) heated(in *node, q, p float64, at place, field string) *node {
 	if q == 0 {
 		return c.throttled(in, p, at, in.stream, field)
 	}
-	st, err := c.fluid.PressureEnthalpy(p, in.H+q)
+	st, err := c.fluid.atEnthalpy(p, in.H+q)
 	return c.put(at, in.stream, st, err, field)
 }

@@ -5,25 +5,26 @@ import "math"
 // meanCondensing returns the pressure at which the mean of bubble and dew temperature is T. It lies between the
 // pressures at which the two lines themselves pass T.
 func (c *circuit) meanCondensing(T float64) (float64, error) {
-	low, err := c.saturationPressure(T, gas)
-	if err != nil || c.withoutGlide() {
+	low, err := c.fluid.saturationPressure(T, gas)
+	if err != nil || c.fluid.withoutGlide() {
 		return low, err
 	}
-	high, err := c.saturationPressure(T, liquid)
+	high, err := c.fluid.saturationPressure(T, liquid)
 	if err != nil {
 		return nan, err
 	}
 	var failure error
-	p, err := root(low, high, func(p float64) float64 {
-		bubble, errB := c.saturationTemperature(p, liquid)
-		dew, errD := c.saturationTemperature(p, gas)
+	miss := func(p float64) float64 {
+		bubble, errB := c.fluid.saturationTemperature(p, liquid)
+		dew, errD := c.fluid.saturationTemperature(p, gas)
 		for _, e := range [...]error{errB, errD} {
 			if e != nil && failure == nil {
 				failure = e
 			}
 		}
 		return (bubble+dew)/2 - T
-	})
+	}
+	p, err := root(low, miss(low), high, miss(high), miss)
 	if failure != nil {
 		return nan, failure
 	}
@@ -64,7 +65,7 @@ func (c *circuit) meanEvaporation() {
 		next := p * factor
 		fNext := miss(next)
 		if f*fNext <= 0 {
-			if found, err := root(p, next, miss); err == nil {
+			if found, err := root(p, f, next, fNext, miss); err == nil {
 				miss(found)
 				return
 			}

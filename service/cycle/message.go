@@ -55,14 +55,14 @@ func message(text string, numbers ...Number) Message {
 // String returns the sentence with its numbers in SI units.
 func (m Message) String() string { return m.Render(Number.String) }
 
-// Render returns the sentence with each number as print writes it.
-func (m Message) Render(print func(Number) string) string {
+// Render returns the sentence with each number as write puts it.
+func (m Message) Render(write func(Number) string) string {
 	if m.count == 0 {
 		return m.text
 	}
 	words := make([]any, m.count)
 	for i := range words {
-		words[i] = print(m.numbers[i])
+		words[i] = write(m.numbers[i])
 	}
 	return fmt.Sprintf(m.text, words...)
 }

@@ -5,7 +5,7 @@ func (c *circuit) throttled(in *node, p float64, at place, of stream, field stri
 	if p == in.P {
 		return c.put(at, of, in.State, nil, "")
 	}
-	st, err := c.fluid.PressureEnthalpy(p, in.H)
+	st, err := c.fluid.atEnthalpy(p, in.H)
 	return c.put(at, of, st, err, field)
 }
 
@@ -30,7 +30,7 @@ func (c *circuit) line(as part, in *node, p, dT float64, at place, field string)
 		c.record(as, one(in), one(out), 0, 0, nan)
 		return out
 	}
-	st, err := c.fluid.TemperaturePressure(in.T+dT, p)
+	st, err := c.fluid.atTemperature(p, in.T+dT)
 	out := c.put(at, in.stream, st, err, field)
 	c.record(as, one(in), one(out), out.H-in.H, 0, c.ambient)
 	return out

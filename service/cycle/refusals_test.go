@@ -39,7 +39,7 @@ var refusals = []refusal{
 		r.Evaporation.Superheat, r.Evaporation.OutletQuality = nil, new(1.1)
 	}, cycle.OutOfBounds, "evaporation.outlet_quality"},
 	{"quality and superheat", func(_ *testing.T, r *cycle.Request) { r.Evaporation.OutletQuality = new(0.9) }, cycle.Surplus, "evaporation.outlet_quality"},
-	{"reference of a pressure", func(t *testing.T, r *cycle.Request) {
+	{"reference of a pressure", func(_ *testing.T, r *cycle.Request) {
 		r.Condensation = cycle.Condensation{Pressure: new(1.3e6), Reference: cycle.Mean, Subcooling: new(3.0)}
 	}, cycle.Surplus, "condensation.reference"},
 

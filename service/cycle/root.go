@@ -18,10 +18,10 @@ func (e *BracketError) Error() string {
 	return fmt.Sprintf("no change of sign between %g (%g) and %g (%g)", e.A, e.FA, e.B, e.FB)
 }
 
-// root returns where f passes zero between a and b, by the bracketed inverse quadratic interpolation of Chandrupatla
-// 1997, Advances in Engineering Software 28. It returns a [*BracketError] when f has the same sign at both ends.
-func root(a, b float64, f func(float64) float64) (float64, error) {
-	fa, fb := f(a), f(b)
+// root returns where f passes zero between a and b, at which it is fa and fb, by the bracketed inverse quadratic
+// interpolation of Chandrupatla 1997, Advances in Engineering Software 28. It returns a [*BracketError] when both have the
+// same sign.
+func root(a, fa, b, fb float64, f func(float64) float64) (float64, error) {
 	if fa == 0 {
 		return a, nil
 	}
@@ -31,7 +31,7 @@ func root(a, b float64, f func(float64) float64) (float64, error) {
 	if !(fa*fb < 0) {
 		return nan, &BracketError{a, b, fa, fb}
 	}
-	c, fc := a, fa // the end before the last, for the interpolation
+	var c, fc float64 // the end before the last, for the interpolation
 	t := 0.5
 	for range rootSteps {
 		x := a + t*(b-a)

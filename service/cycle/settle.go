@@ -105,7 +105,7 @@ func (c *circuit) solution(r *Request) *Solution {
 	scale := c.scale(t)
 	s := &Solution{
 		Layout: r.Layout, With: r.With, Purpose: c.purpose, PerUnit: c.size.of == perUnit,
-		Ambient: c.ambient, Figures: c.figures, Optima: c.optima,
+		Ambient: c.ambient, Figures: c.figures, Optima: c.optima, StatesAsked: c.fluid.asked,
 	}
 	c.settleStates(s, scale)
 	c.settleComponents(s, scale, t)

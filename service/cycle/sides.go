@@ -37,9 +37,9 @@ func (c *circuit) setLow(e *evaporation, loss Drop) {
 	}
 	var err error
 	if isGiven(p) {
-		dew, err = c.saturationTemperature(p, gas)
+		dew, err = c.fluid.saturationTemperature(p, gas)
 	} else {
-		p, err = c.saturationPressure(dew, gas)
+		p, err = c.fluid.saturationPressure(dew, gas)
 	}
 	if err != nil {
 		c.refuse(c.noState(evaporatorOutlet, e.field(), err))
@@ -51,11 +51,11 @@ func (c *circuit) setLow(e *evaporation, loss Drop) {
 	switch {
 	case isGiven(e.quality):
 		field = "evaporation.outlet_quality"
-		c.low.outlet, err = c.fluid.PressureQuality(p, e.quality)
+		c.low.outlet, err = c.fluid.wetAt(p, e.quality)
 	case e.superheat == 0:
-		c.low.outlet, err = c.fluid.DewPointAtPressure(p)
+		c.low.outlet, err = c.fluid.dewAt(p)
 	default:
-		c.low.outlet, err = c.fluid.TemperaturePressure(dew+e.superheat, p)
+		c.low.outlet, err = c.fluid.atTemperature(p, dew+e.superheat)
 	}
 	if err != nil {
 		c.refuse(c.noState(evaporatorOutlet, field, err))
@@ -82,9 +82,9 @@ func (c *circuit) setCondenser(k *condensation, loss Drop) {
 	}
 	var outlet props.State
 	if k.subcooling == 0 {
-		outlet, err = c.fluid.BubblePointAtPressure(p)
+		outlet, err = c.fluid.bubbleAt(p)
 	} else {
-		outlet, err = c.fluid.TemperaturePressure(bubble-k.subcooling, p)
+		outlet, err = c.fluid.atTemperature(p, bubble-k.subcooling)
 	}
 	if err != nil {
 		c.refuse(c.noState(condenserOutlet, k.subcoolingField, err))
@@ -104,7 +104,7 @@ func (c *circuit) setGasCooler(p float64) {
 		})
 		return
 	}
-	outlet, err := c.fluid.TemperaturePressure(g.outlet, p)
+	outlet, err := c.fluid.atTemperature(p, g.outlet)
 	if err != nil {
 		field := g.outletField
 		if e, ok := errors.AsType[*props.RangeError](err); ok && e.Property == props.Pressure {
@@ -126,14 +126,14 @@ func (c *circuit) condensing(k *condensation) (p, bubble float64, err error) {
 			return nan, nan, err
 		}
 	default:
-		if p, err = c.saturationPressure(k.temperature, gas); err != nil {
+		if p, err = c.fluid.saturationPressure(k.temperature, gas); err != nil {
 			return nan, nan, err
 		}
-		if c.withoutGlide() {
+		if c.fluid.withoutGlide() {
 			return p, k.temperature, nil
 		}
 	}
-	bubble, err = c.saturationTemperature(p, liquid)
+	bubble, err = c.fluid.saturationTemperature(p, liquid)
 	return p, bubble, err
 }
 
@@ -181,9 +181,9 @@ func (c *circuit) before(d Drop, p float64, field string) float64 {
 
 // moved returns the saturation pressure at dT above the saturation temperature of p.
 func (c *circuit) moved(p, dT float64, of content, field string) float64 {
-	T, err := c.saturationTemperature(p, of)
+	T, err := c.fluid.saturationTemperature(p, of)
 	if err == nil {
-		p, err = c.saturationPressure(T+dT, of)
+		p, err = c.fluid.saturationPressure(T+dT, of)
 	}
 	if err != nil {
 		c.refuse(Refusal{

@@ -18,6 +18,7 @@ type Solution struct {
 	Closure     Closure
 	Cautions    []Caution
 	Ambient     float64 // dead state in force, K
+	StatesAsked int     // how many states the property model was asked for
 }
 
 // StateAt is the state of the refrigerant at one place.

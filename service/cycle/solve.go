@@ -24,7 +24,7 @@ func Solve(r *Request) (*Solution, error) {
 
 // start takes over what a plan does not hold.
 func (c *circuit) start(r *Request) {
-	c.fluid = r.Refrigerant
+	c.fluid.Refrigerant = r.Refrigerant
 	c.refrigerants = [sideCount]Refrigerant{only: r.Refrigerant, lower: r.Refrigerant, upper: c.cascade.upper}
 	c.middle.pressure, c.meanTrial = nan, nan
 	c.figures = noFigures
@@ -98,7 +98,7 @@ func (c *circuit) atIntermediatePressure() {
 
 // atCascadePressure puts a cascade together at the condensing pressure of its lower circuit.
 func (c *circuit) atCascadePressure() {
-	c.side, c.fluid = lower, c.refrigerants[lower]
+	c.enter(lower)
 	m := &c.intermediate
 	low, high := c.cascadeBounds()
 	switch {
@@ -119,7 +119,7 @@ func (c *circuit) atCascadePressure() {
 
 // intermediateAt returns the pressure with that dew temperature.
 func (c *circuit) intermediateAt(T float64) float64 {
-	p, err := c.saturationPressure(T, gas)
+	p, err := c.fluid.saturationPressure(T, gas)
 	if err != nil {
 		c.refuse(Refusal{
 			Code: NoState, Field: "intermediate.temperature",

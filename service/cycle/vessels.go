@@ -13,8 +13,8 @@ type middle struct {
 func (c *circuit) setMiddle(p float64) {
 	c.middle = middle{pressure: p}
 	var err error
-	if c.middle.bubble, err = c.fluid.BubblePointAtPressure(p); err == nil {
-		c.middle.dew, err = c.fluid.DewPointAtPressure(p)
+	if c.middle.bubble, err = c.fluid.bubbleAt(p); err == nil {
+		c.middle.dew, err = c.fluid.dewAt(p)
 	}
 	if err != nil {
 		c.refuse(Refusal{
@@ -54,7 +54,7 @@ func (c *circuit) mix(as part, a, b *node, at place, of stream) *node {
 	if fb == 0 {
 		out = c.put(at, of, a.State, nil, "")
 	} else {
-		st, err := c.fluid.PressureEnthalpy(a.P, (fa*a.H+fb*b.H)/(fa+fb))
+		st, err := c.fluid.atEnthalpy(a.P, (fa*a.H+fb*b.H)/(fa+fb))
 		out = c.put(at, of, st, err, "")
 	}
 	c.record(as, two(a, b), one(out), 0, 0, nan)

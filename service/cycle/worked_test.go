@@ -65,8 +65,12 @@ func (w *worked) checkState(t *testing.T, row string, s props.State) {
 		got    float64
 		unit   float64 // SI value of one unit of the column
 	}{
-		{"t_c", s.T - zeroCelsius, 1}, {"p_bar", s.P, 1e5}, {"h_kJ_kg", s.H, 1e3},
-		{"s_kJ_kgK", s.S, 1e3}, {"rho_kg_m3", s.Rho, 1}, {"quality", s.Quality, 1},
+		{"t_c", s.T - zeroCelsius, 1},
+		{"p_bar", s.P, 1e5},
+		{"h_kJ_kg", s.H, 1e3},
+		{"s_kJ_kgK", s.S, 1e3},
+		{"rho_kg_m3", s.Rho, 1},
+		{"quality", s.Quality, 1},
 	} {
 		if cells[k.column] == "" {
 			continue
