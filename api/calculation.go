@@ -98,10 +98,38 @@ func datumNames(datums []props.Datum) []string {
 
 func (j *job) caution(code, detail string) { j.cautions = append(j.cautions, caution{code, detail}) }
 
-// extrapolated says that count of all states lie outside the validity of the equation.
-func (j *job) extrapolated(count, all int) {
-	if count > 0 {
+// conclude tells what the calculations as a whole have to say.
+func (j *job) conclude(a *account) {
+	if a.outside > 0 {
 		j.basis.Extrapolated = true
-		j.caution("extrapolated", fmt.Sprintf("%d of %d states lie outside the validity of the equation of state and are marked; their uncertainty is not known", count, all))
+		j.caution("extrapolated", fmt.Sprintf("%d of %d states lie outside the validity of the equation of state and are marked; their uncertainty is not known", a.outside, a.good))
 	}
+}
+
+// view returns a state in the caller's units.
+func (j *job) view(s props.State, shown *selection) stateView {
+	w := worker{job: j, shown: shown}
+	w.show(s)
+	return w.view
+}
+
+// head writes the members that a response begins with.
+func (j *job) head(o *object, kinds []kind) error {
+	o.text("refrigerant", j.basis.Refrigerant)
+	o.text("datum", j.basis.Datum)
+	if err := o.value("units", j.units.names(kinds...)); err != nil {
+		return err
+	}
+	if j.units.site != nil {
+		return o.value("site", j.units.site)
+	}
+	return nil
+}
+
+// tail writes the members that a response ends with.
+func (j *job) tail(o *object) error {
+	if err := o.value("basis", j.basis); err != nil {
+		return err
+	}
+	return o.value("cautions", j.cautions)
 }

@@ -170,19 +170,20 @@ func (a *API) cycles(c *gin.Context) (any, error) {
 	}
 	counter := &countingRefrigerant{Refrigerant: question.Refrigerant}
 	question.Refrigerant = counter
-	tally := a.metrics.tally("cycle")
-	defer tally.done()
+	var all account
 	solution, err := cycle.Solve(question)
 	a.metrics.iterations.WithLabelValues("cycle").Observe(float64(counter.states))
 	if err != nil {
 		p := voice{units: j.units, at: "#", r: j.r}.problem(err)
-		tally.count(p)
+		all.count(p, false)
+		a.metrics.calculated("cycle", &all)
 		if p.Status >= 500 {
 			return nil, err
 		}
 		return nil, p
 	}
-	tally.count(nil)
+	all.count(nil, false)
+	a.metrics.calculated("cycle", &all)
 	return j.cycleResponse(solution), nil
 }
 
@@ -288,12 +289,10 @@ func (j *job) cycleResponse(s *cycle.Solution) *cycleResponse {
 		},
 	}
 	resp.Ambient = u.out(kindTemperature, s.Ambient)
-	outside := 0
+	var all account
 	for _, at := range s.States {
 		v := j.view(at.State, everything)
-		if v.extrapolated {
-			outside++
-		}
+		all.count(nil, v.extrapolated)
 		resp.States = append(resp.States, cycleState{at.Label, at.Place, v})
 	}
 	for _, c := range s.Components {
@@ -303,10 +302,10 @@ func (j *job) cycleResponse(s *cycle.Solution) *cycleResponse {
 			EntropyGeneration: known(u.out(kindEntropyFlow, c.EntropyGeneration)), ExergyDestruction: known(u.out(kindPower, c.ExergyDestruction)),
 		})
 	}
-	j.extrapolated(outside, len(s.States))
+	j.conclude(&all)
 	say := voice{units: u}.number
 	for _, c := range s.Cautions {
-		if c.Code == cycle.Extrapolated && outside > 0 {
+		if c.Code == cycle.Extrapolated && all.outside > 0 {
 			continue // said above
 		}
 		detail := c.Message.Render(say)

@@ -100,7 +100,7 @@ func (d *decoder) assign(target reflect.Value, t token) error {
 			return d.mismatch(t, "a string")
 		}
 		text, err := d.unquote(t)
-		target.SetString(text)
+		target.SetString(string(text))
 		return err
 	case reflect.Bool:
 		if t.kind != 't' && t.kind != 'f' {
@@ -127,15 +127,17 @@ func (d *decoder) object(target reflect.Value) error {
 	shape := shapeOf(target.Type())
 	var seen uint64
 	return d.list('}', func() error {
-		name, err := d.name()
+		raw, err := d.name()
 		if err != nil {
 			return err
 		}
-		d.path[len(d.path)-1].name = name
-		i, known := shape.index[name]
+		i, known := shape.index[string(raw)]
 		if !known {
+			name := string(raw)
+			d.path[len(d.path)-1].name = name
 			return d.refuse("unknown_member", "there is no member "+quote(name)+" here; "+shape.hint(name))
 		}
+		d.path[len(d.path)-1].name = shape.names[i]
 		if seen&(1<<i) != 0 {
 			return d.refuse("duplicate_member", "the member comes twice in its object; once is allowed")
 		}
@@ -153,10 +155,11 @@ func (d *decoder) texts(target reflect.Value) error {
 	into := map[string]string{}
 	target.Set(reflect.ValueOf(into))
 	return d.list('}', func() error {
-		name, err := d.name()
+		raw, err := d.name()
 		if err != nil {
 			return err
 		}
+		name := string(raw)
 		d.path[len(d.path)-1].name = name
 		if _, twice := into[name]; twice {
 			return d.refuse("duplicate_member", "the member comes twice in its object; once is allowed")
@@ -208,22 +211,22 @@ func (d *decoder) list(closing byte, read func() error) error {
 }
 
 // name reads the name of a member and the colon after it.
-func (d *decoder) name() (string, error) {
+func (d *decoder) name() ([]byte, error) {
 	before := d.path
 	d.path = d.path[:len(d.path)-1] // a bad name is a defect of the object
 	if d.peek() != '"' {
-		return "", d.syntax()
+		return nil, d.syntax()
 	}
 	t, err := d.next()
 	if err != nil {
-		return "", err
+		return nil, err
 	}
 	name, err := d.unquote(t)
 	if err != nil {
-		return "", err
+		return nil, err
 	}
 	if d.peek() != ':' {
-		return "", d.syntax()
+		return nil, d.syntax()
 	}
 	d.at++
 	d.path = before
@@ -292,15 +295,15 @@ func (d *decoder) scalar(kind byte, start int) (token, error) {
 }
 
 // unquote returns the text of a string.
-func (d *decoder) unquote(t token) (string, error) {
+func (d *decoder) unquote(t token) ([]byte, error) {
 	if bytes.IndexByte(t.text, '\\') < 0 {
-		return string(t.text[1 : len(t.text)-1]), nil
+		return t.text[1 : len(t.text)-1], nil
 	}
 	var text string
 	if json.Unmarshal(t.text, &text) != nil {
-		return "", d.syntax()
+		return nil, d.syntax()
 	}
-	return text, nil
+	return []byte(text), nil
 }
 
 // fault notes a defect. It returns a problem once there are too many.

@@ -84,34 +84,12 @@ func (m *metrics) setReady(ready bool) {
 	}
 }
 
-// tally counts the calculations of one request by outcome.
-type tally struct {
-	metrics *metrics
-	kind    string
-	good    int
-	bad     map[string]int
-}
-
-func (m *metrics) tally(kind string) *tally { return &tally{metrics: m, kind: kind} }
-
-// count counts one calculation, which p stands for when it failed.
-func (t *tally) count(p *Problem) {
-	if p == nil {
-		t.good++
-		return
+// calculated enters what came of calculations of a kind.
+func (m *metrics) calculated(kind string, a *account) {
+	if a.good > 0 {
+		m.calculations.WithLabelValues(kind, "ok").Add(float64(a.good))
 	}
-	if t.bad == nil {
-		t.bad = map[string]int{}
-	}
-	t.bad[p.outcome()]++
-}
-
-// done hands the counts over.
-func (t *tally) done() {
-	if t.good > 0 {
-		t.metrics.calculations.WithLabelValues(t.kind, "ok").Add(float64(t.good))
-	}
-	for outcome, n := range t.bad {
-		t.metrics.calculations.WithLabelValues(t.kind, outcome).Add(float64(n))
+	for outcome, n := range a.bad {
+		m.calculations.WithLabelValues(kind, outcome).Add(float64(n))
 	}
 }

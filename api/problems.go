@@ -91,6 +91,11 @@ func (p *Problem) below(pointer string) *Problem {
 	return &inner
 }
 
+// tooMany reports a list longer than the service allows.
+func tooMany(pointer string, have, limit int) error {
+	return invalidItem(MemberError{Pointer: pointer, Code: "too_many", Detail: fmt.Sprintf("%d items; allowed are %d at most", have, limit)})
+}
+
 // summary says in one line what the faults say.
 func summary(faults []MemberError) string {
 	if len(faults) == 0 {
@@ -309,7 +314,9 @@ func (v voice) eachGiven(code, detail string) []MemberError {
 func (v voice) views(states []props.State) []stateView {
 	views := make([]stateView, len(states))
 	for i, s := range states {
-		views[i] = view(surround(v.r, s, true), v.units, everything)
+		var around solved
+		around.surround(v.r, s, everything)
+		views[i].fill(&around, v.units, everything)
 	}
 	return views
 }

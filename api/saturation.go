@@ -72,16 +72,16 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 		return nil, err
 	}
 	a.metrics.batch(c, len(points))
-	tally := a.metrics.tally("saturation")
-	defer tally.done()
-	rows, failed := make([]saturationRow, len(points)), 0
+	var all account
+	rows := make([]saturationRow, len(points))
 	for i, p := range points {
-		rows[i] = j.row(p, shown)
-		tally.count(rows[i].Problem)
-		if rows[i].Problem != nil {
-			failed++
+		if i%chunkSize == 0 && c.Request.Context().Err() != nil {
+			return nil, c.Request.Context().Err() // nobody waits for the answer
 		}
+		rows[i] = j.row(p, shown)
+		all.count(rows[i].Problem, false)
 	}
+	a.metrics.calculated("saturation", &all)
 	kinds := append(shown.kinds(), kindTemperature, kindPressure, kindTemperatureDifference, kindEnthalpy)
 	if accepted(c) == mediaCSV {
 		if err := j.announce(c, kinds); err != nil {
@@ -91,7 +91,7 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 	}
 	return saturationResponse{
 		Refrigerant: j.basis.Refrigerant, Datum: j.basis.Datum, Units: j.units.names(kinds...), Site: j.units.site,
-		Failed: failed, Rows: rows, Basis: j.basis, Cautions: j.cautions,
+		Failed: all.failed(), Rows: rows, Basis: j.basis, Cautions: j.cautions,
 	}, nil
 }
 

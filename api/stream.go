@@ -71,8 +71,8 @@ func (a *API) streamStates(c *gin.Context) error {
 	c.Header("Content-Type", mediaLines)
 	c.Status(http.StatusOK)
 
-	tally := a.metrics.tally("state")
-	defer tally.done()
+	w := newWorker(j, shown)
+	defer func() { a.metrics.calculated("state", &w.account) }()
 	out := bufio.NewWriterSize(c.Writer, maxLine)
 	var buffer []byte
 	for n := 0; ; n++ {
@@ -93,11 +93,7 @@ func (a *API) streamStates(c *gin.Context) error {
 			_ = out.Flush()
 			panic(http.ErrAbortHandler) // the request broke off; the answer must not look complete
 		}
-		item := j.line(line, err, n, shown)
-		tally.count(item.problem)
-		if buffer, err = item.encode(buffer[:0]); err != nil {
-			panic(err) // a state has no value that JSON has not
-		}
+		buffer = w.line(buffer[:0], line, err, place{"#/points", n})
 		_ = connection.SetWriteDeadline(a.now().Add(patience))
 		if _, err := out.Write(append(buffer, '\n')); err != nil {
 			return nil // the client is gone
@@ -105,17 +101,20 @@ func (a *API) streamStates(c *gin.Context) error {
 	}
 }
 
-// line answers one line of a stream. Its problems point as those of a batch do.
-func (j *job) line(text []byte, err error, n int, shown *selection) stateItem {
-	pointer := "#/points/" + strconv.Itoa(n)
-	if err != nil {
-		return stateItem{problem: invalidItem(MemberError{Pointer: pointer, Code: "too_long", Detail: "a line may have " + strconv.Itoa(maxLine) + " bytes at most"})}
-	}
+// line answers one line of a stream, or the error that came instead. Its problems point as those of a batch do.
+func (w *worker) line(b, text []byte, err error, at place) []byte {
 	var p point
-	if err := decodeJSON(text, &p); err != nil {
-		return stateItem{id: shorten(p.ID), problem: problemFor(err).below(pointer)}
+	var problem *Problem
+	if err != nil {
+		problem = invalidItem(MemberError{Pointer: at.String(), Code: "too_long", Detail: "a line may have " + strconv.Itoa(maxLine) + " bytes at most"})
+	} else if err := decodeJSON(text, &p); err != nil {
+		problem = problemFor(err).below(at.String())
 	}
-	return j.item(&p, pointer, shown)
+	if problem == nil {
+		return w.item(b, &p, at)
+	}
+	w.count(problem, false)
+	return failedItem(b, &p, problem)
 }
 
 // lineReader reads lines that are not empty.

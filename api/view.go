@@ -15,18 +15,18 @@ type solved struct {
 	superheat, subcooling float64 // K; NaN in the wrong phase
 }
 
-// surround adds the saturation at the state's pressure when it is wanted.
-func surround(r *props.Refrigerant, s props.State, wanted bool) solved {
+// surround makes s the state, with the saturation at its pressure when it is wanted.
+func (around *solved) surround(r *props.Refrigerant, s props.State, wanted *selection) {
 	nan := math.NaN()
-	around := solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan}
-	if !wanted {
-		return around
+	*around = solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan}
+	if !wanted.saturation {
+		return
 	}
 	T := s.T // of a state inside the dome, its ends included
 	if math.IsNaN(s.Quality) {
 		var err error
 		if T, err = r.SaturationTemperature(s.P); err != nil {
-			return around
+			return
 		}
 	}
 	around.bubble, around.dew = T, T
@@ -40,7 +40,6 @@ func surround(r *props.Refrigerant, s props.State, wanted bool) solved {
 	case s.Phase == props.Vapour:
 		around.superheat = s.T - T
 	}
-	return around
 }
 
 // stateField is a member of a state.
@@ -162,13 +161,13 @@ type stateView struct {
 	extrapolated bool                      // outside the validity of the equation; written only when it is so
 }
 
-// view turns a state into the caller's units.
-func view(s solved, u *units, shown *selection) stateView {
-	v := stateView{shown: shown, phase: s.Phase.String()}
+// fill makes v the view of s.
+func (v *stateView) fill(s *solved, u *units, shown *selection) {
+	v.shown, v.phase = shown, s.Phase.String()
 	for _, i := range shown.fields {
-		v.numbers[i] = u.out(stateFields[i].kind, stateFields[i].value(&s))
+		f := &stateFields[i]
+		v.numbers[i] = u.out(f.kind, f.value(s))
 	}
-	return v
 }
 
 // echo puts the caller's own number in its place: converting there and back can change the last digit.
