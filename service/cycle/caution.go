@@ -122,7 +122,11 @@ func (c *circuit) raiseCondensed(n *node) {
 	fluid := c.refrigerants[n.side]
 	critical := fluid.Critical()
 	if !c.gasCooled && n.P > nearCriticalShare*critical.P {
-		c.caution(Caution{Code: NearCritical, Field: c.condensation.field(), Label: n.label(), Message: message(
+		field := c.condensation.field()
+		if n.side == lower {
+			field = c.intermediate.field()
+		}
+		c.caution(Caution{Code: NearCritical, Field: field, Label: n.label(), Message: message(
 			"condensing at %s is within 2 %% of the critical pressure, %s: properties and results change steeply there", pressure(n.P), pressure(critical.P))})
 	}
 	if n.side != lower && n.T < c.sink-aboveEnough {

@@ -28,14 +28,15 @@ func (c *circuit) compress(s stage, e *efficiencies, in *node, p float64) *node 
 	}
 	end := c.putIsentropic(s.isentropic, in, p)
 	ideal := end.H - in.H // J/kg
-	work := ideal / e.isentropic
+	efficiency, work := e.isentropic, ideal/e.isentropic
 	kept := 1 - e.heatLoss // fraction of the power that stays in the refrigerant
 	var out *node
 	switch measured := e.dischargeTemperature; {
-	case measured == measured: // given
+	case isGiven(measured):
 		st, err := c.fluid.atTemperature(p, measured)
 		out = c.put(s.discharge, in.stream, st, err, e.fields.discharge)
 		work = (out.H - in.H) / kept
+		efficiency = min(ideal/work, 1)
 		if c.refused == nil && !(work > 0 && ideal <= work*(1+efficiencyRounding)) {
 			c.refuse(c.impossibleDischarge(s, e, in, end, work))
 		}
@@ -48,10 +49,7 @@ func (c *circuit) compress(s stage, e *efficiencies, in *node, p float64) *node 
 	c.record(s.part, one(in), one(out), 0-e.heatLoss*work, work, c.ambient) // no negative zero
 	if c.refused == nil {
 		c.compressions[c.compressionCount] = compression{
-			s.part, c.side, in.index, out.index, work, min(ideal/work, 1), e.volumetric, s.sharesVolume,
-		}
-		if work == 0 { // a step between equal pressures
-			c.compressions[c.compressionCount].isentropic = e.isentropic
+			s.part, c.side, in.index, out.index, work, efficiency, e.volumetric, s.sharesVolume,
 		}
 		c.compressionCount++
 	}

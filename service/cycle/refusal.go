@@ -18,7 +18,6 @@ const (
 	NoState               RefusalCode = "no_state"               // the refrigerant has no such state within its limits
 	NoSolution            RefusalCode = "no_solution"            // the layout has no answer for these conditions
 	ImpossibleMeasurement RefusalCode = "impossible_measurement" // a discharge temperature that no compressor can have
-	NoEffect              RefusalCode = "no_effect"              // a size by a heat flow that the cycle does not deliver
 )
 
 // Refusal says why one field of a request cannot be.

@@ -59,12 +59,6 @@ func (c *circuit) scale(t totals) float64 {
 	default:
 		return 1 / c.flow(in)
 	}
-	if !(unit > 0) {
-		c.refuse(Refusal{
-			Code: NoEffect, Field: sizeFields[c.size.of],
-			Message: message("the cycle cannot be sized so: per kilogram at the first compressor it comes to %s", plain(unit/c.flow(in))),
-		})
-	}
 	return c.size.value / unit
 }
 

@@ -1,0 +1,108 @@
+package cycle_test
+
+import (
+	"testing"
+
+	"dewmark/props"
+	"dewmark/service/cycle"
+)
+
+// general hides that a refrigerant has one saturation line.
+type general struct{ cycle.Refrigerant }
+
+// TestGeneralModel: the saturation lines of a model that promises nothing give the same cycle.
+func TestGeneralModel(t *testing.T) {
+	r := heatPump(t)
+	r.SuctionLine.TemperatureEquivalent, r.LiquidLine.TemperatureEquivalent = 0.5, 0.2
+	want := solve(t, r).Performance
+	r.Refrigerant = general{r.Refrigerant}
+	if got := solve(t, r).Performance; !near(got.COPHeating, want.COPHeating, 1e-11, 0) || !near(got.MassFlow, want.MassFlow, 1e-11, 0) {
+		t.Errorf("COP %.14g and flow %.14g, want %.14g and %.14g", got.COPHeating, got.MassFlow, want.COPHeating, want.MassFlow)
+	}
+}
+
+// zeotrope is an invented refrigerant: R290 whose dew line lies half a glide above its boiling temperature and whose bubble
+// line lies half a glide below. Only what a cycle makes of references and glides can be learnt from it.
+type zeotrope struct {
+	g    *props.Refrigerant
+	half float64 // K
+}
+
+func (z zeotrope) Designation() string   { return z.g.Designation() }
+func (z zeotrope) Critical() props.Point { return z.g.Critical() }
+
+func shifted(s props.State, err error, dT float64) (props.State, error) {
+	s.T += dT
+	return s, err
+}
+
+func (z zeotrope) BubblePoint(T float64) (props.State, error) {
+	s, err := z.g.BubblePoint(T + z.half)
+	return shifted(s, err, -z.half)
+}
+
+func (z zeotrope) DewPoint(T float64) (props.State, error) {
+	s, err := z.g.DewPoint(T - z.half)
+	return shifted(s, err, z.half)
+}
+
+func (z zeotrope) BubblePointAtPressure(p float64) (props.State, error) {
+	s, err := z.g.BubblePointAtPressure(p)
+	return shifted(s, err, -z.half)
+}
+
+func (z zeotrope) DewPointAtPressure(p float64) (props.State, error) {
+	s, err := z.g.DewPointAtPressure(p)
+	return shifted(s, err, z.half)
+}
+
+func (z zeotrope) TemperaturePressure(T, p float64) (props.State, error) {
+	return z.g.TemperaturePressure(T, p)
+}
+
+func (z zeotrope) PressureQuality(p, x float64) (props.State, error) {
+	return z.g.PressureQuality(p, x)
+}
+
+func (z zeotrope) PressureEnthalpy(p, h float64) (props.State, error) {
+	return z.g.PressureEnthalpy(p, h)
+}
+
+func (z zeotrope) PressureEntropy(p, s float64) (props.State, error) {
+	return z.g.PressureEntropy(p, s)
+}
+
+func TestGlide(t *testing.T) {
+	fluid := refrigerant(t, "R290", props.IIR)
+	const half = 3.0
+	r := heatPump(t)
+	r.Refrigerant = zeotrope{fluid, half}
+	Te, Tk := *r.Evaporation.Temperature, *r.Condensation.Temperature
+	psat := func(T float64) float64 {
+		p, err := fluid.SaturationPressure(T)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return p
+	}
+	check := func(name string, pe, pk, suction, liquid float64) {
+		t.Helper()
+		s := solve(t, r)
+		for what, pair := range map[string][2]float64{
+			"evaporating pressure": {s.Figures.EvaporatingPressure, pe},
+			"condensing pressure":  {s.Figures.HighPressure, pk},
+			"suction temperature":  {at(t, s, "7").T, suction},
+			"liquid temperature":   {at(t, s, "4").T, liquid},
+		} {
+			if !near(pair[0], pair[1], 1e-9, 0) {
+				t.Errorf("%s: %s is %.12g, want %.12g", name, what, pair[0], pair[1])
+			}
+		}
+	}
+	// By dew: superheat counts from the dew line, subcooling from the bubble line a glide below it.
+	check("dew", psat(Te-half), psat(Tk-half), Te+5, Tk-2*half-3)
+	// By mean: the condenser's mean is R290's boiling temperature. The evaporator's inlet is at that boiling temperature and
+	// its dew point half a glide above, so that their mean lies a quarter of the glide above it.
+	r.Evaporation.Reference, r.Condensation.Reference = cycle.Mean, cycle.Mean
+	check("mean", psat(Te-half/2), psat(Tk), Te+half/2+5, Tk-half-3)
+}
