@@ -57,7 +57,9 @@ func (r *Refrigerant) Transport(s State) (Transport, error) {
 
 // TransportRecords returns what the transport correlations of a property are, in order of preference. The caller must
 // not modify them.
-func (r *Refrigerant) TransportRecords(p transport.Property) []*transport.Record { return r.flow.Records(p) }
+func (r *Refrigerant) TransportRecords(p transport.Property) []*transport.Record {
+	return r.flow.Records(p)
+}
 
 // addTransport makes the transport models. Those by corresponding states lean on the models of R134a and R290, which
 // are made first.
