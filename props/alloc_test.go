@@ -32,7 +32,9 @@ func operations(t testing.TB, r *props.Refrigerant) map[string]func() (props.Sta
 		"DewPointAtPressure":    func() (props.State, error) { return r.DewPointAtPressure(v.P) },
 		"liquid":                func() (props.State, error) { return r.TemperaturePressure(T-10, 1.2*v.P) },
 		"two-phase":             func() (props.State, error) { return r.PressureEnthalpy(v.P, v.H-1e3) },
-		"supercritical":         func() (props.State, error) { return r.TemperaturePressure(math.Min(1.03*c.T, r.Limits().TemperatureMax), 1.1*c.P) },
+		"supercritical": func() (props.State, error) {
+			return r.TemperaturePressure(math.Min(1.03*c.T, r.Limits().TemperatureMax), 1.1*c.P)
+		},
 	}
 }
 
