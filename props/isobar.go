@@ -31,13 +31,7 @@ func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
 	side := AnyPhase // of a dome on which the answer lies
 	if r.curve.PMin <= p && p < r.curve.PCritical {
 		d := r.domeAtPressure(p)
-		x := d.quality(y, v)
-		switch {
-		case math.Abs(x) < saturationTie:
-			x = 0
-		case math.Abs(x-1) < saturationTie:
-			x = 1
-		}
+		x := r.snap(&d, y, d.quality(y, v))
 		switch {
 		case 0 <= x && x <= 1:
 			return r.domeState(&d, x), nil
@@ -65,6 +59,25 @@ func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
 		return State{}, err
 	}
 	return s, nil
+}
+
+// snap makes a quality that differs from 0 or 1 by rounding exactly so: given values that were computed from a
+// saturated phase return to it. In a cold fluid a larger step would be one from liquid into vapour.
+func (r *Refrigerant) snap(d *dome, y Property, x float64) float64 {
+	const noise = 2e-13 // relative error of the saturation temperature, and with it of the saturated phases
+	a, b := d.value(y, 0), d.value(y, 1)
+	scale := 10 * r.Rs
+	if y != Entropy {
+		scale *= d.T
+	}
+	tie := noise * (math.Abs(a) + math.Abs(b) + scale) / (b - a)
+	switch {
+	case math.Abs(x) < tie:
+		return 0
+	case math.Abs(x-1) < tie:
+		return 1
+	}
+	return x
 }
 
 // along estimates where on an isobar property y is v, from a state on it whose derivatives are known.
