@@ -164,3 +164,98 @@ func miss(states []blend.State, s *blend.State) (dT, dRho float64) {
 	}
 	return dT, dRho
 }
+
+// TestCriticalRegion asks for the same in the rest: from 0.98 to 1.05 of the critical temperature, and colder than -60 °C.
+// There a typed error is allowed, if rare, but every state that comes back must have what was asked for.
+func TestCriticalRegion(t *testing.T) {
+	perBlend := 6
+	if !testing.Short() {
+		perBlend = 30
+	}
+	if n, err := strconv.Atoi(os.Getenv("DEWMARK_TEST_STATES")); err == nil {
+		perBlend = n
+	}
+	l := library(t)
+	for _, listed := range l.Listed() {
+		t.Run(listed.Designation, func(t *testing.T) {
+			t.Parallel()
+			b := get(t, l, listed.Designation)
+			c, limits := b.Critical(), b.Limits()
+			rng := rand.New(rand.NewPCG(7, uint64(perBlend)))
+			between := func(lo, hi float64) float64 { return lo + (hi-lo)*rng.Float64() }
+			tried, refused := 0, 0
+			for range perBlend {
+				var s blend.State
+				err := errors.New("not drawn yet")
+				for err != nil {
+					if rng.IntN(3) > 0 {
+						s, err = b.TemperatureDensity(between(0.98, 1.05)*c.T, c.Rho*math.Exp(between(-1, 0.7)))
+					} else {
+						s, err = b.TemperatureDensity(between(limits.TemperatureMin, 213), c.Rho*math.Exp(between(-15, math.Log(limits.DensityMax/c.Rho))))
+					}
+					if _, stuck := errors.AsType[*blend.ConvergenceError](err); stuck {
+						tried++
+						refused++
+					}
+				}
+				for _, pair := range allPairs() {
+					x, y := blend.Given{Property: pair[0], Value: value(&s, pair[0])}, blend.Given{Property: pair[1], Value: value(&s, pair[1])}
+					if math.IsNaN(x.Value) || math.IsNaN(y.Value) {
+						continue
+					}
+					tried++
+					states, err := b.States(x, y)
+					if err != nil {
+						refused++
+						if !typed(err) {
+							t.Errorf("%v %.17g, %v %.17g: untyped error %v", x.Property, x.Value, y.Property, y.Value, err)
+						}
+						t.Logf("%v %.17g, %v %.17g of %s state at %.17g K, %.17g kg/m3, quality %g: %v", x.Property, x.Value, y.Property, y.Value, s.Phase, s.T, s.Rho, s.Quality, err)
+						continue
+					}
+					for i := range states {
+						again, err := b.TemperatureDensity(states[i].T, states[i].Rho)
+						if err != nil {
+							continue // on the very edge of the limits
+						}
+						for _, g := range []blend.Given{x, y} {
+							// Temperature and density with rounding of 1e-12 give these properties to:
+							tolerance := 1e-8*(scale(g)) + 1e-10*math.Abs(again.DPDRho*again.Rho)/map[bool]float64{true: 1, false: again.Rho}[g.Property == blend.Pressure]
+							if g.Property == blend.Pressure && s.Phase == blend.TwoPhase || math.IsNaN(tolerance) {
+								tolerance = 1e-6 * scale(g)
+							}
+							if got := value(&again, g.Property); g.Property != blend.Quality && !(math.Abs(got-g.Value) <= tolerance) {
+								t.Errorf("%v %.17g, %v %.17g of %s state at %.17g K, %.17g kg/m3, quality %g: a solution at %.17g K, %.17g kg/m3 has %v %.17g",
+									x.Property, x.Value, y.Property, y.Value, s.Phase, s.T, s.Rho, s.Quality, states[i].T, states[i].Rho, g.Property, got)
+							}
+						}
+					}
+				}
+			}
+			if refused > tried/50 {
+				t.Errorf("%d of %d refused", refused, tried)
+			}
+		})
+	}
+}
+
+// typed reports whether err is one of the error types of the package.
+func typed(err error) bool {
+	for _, is := range []func() bool{
+		func() bool { _, ok := errors.AsType[*blend.RangeError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.AmbiguousError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.NoSolutionError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.ConvergenceError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.ConditionError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.DependentPairError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.DatumError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.EnvelopeError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.CompositionError](err); return ok },
+		func() bool { _, ok := errors.AsType[*blend.UnverifiedPairError](err); return ok },
+	} {
+		if is() {
+			return true
+		}
+	}
+	return false
+}
