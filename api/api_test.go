@@ -438,7 +438,7 @@ func TestMetrics(t *testing.T) {
 		`dewmark_calculations_total{kind="saturation",outcome="out_of_range"} 1`,
 		`dewmark_calculations_total{kind="cycle",outcome="ok"} 1`,
 		`dewmark_calculations_total{kind="cycle",outcome="impossible_cycle"} 1`,
-		`dewmark_solver_iterations_count{kind="cycle"} 2`,
+		`dewmark_solver_iterations_count{kind="cycle"} 1`,
 		`dewmark_batch_items_sum{route="/v1/states"} 4`,
 		`dewmark_build_info{goarch=`,
 		`dewmark_ready 0`,

@@ -35,7 +35,7 @@ func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*
 			Name: "dewmark_calculations_total", Help: "States, saturation rows and cycles computed, by what came of them.",
 		}, []string{"kind", "outcome"}),
 		iterations: prometheus.NewHistogramVec(prometheus.HistogramOpts{
-			Name: "dewmark_solver_iterations", Help: "States that a cycle solver asked for until it had its answer.",
+			Name: "dewmark_solver_iterations", Help: "States that a solver asked the property core for until it had its answer.",
 			Buckets: prometheus.ExponentialBuckets(4, 2, 12),
 		}, []string{"kind"}),
 		batches: prometheus.NewHistogramVec(prometheus.HistogramOpts{

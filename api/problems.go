@@ -233,10 +233,7 @@ func (v voice) noSolution(e *props.NoSolutionError) *Problem {
 func (v voice) refused(e *cycle.RefusedError) *Problem {
 	var faults []MemberError
 	for _, r := range e.Refusals {
-		f := MemberError{Pointer: v.at, Code: string(r.Code), Detail: r.Message.Render(v.number)}
-		if r.Field != "" {
-			f.Pointer += "/" + strings.ReplaceAll(r.Field, ".", "/")
-		}
+		f := MemberError{Pointer: fieldPointer(r.Field), Code: string(r.Code), Detail: r.Message.Render(v.number)}
 		if r.Component != "" {
 			f.Detail += " (component " + r.Component + ")"
 		}
@@ -251,6 +248,14 @@ func (v voice) refused(e *cycle.RefusedError) *Problem {
 		faults = append(faults, f)
 	}
 	return unprocessable("impossible-cycle", "The cycle cannot be", summary(faults), faults...)
+}
+
+// fieldPointer turns a path of the cycle solver into a pointer.
+func fieldPointer(field string) string {
+	if field == "" {
+		return "#"
+	}
+	return "#/" + strings.ReplaceAll(field, ".", "/")
 }
 
 // number writes a number of a cycle's message.

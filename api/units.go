@@ -313,6 +313,9 @@ func (u *units) out(k kind, si float64) float64 {
 	return x
 }
 
+// known is out for a number that may not exist.
+func (u *units) known(k kind, si float64) *float64 { return known(u.out(k, si)) }
+
 // exact converts an SI value to the caller's unit.
 func (u *units) exact(k kind, si float64) float64 {
 	if k == kindNone {
