@@ -17,7 +17,7 @@ const (
 
 var datumNames = [...]string{"", "IIR", "ASHRAE", "NBP", "triple_point"}
 
-func (d Datum) String() string { return datumNames[d] }
+func (d Datum) String() string { return nameOf(datumNames[:], int(d)) }
 
 // ParseDatum returns the datum with that name and reports whether there is one.
 func ParseDatum(name string) (Datum, bool) {

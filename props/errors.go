@@ -44,7 +44,11 @@ type NoSolutionError struct {
 }
 
 func (e *NoSolutionError) Error() string {
-	return fmt.Sprintf("%s: no %s state with %s %g %s and %s %g %s within the limits", e.Refrigerant, e.Phase,
+	kind := "state"
+	if e.Phase != AnyPhase {
+		kind = e.Phase.String() + " state"
+	}
+	return fmt.Sprintf("%s: no %s with %s %g %s and %s %g %s within the limits", e.Refrigerant, kind,
 		e.Pair[0].Property, e.Pair[0].Value, e.Pair[0].Property.Unit(), e.Pair[1].Property, e.Pair[1].Value, e.Pair[1].Property.Unit())
 }
 

@@ -44,7 +44,7 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 		}
 		return pick(&at, y) - v, nil
 	}
-	lo, hi, err := r.isentropeEnds(s)
+	lo, hi, err := r.isentropeEnds(s, Given{y, v})
 	if err != nil {
 		return State{}, err
 	}
@@ -128,15 +128,12 @@ func pick(s *State, y Property) float64 {
 // isentropeEnds returns the logarithms of the lowest and highest pressure at which a state of entropy s exists. An
 // isentrope is warmer at higher pressure: it enters the range of the equation at its lowest temperature or at the
 // lowest pressure, and leaves it at the highest temperature or pressure.
-func (r *Refrigerant) isentropeEnds(s float64) (lo, hi float64, err error) {
-	return r.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
-		_, err := r.PressureEntropy(r.pressure(lnP), s)
-		return side(err, Entropy, s, r)
-	})
+func (r *Refrigerant) isentropeEnds(s float64, other Given) (lo, hi float64, err error) {
+	return r.walk(Given{Entropy, s}, other, r.reach().PressureMax)
 }
 
 // side tells where a failed state lies: -1 where the state would be too cold or solid, +1 where too hot, 0 for a state.
-func side(err error, y Property, v float64, r *Refrigerant) (int, error) {
+func side(err error, y Property, v float64) (int, error) {
 	if err == nil {
 		return 0, nil
 	}
@@ -152,10 +149,16 @@ func side(err error, y Property, v float64, r *Refrigerant) (int, error) {
 	return 0, err
 }
 
-// walk finds the ends, in a coordinate from lo to hi, of the one stretch where states exist, by a coarse scan and
-// bisection at both edges.
-func (r *Refrigerant) walk(lo, hi float64, where func(x float64) (int, error)) (from, to float64, err error) {
+// walk finds the ends, in the logarithm of pressure up to top, of the one stretch where states with the property along
+// exist, by a coarse scan and bisection at both edges. The other given property is for the error.
+func (r *Refrigerant) walk(along, other Given, top float64) (from, to float64, err error) {
 	const n = 48
+	y, v := along.Property, along.Value
+	lo, hi := math.Log(lowestPressure), math.Log(top)
+	where := func(lnP float64) (int, error) {
+		_, err := r.isobar(math.Min(math.Exp(lnP), top), y, v)
+		return side(err, y, v)
+	}
 	first, last := math.NaN(), math.NaN()
 	before, after := math.NaN(), math.NaN() // failing neighbours of the stretch
 	for i := range n + 1 {
@@ -177,7 +180,11 @@ func (r *Refrigerant) walk(lo, hi float64, where func(x float64) (int, error)) (
 		}
 	}
 	if math.IsNaN(first) {
-		return 0, 0, &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: math.NaN(), Min: lowestPressure, Max: r.reach().PressureMax, Limit: LimitAttainable}
+		low, high := r.extent(y)
+		if low <= v && v <= high {
+			return 0, 0, &NoSolutionError{Refrigerant: r.rec.ID, Pair: [2]Given{along, other}}
+		}
+		return 0, 0, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: low, Max: high, Limit: LimitAttainable}
 	}
 	edge := func(in, out float64) float64 {
 		if math.IsNaN(out) {
@@ -199,6 +206,22 @@ func (r *Refrigerant) walk(lo, hi float64, where func(x float64) (int, error)) (
 	return edge(first, before), edge(last, after), nil
 }
 
+// extent returns the lowest and the highest value of property y at the corners of the range, lowest pressure and
+// highest at the lowest and highest temperature.
+func (r *Refrigerant) extent(y Property) (low, high float64) {
+	low, high = math.Inf(1), math.Inf(-1)
+	l := r.reach()
+	for _, T := range []float64{l.TemperatureMin, l.TemperatureMax} {
+		for _, p := range []float64{lowestPressure, math.Min(l.PressureMax, r.meltingPressure(T))} {
+			if f, err := r.singlePhase(T, p, AnyPhase); err == nil {
+				v, _, _ := f.value(y)
+				low, high = math.Min(low, v), math.Max(high, v)
+			}
+		}
+	}
+	return low, high
+}
+
 // enthalpyEnergy calls found with every state of enthalpy h and internal energy u. The two differ by p/rho alone, which
 // an ideal gas fixes by temperature, so that the pair is weak in a thin gas.
 func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
@@ -210,10 +233,7 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 	}
 	// An isenthalp may leave the range of temperatures and come back. Walking it in a wider range leaves no gap.
 	wide := r.Extrapolate()
-	lo, hi, err := wide.walk(math.Log(lowestPressure), math.Log(r.reach().PressureMax), func(lnP float64) (int, error) {
-		_, err := wide.PressureEnthalpy(r.pressure(lnP), h)
-		return side(err, Enthalpy, h, wide)
-	})
+	lo, hi, err := wide.walk(Given{Enthalpy, h}, Given{InternalEnergy, u}, r.reach().PressureMax)
 	if err != nil {
 		return err
 	}

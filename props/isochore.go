@@ -9,21 +9,18 @@ import (
 // isochore returns the state at density rho with the caloric property y equal to v. Along an isochore all three rise
 // with temperature, through the dome and out of it, so that there is one state at most.
 func (r *Refrigerant) isochore(rho float64, y Property, v float64) (State, error) {
-	l := r.reach()
-	if !(rho > 0 && rho <= l.DensityMax) {
-		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: l.DensityMax, Limit: LimitDensity}
+	if err := r.checkDensity(rho); err != nil {
+		return State{}, err
 	}
 	if math.IsNaN(v) || math.IsInf(v, 0) {
 		return State{}, r.notFinite(y, v)
 	}
-	miss := func(T float64) (float64, error) { return r.valueAt(T, rho, y) - v, nil }
-	lo, hi := l.TemperatureMin, l.TemperatureMax
-	a, _ := miss(lo)
-	b, _ := miss(hi)
-	if !(a <= 0 && b >= 0) {
-		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: a + v, Max: b + v, Limit: LimitAttainable}
+	lo, hi := r.reach().TemperatureMin, r.reach().TemperatureMax
+	low, high := r.valueAt(lo, rho, y), r.valueAt(hi, rho, y)
+	if !(low <= v && v <= high) {
+		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: low, Max: high, Limit: LimitAttainable}
 	}
-	T, _ := bracketed(lo, a, hi, b, miss)
+	T, _ := bracketed(lo, low-v, hi, high-v, func(T float64) (float64, error) { return r.valueAt(T, rho, y) - v, nil })
 	return r.TemperatureDensity(T, rho)
 }
 
@@ -49,10 +46,10 @@ func (r *Refrigerant) pressureDensity(p, rho float64, found func(State)) error {
 	if err := r.checkPressure(p); err != nil {
 		return err
 	}
-	l := r.reach()
-	if !(rho > 0 && rho <= l.DensityMax) {
-		return &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: l.DensityMax, Limit: LimitDensity}
+	if err := r.checkDensity(rho); err != nil {
+		return err
 	}
+	l := r.reach()
 	lo, hi := l.TemperatureMin, l.TemperatureMax
 	if r.curve.PMin <= p && p < r.curve.PCritical {
 		d := r.domeAtPressure(p)

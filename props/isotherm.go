@@ -11,8 +11,8 @@ func (r *Refrigerant) TemperatureDensity(T, rho float64) (State, error) {
 	if err := r.checkTemperature(T); err != nil {
 		return State{}, err
 	}
-	if !(rho > 0 && rho <= r.reach().DensityMax) {
-		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: r.reach().DensityMax, Limit: LimitDensity}
+	if err := r.checkDensity(rho); err != nil {
+		return State{}, err
 	}
 	if T < r.curve.TCritical {
 		p, liquid, vapour := r.curve.At(T)

@@ -24,8 +24,21 @@ func (r *Refrigerant) checkTemperature(T float64) error {
 // checkPressure returns a RangeError unless p is positive and in the range the view answers.
 func (r *Refrigerant) checkPressure(p float64) error {
 	l := r.reach()
-	if !(0 < p && p <= l.PressureMax) {
+	if !(vacuum <= p && p <= l.PressureMax) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: p, Min: 0, Max: l.PressureMax, Limit: LimitValidity}
+	}
+	return nil
+}
+
+// vacuum is what pressures in Pa and densities in kg/m3 must reach to count as positive: far from where numbers run out
+// of digits.
+const vacuum = 1e-290
+
+// checkDensity returns a RangeError unless rho is positive and in the range the view answers.
+func (r *Refrigerant) checkDensity(rho float64) error {
+	l := r.reach()
+	if !(vacuum <= rho && rho <= l.DensityMax) {
+		return &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: l.DensityMax, Limit: LimitDensity}
 	}
 	return nil
 }
@@ -33,9 +46,8 @@ func (r *Refrigerant) checkPressure(p float64) error {
 // checkFluid returns a RangeError when a single-phase state is denser than the equation allows or on the solid side of
 // the melting curve.
 func (r *Refrigerant) checkFluid(T, p, rho float64) error {
-	l := r.reach()
-	if !(0 < rho && rho <= l.DensityMax) {
-		return &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: l.DensityMax, Limit: LimitDensity}
+	if err := r.checkDensity(rho); err != nil {
+		return err
 	}
 	if pm := r.meltingPressure(T); p > pm {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: p, Min: 0, Max: pm, Limit: LimitMelting}

@@ -1,6 +1,9 @@
 package props
 
-import "math"
+import (
+	"math"
+	"strconv"
+)
 
 // Property names an intensive property that can fix a state.
 type Property uint8
@@ -20,10 +23,19 @@ var propertyNames = [...]string{"", "temperature", "pressure", "density", "entha
 
 var propertyUnits = [...]string{"", "K", "Pa", "kg/m3", "J/kg", "J/(kg K)", "J/kg", "kg/kg"}
 
-func (p Property) String() string { return propertyNames[p] }
+func (p Property) String() string { return nameOf(propertyNames[:], int(p)) }
 
 // Unit returns the SI unit of p.
-func (p Property) Unit() string { return propertyUnits[p] }
+func (p Property) Unit() string { return nameOf(propertyUnits[:], int(p)) }
+
+// nameOf returns names[i], or the number in brackets where there is no such name, so that even an error about it can be
+// printed.
+func nameOf(names []string, i int) string {
+	if i < len(names) {
+		return names[i]
+	}
+	return "(" + strconv.Itoa(i) + ")"
+}
 
 // Given is a property with its value in SI units.
 type Given struct {
@@ -47,7 +59,7 @@ const (
 
 var phaseNames = [...]string{"", "liquid", "vapour", "two_phase", "supercritical"}
 
-func (p Phase) String() string { return phaseNames[p] }
+func (p Phase) String() string { return nameOf(phaseNames[:], int(p)) }
 
 // ParsePhase returns the phase with that name and reports whether there is one.
 func ParsePhase(name string) (Phase, bool) {
