@@ -43,7 +43,7 @@ func (c *circuit) compress(s stage, e *efficiencies, in *node, p float64) *node 
 	case kept*work == ideal:
 		out = c.put(s.discharge, in.stream, end.State, nil, "")
 	default:
-		st, err := c.fluid.atEnthalpy(p, in.H+kept*work)
+		st, err := c.fluid.atEnthalpyNear(p, in.H+kept*work, &end.State)
 		out = c.put(s.discharge, in.stream, st, err, e.fields.isentropic)
 	}
 	c.record(s.part, one(in), one(out), 0-e.heatLoss*work, work, c.ambient) // no negative zero
@@ -64,7 +64,7 @@ func (c *circuit) putIsentropic(at place, in *node, p float64) *node {
 	if p == in.P {
 		return c.put(at, in.stream, in.State, nil, "")
 	}
-	st, err := c.fluid.atEntropy(p, in.S)
+	st, err := c.fluid.compressed(p, &in.State)
 	return c.put(at, in.stream, st, err, "")
 }
 

@@ -69,12 +69,17 @@ func (c *circuit) mixing(warm, vapour *node) (m mixing) {
 		m = c.mixedAt(warm, vapour, &section)
 		return c.diffuserMiss(&m, &section)
 	}
-	// A diffuser that gains nothing sits at the low end, and rounding must leave it inside the bracket. Most gain little of
-	// what there is to the critical pressure, where there is nothing to separate.
-	low := section.pressure * (1 - ejectorBracket)
-	high := min(c.fluid.Critical().P, warm.P) * (1 - ejectorBracket)
-	p, f := low, miss(low)
+	p := section.pressure
+	c.middle = middle{p, section.bubble, section.dew}
+	m = c.mixedAt(warm, vapour, &section)
+	f := c.diffuserMiss(&m, &section)
+	if c.ejector.diffuser*m.speed*m.speed/2 < leastGain {
+		c.checkEjector(&m)
+		return m
+	}
+	// Most ejectors gain little of what there is to the critical pressure, where there is nothing to separate.
 	next, fNext := p, f
+	high := min(c.fluid.Critical().P, warm.P) * (1 - ejectorBracket)
 	for step := ejectorStep; fNext < 0 && next < high; step *= 2 {
 		p, f = next, fNext
 		next = min(next*(1+step), high)
@@ -84,11 +89,11 @@ func (c *circuit) mixing(warm, vapour *node) (m mixing) {
 	if err != nil {
 		c.refuse(Refusal{
 			Code: NoSolution, Field: "ejector", Component: "ejector",
-			Message: message("no separator pressure between %s and %s closes the ejector's balance", pressure(low), pressure(high)), Cause: err,
+			Message: message("no separator pressure between %s and %s closes the ejector's balance", pressure(section.pressure), pressure(high)), Cause: err,
 		})
 		return m
 	}
-	c.setMiddle(max(p, section.pressure)) // without any speed the diffuser gains nothing, and rounding must not lose
+	c.setMiddle(p)
 	m = c.mixedAt(warm, vapour, &section)
 	c.checkEjector(&m)
 	return m
@@ -112,8 +117,9 @@ func (c *circuit) checkEjector(m *mixing) {
 }
 
 const (
-	ejectorBracket = 1e-6 // relative distance of the search from its natural limits
+	ejectorBracket = 1e-6 // relative distance of the search from the critical pressure
 	ejectorStep    = 0.1  // relative first step in search of a bracket; usual lifts are 5 to 20 %
+	leastGain      = 1e-6 // J/kg in the diffuser that lift the pressure by more than rounding
 )
 
 func (c *circuit) mixingSection(warm, vapour *node) (x mixingSection) {
@@ -160,7 +166,7 @@ func (c *circuit) mixedAt(warm, vapour *node, x *mixingSection) (m mixing) {
 		m.most = c.internalLimits(warm, &node{State: c.middle.dew, place: separatorVapour})
 		if q, _ := m.most.heat(c.internal.effectiveness, 1); q != 0 && c.refused == nil {
 			var err error
-			if m.motive, err = c.fluid.atEnthalpy(m.most.liquidPressure, warm.H-q); err != nil {
+			if m.motive, err = c.fluid.atEnthalpyNear(m.most.liquidPressure, warm.H-q, &warm.State); err != nil {
 				c.refuse(c.noState(valveInlet, "internal_exchanger.effectiveness", err))
 			}
 		}

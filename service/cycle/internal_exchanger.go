@@ -53,6 +53,6 @@ func (c *circuit) heated(in *node, q, p float64, at place, field string) *node {
 	if q == 0 {
 		return c.throttled(in, p, at, in.stream, field)
 	}
-	st, err := c.fluid.atEnthalpy(p, in.H+q)
+	st, err := c.fluid.atEnthalpyNear(p, in.H+q, &in.State)
 	return c.put(at, in.stream, st, err, field)
 }

@@ -1,12 +1,17 @@
 package cycle
 
-import "dewmark/props"
+import (
+	"math"
+
+	"dewmark/props"
+)
 
 // Refrigerant is what a cycle asks of a property model. [*props.Refrigerant] is one. Implementations must be safe for
 // concurrent use and must count enthalpy and entropy from one datum.
 //
-// Two more abilities are used where a model has them: SaturationPressure and SaturationTemperature, which promise that
-// bubble and dew line are one, and Extrapolated, which tells states outside the model's validity.
+// More abilities are used where a model has them: SaturationPressure and SaturationTemperature, which promise that bubble
+// and dew line are one; Extrapolated, which tells states outside the model's validity; PressureEnthalpyNear and
+// PressureEntropyNear, which save the search for a start by that of a state nearby.
 type Refrigerant interface {
 	Designation() string
 	Critical() props.Point
@@ -28,6 +33,12 @@ type vapourPressure interface {
 
 // extrapolator is a property model that answers outside its validity and knows it.
 type extrapolator interface{ Extrapolated(props.State) bool }
+
+// guided is a property model that takes a state nearby as a start. The start is a hint and does not change the answer.
+type guided interface {
+	PressureEnthalpyNear(p, h float64, start props.State) (props.State, error)
+	PressureEntropyNear(p, s float64, start props.State) (props.State, error)
+}
 
 // model is the property model of the circuit that is being put together. It counts the states it is asked for.
 type model struct {
@@ -66,6 +77,32 @@ func (m *model) atEnthalpy(p, h float64) (props.State, error) {
 func (m *model) atEntropy(p, s float64) (props.State, error) {
 	m.asked++
 	return m.PressureEntropy(p, s)
+}
+
+// atEnthalpyNear returns the state at pressure p and enthalpy h, which is not far from another one at about that pressure.
+func (m *model) atEnthalpyNear(p, h float64, other *props.State) (props.State, error) {
+	g, can := m.Refrigerant.(guided)
+	if !can || !(other.Cp > 0) { // inside the dome there is no slope to go by
+		return m.atEnthalpy(p, h)
+	}
+	m.asked++
+	start := *other
+	start.T += (h - other.H) / other.Cp
+	start.Rho /= 1 + other.Expansivity()*(start.T-other.T)
+	return g.PressureEnthalpyNear(p, h, start)
+}
+
+// compressed returns the state at pressure p with the entropy of another one, the start of a compression.
+func (m *model) compressed(p float64, in *props.State) (props.State, error) {
+	g, can := m.Refrigerant.(guided)
+	if !can || !(in.W > 0) {
+		return m.atEntropy(p, in.S)
+	}
+	m.asked++
+	start := *in
+	start.Rho *= math.Pow(p/in.P, 1/in.IsentropicExponent())
+	start.T *= p / in.P * in.Rho / start.Rho // at the same compressibility factor
+	return g.PressureEntropyNear(p, in.S, start)
 }
 
 // content of a pipe decides which saturation line counts.

@@ -54,7 +54,7 @@ func (c *circuit) mix(as part, a, b *node, at place, of stream) *node {
 	if fb == 0 {
 		out = c.put(at, of, a.State, nil, "")
 	} else {
-		st, err := c.fluid.atEnthalpy(a.P, (fa*a.H+fb*b.H)/(fa+fb))
+		st, err := c.fluid.atEnthalpyNear(a.P, (fa*a.H+fb*b.H)/(fa+fb), &a.State)
 		out = c.put(at, of, st, err, "")
 	}
 	c.record(as, two(a, b), one(out), 0, 0, nan)

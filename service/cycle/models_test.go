@@ -106,3 +106,42 @@ func TestGlide(t *testing.T) {
 	r.Evaporation.Reference, r.Condensation.Reference = cycle.Mean, cycle.Mean
 	check("mean", psat(Te-half/2), psat(Tk), Te+half/2+5, Tk-half-3)
 }
+
+// hinted checks that the starts a cycle gives are near what it asks for.
+type hinted struct {
+	*props.Refrigerant
+	t     *testing.T
+	calls *int
+}
+
+func (h hinted) check(start, answer props.State, err error) (props.State, error) {
+	*h.calls++
+	if err == nil && !(near(start.T, answer.T, 0.1, 0) && near(start.Rho, answer.Rho, 0.5, 0)) {
+		h.t.Errorf("start at %g K and %g kg/m3 for a state at %g K and %g kg/m3", start.T, start.Rho, answer.T, answer.Rho)
+	}
+	return answer, err
+}
+
+func (h hinted) PressureEnthalpyNear(p, v float64, start props.State) (props.State, error) {
+	s, err := h.PressureEnthalpy(p, v)
+	return h.check(start, s, err)
+}
+
+func (h hinted) PressureEntropyNear(p, v float64, start props.State) (props.State, error) {
+	s, err := h.PressureEntropy(p, v)
+	return h.check(start, s, err)
+}
+
+// TestStartsNearby: a model that takes starts gets good ones, and nothing else changes.
+func TestStartsNearby(t *testing.T) {
+	for _, k := range optima {
+		r := heatPump(t)
+		k.change(t, r)
+		want := solve(t, r).Performance.COPHeating
+		calls := 0
+		r.Refrigerant = hinted{r.Refrigerant.(*props.Refrigerant), t, &calls}
+		if got := solve(t, r).Performance.COPHeating; got != want || calls == 0 {
+			t.Errorf("%s: COP %.15g after %d calls with a start, %.15g without", k.name, got, calls, want)
+		}
+	}
+}
