@@ -142,7 +142,7 @@ var randomLayouts = []randomLayout{
 		r.Economiser = &cycle.Economiser{Approach: new(between(rng, 2, 8)), InjectionSuperheat: new(sometimes(rng, 0.5, between(rng, 0, 2)))}
 	})},
 	{"economised_subcooler by ratio", withMiddle(cycle.EconomisedSubcooler, func(rng *rand.Rand, r *cycle.Request) {
-		r.Economiser = &cycle.Economiser{InjectionRatio: new(between(rng, 0, 0.04)), InjectionSuperheat: new(0.0)}
+		r.Economiser = &cycle.Economiser{InjectionRatio: new(between(rng, 0, 0.02)), InjectionSuperheat: new(0.0)}
 	})},
 	{"two_stage_flash open", withMiddle(cycle.TwoStageFlash, nil)},
 	{"two_stage_flash gas removal", withMiddle(cycle.TwoStageFlash, func(_ *rand.Rand, r *cycle.Request) {
