@@ -141,7 +141,8 @@ func (c *circuit) checkBetween(p, low, high float64) {
 	})
 }
 
-// assemble puts the machine together at the pressures in force.
+// assemble puts the machine together at the pressures in force. A new layout is one more method here, a list of components;
+// what it brings along has its labels in places.go and its fields in the request, the plan and the validation.
 func (c *circuit) assemble() {
 	c.clear()
 	if c.refused != nil {
