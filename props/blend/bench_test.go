@@ -5,6 +5,7 @@ import (
 
 	"dewmark/props"
 	"dewmark/props/blend"
+	"dewmark/props/data"
 )
 
 // The benchmarks come in families to be compared as ratios in one run: a blend against its components or a pure fluid.
@@ -184,10 +185,17 @@ func simpleCycle(r *blend.Blend) error {
 
 // What the first question to a blend costs: envelope, critical point and expansions.
 func BenchmarkFirstUse(b *testing.B) {
-	l := library(b)
+	records, err := data.Load()
+	if err != nil {
+		b.Fatal(err)
+	}
 	for _, name := range []string{"R454B", "R407C", "R448A"} {
 		b.Run(name, func(b *testing.B) {
 			for b.Loop() {
+				l, err := blend.NewLibrary(records)
+				if err != nil {
+					b.Fatal(err)
+				}
 				if _, err := l.Blend(name, blend.DefaultDatum); err != nil {
 					b.Fatal(err)
 				}

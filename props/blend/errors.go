@@ -84,6 +84,9 @@ func (e *DatumError) Error() string {
 	for i, d := range e.Allowed {
 		names[i] = d.String()
 	}
+	if len(names) == 0 {
+		names = append(names, "none")
+	}
 	return fmt.Sprintf("%s has no saturated liquid at the reference point of datum %s, possible: %s", e.Refrigerant, e.Datum, strings.Join(names, ", "))
 }
 

@@ -43,6 +43,16 @@ func (s *solver) isentrope(entropy float64, of Property, value float64) (result,
 		return result{}, err
 	}
 	if !(a <= 0 && b >= 0) {
+		// The ends are where an isentrope meets the limits, found by bisection.
+		const slack = 1e-8
+		scale := s.m.whole.R * at.T
+		switch {
+		case a > 0 && a <= slack*scale:
+			_, err = miss(lo)
+			return at, err
+		case b < 0 && b >= -slack*scale:
+			return at, nil
+		}
 		return result{}, s.unattainable(of, value, a+value, b+value)
 	}
 	lnP, err := bracketed(lo, a, hi, b, miss)

@@ -5,6 +5,9 @@ import "math"
 // edgeTie is the share of the way across the envelope within which a state counts as lying on its edge.
 const edgeTie = 1e-10
 
+// limitSlack is the relative distance by which a value may lie beyond a limit of temperature: rounding on the way there.
+const limitSlack = 1e-12
+
 // isobar returns the state at pressure p with a given volume, enthalpy, entropy or internal energy. Along an isobar all of
 // them rise with temperature.
 func (s *solver) isobar(p float64, of Property, value float64) (result, error) {
@@ -43,8 +46,9 @@ func (s *solver) isobar(p float64, of Property, value float64) (result, error) {
 		}
 		c := cold.result()
 		first := c.value(of)
+		slack := edgeTie*(warm-first) + limitSlack*(math.Abs(first)+math.Abs(warm))
 		switch {
-		case value < first-edgeTie*(warm-first):
+		case value < first-slack:
 			return result{}, s.unattainable(of, value, first, s.ceiling(p, of))
 		case value < first+edgeTie*(warm-first):
 			return c, nil
@@ -148,6 +152,17 @@ func (s *solver) isobarSearch(p float64, of Property, value, lo, hi float64, sd 
 		return result{}, err
 	}
 	if !(a <= 0 && b >= 0) {
+		tie := limitSlack * math.Abs(value)
+		if of == Density {
+			tie = limitSlack // of the logarithm
+		}
+		switch { // at the limit but for rounding
+		case a > 0 && a <= tie:
+			_, err = miss(lo)
+			return singlePhase(q), err
+		case b < 0 && b >= -tie:
+			return singlePhase(q), nil
+		}
 		if hi < s.reach.TemperatureMax {
 			return result{}, s.unattainable(of, value, first, s.ceiling(p, of))
 		}

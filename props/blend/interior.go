@@ -30,9 +30,83 @@ func (s *solver) belongs(c *chord) bool {
 	return inside(lnL, math.Log(c.a.vL), math.Log(c.b.vL), 0.3) && inside(lnV, math.Log(c.a.vV), math.Log(c.b.vV), 0.3)
 }
 
-// creep approaches the split in short steps along the chord, from the end where the phases differ more: each solution is
-// the start for the next.
+// creep approaches the split in short steps: each solution is the start for the next.
 func (s *solver) creep(c *chord, fixed, other constraint) (outcome, bool) {
+	if o, ok := s.creepQuality(c, fixed, other); ok {
+		return o, true
+	}
+	return s.creepAlong(c, fixed, other)
+}
+
+// creepQuality starts at the end of the chord where the phases differ more, which must be an edge of the envelope, and
+// raises or lowers the quality from there until the constraint holds.
+func (s *solver) creepQuality(c *chord, fixed, other constraint) (outcome, bool) {
+	n := len(s.m.z)
+	end := &c.a
+	if math.Abs(math.Log(c.a.vV/c.a.vL)) < math.Abs(math.Log(c.b.vV/c.b.vL)) {
+		end = &c.b
+	}
+	// On an edge the liquid or the vapour is the blend itself: sum z K = 1 or sum z/K = 1.
+	var bubble, dew float64
+	for i, z := range s.m.z {
+		k := math.Exp(end.lnK[i])
+		bubble, dew = bubble+z*k, dew+z/k
+	}
+	const off = 1e-3 // from the edge, where the equations are singular
+	q, step := off, 0.05
+	if math.Abs(dew-1) < math.Abs(bubble-1) {
+		q, step = 1-off, -step
+	}
+	u, try := make(split, n+3), make(split, n+3)
+	logit := func(q float64) float64 { return math.Log(q / (1 - q)) }
+	for i, k := range end.lnK {
+		u[i] = k + logit(q)
+	}
+	u[n], u[n+1], u[n+2] = -math.Log(end.vL), -math.Log(end.vV), math.Log(end.T)
+	if !s.solveSplit(u, fixed, constraint{Quality, q}) {
+		return outcome{}, false
+	}
+	value := func() float64 {
+		o := s.outcome()
+		r := o.result()
+		if other.of == Quality {
+			return r.quality
+		}
+		return r.value(other.of)
+	}
+	before := value() - other.value
+	for off/2 < q && q < 1-off/2 && math.Abs(step) > 1e-4 {
+		next := min(max(q+step, off/2), 1-off/2)
+		copy(try, u)
+		for i := range n {
+			try[i] += logit(next) - logit(q)
+		}
+		if !s.solveSplit(try, fixed, constraint{Quality, next}) || math.Abs(s.inc.T/end.T-1) > 0.5 {
+			step /= 2
+			continue
+		}
+		now := value() - other.value
+		if (now < 0) != (before < 0) {
+			// The answer lies between; the better start is the nearer one.
+			near := try
+			if math.Abs(before) < math.Abs(now) {
+				near = u
+			}
+			final := append(split(nil), near...)
+			if s.solveSplit(final, fixed, other) && s.belongs(c) {
+				return s.outcome(), true
+			}
+			step /= 2
+			continue
+		}
+		copy(u, try)
+		q, before = next, now
+	}
+	return outcome{}, false
+}
+
+// creepAlong approaches the split along the chord in steps of the property itself.
+func (s *solver) creepAlong(c *chord, fixed, other constraint) (outcome, bool) {
 	n := len(s.m.z)
 	u, try := make(split, n+3), make(split, n+3)
 	first := 0.02

@@ -50,6 +50,9 @@ func componentLimits(m *model, z []float64, Tred float64) Limits {
 		l.TemperatureMax = math.Min(l.TemperatureMax, v.TemperatureMax)
 		l.PressureMax = math.Min(l.PressureMax, v.PressureMax)
 	}
+	if T := 273.15; T < l.TemperatureMin && l.TemperatureMin <= 273.16 {
+		l.TemperatureMin = T // a blend with water: 0.01 K more lets it have the usual datum
+	}
 	l.TemperatureMax = math.Max(l.TemperatureMax, highestReduced*Tred)
 	l.DensityMax = 1 / volume
 	return l

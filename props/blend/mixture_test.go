@@ -4,6 +4,7 @@ import (
 	"errors"
 	"math"
 	"strings"
+	"sync"
 	"testing"
 
 	"dewmark/props/blend"
@@ -282,4 +283,91 @@ func TestRefusals(t *testing.T) {
 	if _, err := b.States(g, g); err == nil {
 		t.Error("temperature twice fixes a state")
 	}
+}
+
+// Free compositions far from the listed ones: wide-boiling, with pairs that have no parameters, traces, many components.
+// Bubble, dew and interior states must agree with each other by way of different flashes.
+func TestFreeCompositionsAgree(t *testing.T) {
+	l := library(t)
+	share := func(id string, f float64) blend.Share { return blend.Share{Designation: id, Fraction: f} }
+	for _, shares := range [][]blend.Share{
+		{share("R32", 0.6), share("R1234yf", 0.4)},
+		{share("R744", 0.3), share("R290", 0.7)},
+		{share("R744", 0.5), share("R600a", 0.5)},
+		{share("R744", 0.1), share("R601", 0.9)},
+		{share("R170", 0.2), share("R600", 0.8)},
+		{share("R1150", 0.1), share("R601a", 0.9)},
+		{share("R717", 0.7), share("RE170", 0.3)},
+		{share("R290", 1-1e-6), share("R600", 1e-6)},
+		{share("R1132(E)", 0.23), share("R1234yf", 0.77)},
+		{share("R32", 0.3), share("R125", 0.1), share("R134a", 0.1), share("R1234yf", 0.2), share("R1234ze(E)", 0.1), share("R744", 0.05), share("R290", 0.1), share("R227ea", 0.05)},
+	} {
+		b, err := l.Mixture(blend.Composition{Basis: blend.ByMole, Shares: shares}, blend.DefaultDatum, false)
+		if err != nil {
+			t.Errorf("%v: %v", shares, err)
+			continue
+		}
+		c := b.Critical()
+		for _, r := range []float64{0.6, 0.75, 0.9, 0.97} {
+			T := math.Max(r*c.T, b.Limits().TemperatureMin)
+			dew, err := b.DewPoint(T)
+			if err != nil {
+				t.Errorf("%s, dew at %g K: %v", b.Designation(), T, err)
+				continue
+			}
+			bubble, err := b.BubblePoint(T)
+			if err != nil || !(bubble.P > dew.P*(1-1e-9)) {
+				t.Errorf("%s, bubble at %g K: %g Pa, dew %g Pa, %v", b.Designation(), T, bubble.P, dew.P, err)
+				continue
+			}
+			for _, q := range []float64{1e-6, 0.3, 0.7, 1 - 1e-6} {
+				s, err := b.TemperatureQuality(T, q)
+				if err != nil {
+					t.Errorf("%s, quality %g at %g K: %v", b.Designation(), q, T, err)
+					continue
+				}
+				for _, pair := range [][2]blend.Property{
+					{blend.Pressure, blend.Enthalpy},
+					{blend.Pressure, blend.Entropy},
+					{blend.Enthalpy, blend.Entropy},
+					{blend.Temperature, blend.Density},
+					{blend.Density, blend.InternalEnergy},
+				} {
+					x, y := blend.Given{Property: pair[0], Value: value(&s, pair[0])}, blend.Given{Property: pair[1], Value: value(&s, pair[1])}
+					recovered(t, b, &s, x, y)
+				}
+			}
+		}
+	}
+}
+
+// Views and solvers are shared by goroutines.
+func TestConcurrentUse(t *testing.T) {
+	l := library(t)
+	want, err := get(t, l, "R449A").PressureEnthalpy(1e6, 300e3)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var wg sync.WaitGroup
+	for range 8 {
+		wg.Go(func() {
+			for _, datum := range []blend.Datum{blend.IIR, blend.ASHRAE} {
+				b, err := l.Blend("R449A", datum)
+				if err != nil {
+					t.Error(err)
+					return
+				}
+				for range 20 {
+					s, err := b.PressureEnthalpy(1e6, 300e3)
+					if err != nil || datum == blend.IIR && (s.T != want.T || s.Rho != want.Rho) {
+						t.Errorf("%g K, %v; alone %g K", s.T, err, want.T)
+					}
+					if _, err := b.DewPoint(300); err != nil {
+						t.Error(err)
+					}
+				}
+			}
+		})
+	}
+	wg.Wait()
 }

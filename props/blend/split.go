@@ -55,7 +55,7 @@ func (s *solver) solveSplit(u split, a, b constraint) bool {
 			case n:
 				limit = 0.3
 			case n + 1:
-				limit = 1.5
+				limit = 0.5
 			case n + 2:
 				limit = 0.05
 			}

@@ -53,7 +53,10 @@ func (s *solver) tangentPlane(T, p, rho float64) (distance float64, x []float64,
 
 	lnW := make([]float64, n)
 	attempt := func() {
-		for range stabilityIterations {
+		for i := 0; ; i++ {
+			if i == stabilityIterations {
+				return // no stationary point
+			}
 			var sum float64
 			for i := range lnW {
 				sum += math.Exp(lnW[i])

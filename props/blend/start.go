@@ -14,16 +14,15 @@ func (m *model) wilson(i int, T float64) float64 {
 // ideal gas, it climbs on the concave vapour branch; either way it stops with false where the branch ends before p.
 func (k *kernel) densityFrom(ph *phase, p, rho float64) bool {
 	R := mean(ph.x, k.m.R)
-	for range 60 {
+	for range 100 {
 		a := k.residual(ph.x, rho)
 		slope := R * ph.T * (1 + 2*a.D + a.DD)
 		if !(slope > 0) {
 			return false
 		}
 		step := (rho*R*ph.T*(1+a.D) - p) / slope
-		if step > 0.5*rho {
-			step = 0.5 * rho
-		}
+		// A longer step might land beyond the end of the branch, on one of the false stretches that look stable.
+		step = max(-0.1*rho, min(step, 0.1*rho))
 		rho -= step
 		if math.Abs(step) <= 1e-11*rho {
 			ph.rho = rho
