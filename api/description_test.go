@@ -95,6 +95,37 @@ func TestRequestExamplesReplay(t *testing.T) {
 	}
 }
 
+// An example of a response is the answer to the example of a request with the same name.
+func TestResponseExamples(t *testing.T) {
+	seen := 0
+	for path, item := range loadContract(t).doc.Paths.Map() {
+		if item.Post == nil {
+			continue
+		}
+		media := item.Post.Responses.Status(http.StatusOK).Value.Content["application/json"]
+		for name, example := range media.Examples {
+			seen++
+			request, ok := item.Post.RequestBody.Value.Content["application/json"].Examples[name]
+			if !ok {
+				t.Errorf("%s: no request is called %s", path, name)
+				continue
+			}
+			body, err := json.Marshal(request.Value.Value)
+			if err != nil {
+				t.Fatal(err)
+			}
+			var got any
+			if err := json.Unmarshal(do(t, testHandler(t), http.MethodPost, path, string(body)).Body.Bytes(), &got); err != nil {
+				t.Fatal(err)
+			}
+			compareJSON(t, path+" "+name, example.Value.Value, got)
+		}
+	}
+	if seen < 2 {
+		t.Errorf("only %d examples found", seen)
+	}
+}
+
 // Keywords of OpenAPI 3.0 are silently ignored in 3.1, and generators make 32-bit floats of numbers without format.
 func TestDescriptionKeywords(t *testing.T) {
 	var tree any
