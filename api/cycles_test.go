@@ -30,7 +30,7 @@ func TestCyclesAgainstWorkedCases(t *testing.T) {
 	cases, inputs := map[string][][]string{}, map[string]map[string]string{}
 	for _, row := range rows[1:] {
 		name := row[0]
-		if !strings.Contains("ABCD", name[:1]) {
+		if !strings.ContainsAny(name[:1], "ABCD") {
 			continue
 		}
 		if row[1] == "input" {

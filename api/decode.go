@@ -5,10 +5,8 @@ import (
 	"encoding/json"
 	"fmt"
 	"reflect"
-	"slices"
 	"strconv"
 	"strings"
-	"sync"
 	"unicode/utf8"
 )
 
@@ -417,20 +415,6 @@ func (d *decoder) pointer() string {
 	return string(b)
 }
 
-// escapePointer writes one name for a pointer in a URI fragment.
-func escapePointer(name string) string {
-	const plain = "-._~!$&'()*+,;=:@?" // of RFC 3986 fragments, besides letters and digits
-	var b strings.Builder
-	for _, c := range []byte(strings.NewReplacer("~", "~0", "/", "~1").Replace(shorten(name))) {
-		if 'a' <= c && c <= 'z' || 'A' <= c && c <= 'Z' || '0' <= c && c <= '9' || strings.IndexByte(plain, c) >= 0 {
-			b.WriteByte(c)
-		} else {
-			fmt.Fprintf(&b, "%%%02X", c)
-		}
-	}
-	return b.String()
-}
-
 // shorten cuts the client's text to what a message can bear.
 func shorten(text string) string {
 	if len(text) <= maxQuote {
@@ -440,55 +424,3 @@ func shorten(text string) string {
 }
 
 func quote(text string) string { return strconv.Quote(shorten(text)) }
-
-// shape is the JSON view of a struct type: embedded structs are flattened.
-type shape struct {
-	names  []string
-	index  map[string]int
-	fields [][]int
-}
-
-var shapes sync.Map // of reflect.Type to *shape
-
-func shapeOf(t reflect.Type) *shape {
-	if s, ok := shapes.Load(t); ok {
-		return s.(*shape)
-	}
-	s := &shape{index: map[string]int{}}
-	s.collect(t, nil)
-	if len(s.names) > 64 {
-		panic("api: too many members in " + t.String())
-	}
-	shapes.Store(t, s)
-	return s
-}
-
-func (s *shape) collect(t reflect.Type, path []int) {
-	for i := range t.NumField() {
-		field := t.Field(i)
-		at := append(slices.Clone(path), i)
-		if field.Anonymous {
-			s.collect(field.Type, at)
-			continue
-		}
-		name, _, _ := strings.Cut(field.Tag.Get("json"), ",")
-		s.index[name] = len(s.names)
-		s.names = append(s.names, name)
-		s.fields = append(s.fields, at)
-	}
-}
-
-// hint says which member may have been meant.
-func (s *shape) hint(name string) string {
-	for _, known := range s.names {
-		if squeeze(known) == squeeze(name) {
-			return "did you mean " + known + "?"
-		}
-	}
-	return "known are " + strings.Join(s.names, ", ")
-}
-
-// squeeze reduces a name to its letters, so that other styles of writing it compare equal.
-func squeeze(name string) string {
-	return strings.ToLower(strings.NewReplacer("_", "", "-", "", " ", "").Replace(name))
-}

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"strconv"
 	"strings"
 
 	"dewmark/props"
@@ -20,19 +19,6 @@ type worker struct {
 }
 
 func newWorker(j *job, shown *selection) *worker { return &worker{job: j, shown: shown} }
-
-// place is an item of a list in the request, or the list's pointer itself when index is negative.
-type place struct {
-	list  string
-	index int
-}
-
-func (p place) String() string {
-	if p.index < 0 {
-		return p.list
-	}
-	return p.list + "/" + strconv.Itoa(p.index)
-}
 
 // given is a property that a request fixes, under the name that the request has for it.
 type given struct {

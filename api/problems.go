@@ -177,7 +177,7 @@ func (v voice) outOfRange(e *props.RangeError) *Problem {
 		if g.Property != e.Property {
 			continue
 		}
-		pointer += g.path
+		pointer = v.at + g.path
 		if member, kind = g.member, g.kind; kind == kindSpecificVolume {
 			value, low, high = 1/e.Value, 1/e.Max, 1/e.Min
 		}

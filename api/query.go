@@ -21,11 +21,7 @@ func decodeQuery(query url.Values, v any) error {
 			path = []string{"units", "system"}
 		}
 		if len(query[name]) > 1 || !put(object, path, queryValue(typeAt(reflect.TypeOf(v).Elem(), path), query[name][0])) {
-			pointer := "#"
-			for _, part := range path {
-				pointer += "/" + escapePointer(part)
-			}
-			faults = append(faults, MemberError{Pointer: pointer, Code: "duplicate_member", Detail: "the parameter comes twice; once is allowed"})
+			faults = append(faults, MemberError{Pointer: pointerTo(path), Code: "duplicate_member", Detail: "the parameter comes twice; once is allowed"})
 		}
 	}
 	if len(faults) > 0 {

@@ -3,6 +3,7 @@ package api
 import (
 	"errors"
 	"reflect"
+	"slices"
 	"strings"
 	"sync"
 
@@ -67,11 +68,6 @@ func explain(f validator.FieldError) (code, detail string) {
 // validatorPointer turns "request.~.points[3].id" into "#/points/3/id".
 func validatorPointer(namespace string) string {
 	_, path, _ := strings.Cut(namespace, ".") // the type's name
-	pointer := "#"
-	for part := range strings.SplitSeq(strings.NewReplacer("[", ".", "]", "").Replace(path), ".") {
-		if part != embedded {
-			pointer += "/" + escapePointer(part)
-		}
-	}
-	return pointer
+	parts := strings.Split(strings.NewReplacer("[", ".", "]", "").Replace(path), ".")
+	return pointerTo(slices.DeleteFunc(parts, func(part string) bool { return part == embedded }))
 }
