@@ -126,7 +126,7 @@ func (d *dome) value(y Property, x float64) float64 {
 	return a + x*(b-a)
 }
 
-// at returns the state at quality x. The ends are the saturated phases themselves, with all their properties.
+// domeState returns the state at quality x. The ends are the saturated phases themselves, with all their properties.
 func (r *Refrigerant) domeState(d *dome, x float64) State {
 	switch x {
 	case 0:

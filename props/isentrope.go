@@ -262,7 +262,7 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 	if worst > 1e-7 {
 		return &ConditionError{Refrigerant: r.rec.ID, Pair: [2]Property{Enthalpy, InternalEnergy}, Property: Pressure, Uncertainty: worst}
 	}
-	if count == 0 {
+	if count == 0 && !(lowest <= u && u <= highest) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: InternalEnergy, Value: u, Min: lowest, Max: highest, Limit: LimitAttainable}
 	}
 	return nil

@@ -17,6 +17,42 @@ func (r *Refrigerant) PressureInternalEnergy(p, u float64) (State, error) {
 	return r.isobar(p, InternalEnergy, u)
 }
 
+// PressureEnthalpyNear is [Refrigerant.PressureEnthalpy] with a start: the temperature and density of a state that is
+// not far. A good start saves half the time; a bad one costs some and changes nothing.
+func (r *Refrigerant) PressureEnthalpyNear(p, h float64, start State) (State, error) {
+	return r.isobarNear(p, Enthalpy, h, start)
+}
+
+// PressureEntropyNear is [Refrigerant.PressureEntropy] with a start, like [Refrigerant.PressureEnthalpyNear].
+func (r *Refrigerant) PressureEntropyNear(p, s float64, start State) (State, error) {
+	return r.isobarNear(p, Entropy, s, start)
+}
+
+func (r *Refrigerant) isobarNear(p float64, y Property, v float64, start State) (State, error) {
+	if r.checkPressure(p) == nil {
+		if f, ok := r.newton2(p, y, v, start.T, start.Rho); ok && r.clearOfDome(f, p, 1e-8) {
+			s := r.state(f, p)
+			if r.check(s) == nil {
+				return s, nil
+			}
+		}
+	}
+	return r.isobar(p, y, v)
+}
+
+// clearOfDome reports whether a solution of the equation at pressure p is the single phase that is stable there. Many
+// equations have false roots inside the dome, at pressures far above the critical one too. At the very edge, within a
+// fraction edge of the vapour pressure, it says no.
+func (r *Refrigerant) clearOfDome(f fluidState, p, edge float64) bool {
+	c := r.curve
+	if f.T >= c.TCritical {
+		return true
+	}
+	ps, liquid, vapour := c.At(f.T)
+	const rounding = 1e-9
+	return p > ps*(1+edge) && f.rho >= liquid*r.M*(1-rounding) || p < ps*(1-edge) && f.rho <= vapour*r.M*(1+rounding)
+}
+
 // isobar returns the state at pressure p with the caloric property y equal to v. Along an isobar all three rise with
 // temperature.
 func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
@@ -48,7 +84,7 @@ func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
 		start = f
 	}
 	f, ok := r.newton2(p, y, v, start.T, start.rho)
-	if !ok || !(lo*(1-1e-9) <= f.T && f.T <= hi*(1+1e-9)) || !r.onSide(f, side) {
+	if !ok || !(lo*(1-1e-9) <= f.T && f.T <= hi*(1+1e-9)) || !r.onSide(f, side) || !r.clearOfDome(f, p, -1e-8) {
 		var err error
 		if f, err = r.searchIsobar(p, y, v, lo, hi, side); err != nil {
 			return State{}, err

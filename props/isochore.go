@@ -94,7 +94,15 @@ func (r *Refrigerant) pressureDensity(p, rho float64, found func(State)) error {
 			found(s)
 		}
 	})
-	if n == 0 && !(lowest <= rho && rho <= highest) {
+	if n > 0 {
+		return nil
+	}
+	for _, T := range []float64{l.TemperatureMin, l.TemperatureMax} { // the other side of the dome counts too
+		if f, err := r.singlePhase(T, p, AnyPhase); err == nil {
+			highest, lowest = math.Max(highest, f.rho), math.Min(lowest, f.rho)
+		}
+	}
+	if !(lowest <= rho && rho <= highest) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: lowest, Max: highest, Limit: LimitAttainable}
 	}
 	return nil

@@ -45,8 +45,8 @@ func (r *Refrigerant) TemperatureQuality(T, x float64) (State, error) {
 	if err := r.checkQuality(x); err != nil {
 		return State{}, err
 	}
-	d := r.domeAt(T)
-	return r.domeState(&d, x), nil
+	p, liquid, vapour := r.curve.At(T)
+	return r.onDome(T, p, liquid*r.M, vapour*r.M, x), nil
 }
 
 // PressureQuality returns the state inside the dome at p in Pa and quality x from 0 to 1.
@@ -57,8 +57,27 @@ func (r *Refrigerant) PressureQuality(p, x float64) (State, error) {
 	if err := r.checkQuality(x); err != nil {
 		return State{}, err
 	}
-	d := r.domeAtPressure(p)
-	return r.domeState(&d, x), nil
+	T := r.curve.Temperature(p)
+	_, liquid, vapour := r.curve.At(T)
+	return r.onDome(T, p, liquid*r.M, vapour*r.M, x), nil
+}
+
+// onDome returns the state at quality x from the temperature, pressure and densities of the saturated phases. At the
+// ends it evaluates one phase only.
+func (r *Refrigerant) onDome(T, p, liquid, vapour, x float64) State {
+	if x > 0 && x < 1 {
+		d := r.domeOf(T, p, liquid, vapour)
+		return r.domeState(&d, x)
+	}
+	phase, rho := Liquid, liquid
+	if x == 1 {
+		phase, rho = Vapour, vapour
+	}
+	var iso helmholtz.Isotherm
+	iso.Set(r.eq, T)
+	s := r.state(r.evaluate(&iso, rho), p)
+	s.Phase, s.Quality = phase, x
+	return s
 }
 
 func (r *Refrigerant) checkQuality(x float64) error {

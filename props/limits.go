@@ -1,6 +1,9 @@
 package props
 
-import "math"
+import (
+	"errors"
+	"math"
+)
 
 // What sets a limit, as [RangeError] names it.
 const (
@@ -67,13 +70,17 @@ func (r *Refrigerant) check(s State) error {
 	if T > l.TemperatureMax && T < l.TemperatureMax*(1+slack) {
 		T = l.TemperatureMax
 	}
-	if err := r.checkTemperature(T); err != nil {
-		return err
+	err := r.checkTemperature(T)
+	if err == nil {
+		err = r.checkPressure(p / (1 + slack))
 	}
-	if err := r.checkPressure(p / (1 + slack)); err != nil {
-		return err
+	if err == nil {
+		err = r.checkFluid(T, p/(1+slack), s.Rho/(1+slack))
 	}
-	return r.checkFluid(T, p/(1+slack), s.Rho/(1+slack))
+	if e, ok := errors.AsType[*RangeError](err); ok {
+		e.Value = pick(&s, e.Property) // as it is, without the slack
+	}
+	return err
 }
 
 // Extrapolated reports whether s lies outside the validity of the equation.
