@@ -160,7 +160,7 @@ func (b *Blend) Envelope(n int) ([]State, error) {
 		for i := range half {
 			// Closer steps towards the critical point, where pictures of the envelope bend most.
 			r := float64(i+1) / float64(half)
-			a, ok := s.saturatedAtSpread(b.d, s.iso, end*r*r)
+			a, ok := s.saturatedAtSpread(end * r * r)
 			if !ok {
 				return nil, s.stuck(constraint{Temperature, a.T}, constraint{Pressure, a.p})
 			}

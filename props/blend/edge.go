@@ -33,7 +33,7 @@ const (
 type solver struct {
 	m            *mixture
 	b            *Blend // the view that uses the solver; nil while the envelope is being made
-	d            *dome  // likewise
+	d            *dome  // the envelope; without lines while it is being made
 	reach        Limits // per mole, of the view that uses the solver
 	k            *kernel
 	iso          *isotherm

@@ -27,9 +27,20 @@ type node struct {
 	v, dv []float64
 }
 
-func (a *node) lnT() float64   { return a.v[len(a.v)-2] }
-func (a *node) lnP() float64   { return a.v[len(a.v)-1] }
-func (a *node) lnRho() float64 { return a.v[len(a.v)-3] }
+// coordinate is a value of a node, counted from the end of v.
+type coordinate int
+
+const (
+	lnPOfNode   coordinate = 1
+	lnTOfNode   coordinate = 2
+	lnRhoOfNode coordinate = 3
+)
+
+func (c coordinate) in(v []float64) float64 { return v[len(v)-int(c)] }
+
+func (a *node) lnT() float64   { return lnTOfNode.in(a.v) }
+func (a *node) lnP() float64   { return lnPOfNode.in(a.v) }
+func (a *node) lnRho() float64 { return lnRhoOfNode.in(a.v) }
 
 func (a *node) point() edgePoint {
 	return edgePoint{a.S, math.Exp(a.lnT()), math.Exp(a.lnP()), math.Exp(a.lnRho())}
@@ -97,7 +108,7 @@ func (s *solver) trace(a node, h float64, done func(*node) bool) ([]node, bool) 
 			err = math.Max(err, math.Abs(guess[i]-u[i]))
 		}
 		// The bulk thins out all the way; where it does not, the curve is another one, between two liquids.
-		if !ok || err > 50*predictorGoal || next.dv[len(next.dv)-3] >= 0 {
+		if !ok || err > 50*predictorGoal || lnRhoOfNode.in(next.dv) >= 0 {
 			if h /= 3; math.Abs(h) < shortestStep {
 				return nodes, false
 			}
@@ -163,23 +174,20 @@ func (s *solver) newEnvelope(Tmin float64) (*envelope, error) {
 	if err := s.findCritical(e); err != nil {
 		return nil, err
 	}
-	lnT := func(a *node) (float64, float64) { return a.lnT(), a.dv[len(a.dv)-2] }
-	lnP := func(a *node) (float64, float64) { return a.lnP(), a.dv[len(a.dv)-1] }
-	if e.topT, ok = s.top(e, lnT); !ok {
+	if e.topT, ok = s.top(e, lnTOfNode); !ok {
 		return nil, fail(e.topT.T, "temperature has more than one maximum along it")
 	}
-	if e.topP, ok = s.top(e, lnP); !ok {
+	if e.topP, ok = s.top(e, lnPOfNode); !ok {
 		return nil, fail(e.topP.T, "pressure has more than one maximum along it")
 	}
 	return e, nil
 }
 
-// top finds the maximum along the curve of what get returns with its derivative, and reports whether there is just one.
-func (s *solver) top(e *envelope, get func(*node) (v, dv float64)) (edgePoint, bool) {
+// top finds the maximum of a coordinate along the curve, and reports whether there is just one.
+func (s *solver) top(e *envelope, of coordinate) (edgePoint, bool) {
 	at := -1
 	for i := range e.nodes[1:] {
-		_, a := get(&e.nodes[i])
-		_, b := get(&e.nodes[i+1])
+		a, b := of.in(e.nodes[i].dv), of.in(e.nodes[i+1].dv)
 		if a > 0 && b <= 0 && at < 0 {
 			at = i
 		} else if (a > 0) != (b > 0) {
@@ -192,11 +200,10 @@ func (s *solver) top(e *envelope, get func(*node) (v, dv float64)) (edgePoint, b
 	lo, hi := e.nodes[at], e.nodes[at+1]
 	u := make([]float64, len(lo.v))
 	for range 60 {
-		_, a := get(&lo)
-		_, b := get(&hi)
+		a, b := of.in(lo.dv), of.in(hi.dv)
 		S := lo.S - a*(hi.S-lo.S)/(b-a)
 		if math.Abs(S) < gap {
-			return e.topNearCritical(lo.S, hi.S, get), true
+			return e.topNearCritical(lo.S, hi.S, of), true
 		}
 		if hi.S-lo.S < 1e-6 {
 			e.interpolate(S, u)
@@ -209,7 +216,7 @@ func (s *solver) top(e *envelope, get func(*node) (v, dv float64)) (edgePoint, b
 		if !ok {
 			return edgePoint{S: S}, false
 		}
-		if _, d := get(&mid); d > 0 {
+		if of.in(mid.dv) > 0 {
 			lo = mid
 		} else {
 			hi = mid
@@ -218,14 +225,13 @@ func (s *solver) top(e *envelope, get func(*node) (v, dv float64)) (edgePoint, b
 	return lo.point(), true
 }
 
-// topNearCritical finds the maximum of what get returns in the gap.
-func (e *envelope) topNearCritical(lo, hi float64, get func(*node) (v, dv float64)) edgePoint {
-	n := node{v: make([]float64, len(e.criticalValues)), dv: make([]float64, len(e.criticalValues))}
+// topNearCritical finds the maximum of a coordinate in the gap.
+func (e *envelope) topNearCritical(lo, hi float64, of coordinate) edgePoint {
+	n := node{v: make([]float64, len(e.criticalValues))}
 	at := func(S float64) float64 {
 		n.S = S
 		e.nearCritical(S, n.v)
-		v, _ := get(&n)
-		return v
+		return of.in(n.v)
 	}
 	lo, hi = max(lo, -gap), min(hi, gap)
 	const golden = 0.6180339887498949

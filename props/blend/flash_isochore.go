@@ -28,10 +28,10 @@ func (s *solver) edgeAtRho(rho float64) (saturated, bool) {
 		}
 	}
 	if math.Abs(S) < gap {
-		return s.interpolated(d, s.iso, S), true
+		return s.interpolated(S), true
 	}
 	ok := s.solveEdge(edge(v[:n+2]), fixedRho, target, true) && math.Abs(math.Log(s.inc.rho/s.bulk.rho)-S) < 0.1
-	return s.finish(s.iso), ok
+	return s.finish(s.edgePressure()), ok
 }
 
 // isochore returns the state at molar volume v with a given enthalpy, entropy or internal energy. Along an isochore all of

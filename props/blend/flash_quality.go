@@ -135,7 +135,7 @@ func (s *solver) qualityLine(q float64, of Property, value float64) ([]result, e
 		return nil, err
 	}
 	grid, at := s.spreads(q), func(S float64) (result, bool) {
-		a, ok := s.saturatedAtSpread(s.d, s.iso, S)
+		a, ok := s.saturatedAtSpread(S)
 		r := a.result()
 		r.quality = q // at the critical point both phases are one
 		return r, ok

@@ -140,7 +140,7 @@ func (s *solver) edgeAtT(T float64, sd side) (saturated, bool) {
 	if l := s.d.lines[sd]; T <= l.hi.T {
 		return l.saturated(T), true
 	}
-	return s.saturatedAtT(s.d, s.iso, T, sd)
+	return s.saturatedAtT(T, sd)
 }
 
 // edgeAtP returns the point of a side of the envelope at p.
@@ -150,7 +150,7 @@ func (s *solver) edgeAtP(p float64, sd side) (saturated, bool) {
 		a.p, a.bulk.p = p, p
 		return a, true
 	}
-	return s.saturatedAtP(s.d, s.iso, p, sd)
+	return s.saturatedAtP(p, sd)
 }
 
 // edgesAtT returns both points of the envelope at T.

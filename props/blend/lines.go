@@ -49,7 +49,7 @@ const (
 	lineClearance = 0.3   // in S, to the highest temperature and pressure
 )
 
-// newLine expands the edge from Tmin to the spread S. sample solves the edge at a temperature and returns the fields.
+// newLine expands a line between two temperatures. sample solves it at a temperature and returns the fields.
 func newLine(n int, Tmin, Tmax float64, sample func(T float64) ([]float64, bool)) (*line, bool) {
 	l := &line{n: n}
 	if !l.add(Tmin, Tmax, sample) {

@@ -17,7 +17,7 @@ func (s *solver) boundaryAt(T float64, sd side) (boundary, bool) {
 		l.at(T, v[:])
 		return boundary{math.Exp(v[lineLnP]), math.Exp(v[lineLnRho]), v[lineDPDRho]}, true
 	}
-	a, ok := s.saturatedAtT(s.d, s.iso, T, sd)
+	a, ok := s.saturatedAtT(T, sd)
 	return boundary{a.p, a.bulk.rho, a.bulk.dpdrho}, ok
 }
 

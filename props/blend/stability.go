@@ -137,10 +137,10 @@ func (s *solver) trialDensity(ph *phase, p float64) bool {
 // stableFrom returns the lowest temperature, not below Tmin, from which on the envelope is stable: where the saturated bulk
 // does not split into anything but the incipient phase that it is in equilibrium with. In a cold liquid the model may have
 // a second one. It tests the given number of places between Tmin and the critical point.
-func (s *solver) stableFrom(d *dome, Tmin float64, places int) (float64, error) {
+func (s *solver) stableFrom(Tmin float64, places int) (float64, error) {
 	splits := func(T float64) bool {
 		for _, sd := range []side{dense, light} {
-			a, ok := s.saturatedAtT(d, s.iso, T, sd)
+			a, ok := s.saturatedAtT(T, sd)
 			if !ok {
 				return true
 			}
@@ -150,13 +150,13 @@ func (s *solver) stableFrom(d *dome, Tmin float64, places int) (float64, error) 
 		}
 		return false
 	}
-	place := func(i int) float64 { return Tmin + 0.95*(d.critical.T-Tmin)*float64(i)/float64(max(places-1, 1)) }
+	place := func(i int) float64 { return Tmin + 0.95*(s.d.critical.T-Tmin)*float64(i)/float64(max(places-1, 1)) }
 	for i := places - 1; i >= 0; i-- {
 		if !splits(place(i)) {
 			continue
 		}
 		if places == 1 {
-			return s.stableFrom(d, Tmin, manyPlaces)
+			return s.stableFrom(Tmin, manyPlaces)
 		}
 		if i == places-1 {
 			return 0, &EnvelopeError{Refrigerant: s.m.designation, T: place(i), Reason: "the model has a second liquid there"}

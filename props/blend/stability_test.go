@@ -14,7 +14,7 @@ func TestListedBlendsStable(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		T, err := newSolver(b.mixture).stableFrom(b.d, b.d.min[dense].T, manyPlaces)
+		T, err := b.solver().stableFrom(b.d.min[dense].T, manyPlaces)
 		if err != nil || T != b.d.min[dense].T {
 			t.Errorf("%s splits further below %g K, %v", listed.Designation, T, err)
 		}
