@@ -2,18 +2,23 @@ package blend
 
 import (
 	"math"
+	"sync"
 	"testing"
 
 	"dewmark/props/data"
 )
 
-func testLibrary(t testing.TB) *Library {
-	t.Helper()
+var loaded = sync.OnceValues(func() (*Library, error) {
 	records, err := data.Load()
 	if err != nil {
-		t.Fatal(err)
+		return nil, err
 	}
-	l, err := NewLibrary(records)
+	return NewLibrary(records)
+})
+
+func testLibrary(t testing.TB) *Library {
+	t.Helper()
+	l, err := loaded()
 	if err != nil {
 		t.Fatal(err)
 	}

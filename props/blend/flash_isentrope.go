@@ -192,12 +192,12 @@ func (s *solver) isenthalp(enthalpy, energy float64) ([]result, error) {
 	lowest, highest := math.Inf(1), math.Inf(-1)
 	worst := 0.0
 	var failure error
-	eachRoot(grid, func(lnP float64) float64 {
+	eachRoot(grid, func(lnP float64) (float64, float64) {
 		have := u(lnP)
 		if !math.IsNaN(have) {
 			lowest, highest = math.Min(lowest, have), math.Max(highest, have)
 		}
-		return have - energy
+		return have - energy, math.NaN()
 	}, func(lnP float64) {
 		r, err := s.isobar(s.pressureOf(lnP), Enthalpy, enthalpy)
 		if err != nil {

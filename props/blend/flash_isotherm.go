@@ -139,11 +139,12 @@ func (s *solver) isotherm(T float64, of Property, value float64) ([]result, erro
 	worst := 0.0
 	scan := func(lo, hi float64) {
 		s.iso.set(T)
-		eachRoot(densities(s.m.whole.Rho, lo, hi), func(rho float64) float64 {
+		eachRoot(densities(s.m.whole.Rho, lo, hi), func(rho float64) (float64, float64) {
 			q := s.iso.at(rho)
 			have := q.value(of)
+			_, slope := q.slopes(of)
 			lowest, highest = math.Min(lowest, have), math.Max(highest, have)
-			return have - value
+			return have - value, slope
 		}, func(rho float64) {
 			q := s.iso.at(rho)
 			if s.check(&q) == nil {

@@ -103,12 +103,12 @@ func (s *solver) retrograde(ends [2]tie, given, wanted constraint) ([]result, er
 	for i := range 13 {
 		grid = append(grid, 0.001+0.998*float64(i)/12)
 	}
-	eachRoot(grid, func(r float64) float64 {
+	eachRoot(grid, func(r float64) (float64, float64) {
 		o, ok := at(r)
 		if !ok {
-			return math.NaN()
+			return math.NaN(), math.NaN()
 		}
-		return o.quality - wanted.value
+		return o.quality - wanted.value, math.NaN()
 	}, func(r float64) {
 		if o, ok := at(r); ok && math.Abs(o.quality-wanted.value) < 1e-9 {
 			out = append(out, o.result())
@@ -155,14 +155,14 @@ func (s *solver) qualityLine(q float64, of Property, value float64) ([]result, e
 	}
 	lowest, highest := math.Inf(1), math.Inf(-1)
 	var out []result
-	eachRoot(grid, func(x float64) float64 {
+	eachRoot(grid, func(x float64) (float64, float64) {
 		r, ok := at(x)
 		if !ok {
-			return math.NaN()
+			return math.NaN(), math.NaN()
 		}
 		have := r.value(of)
 		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
-		return scale(have) - scale(value)
+		return scale(have) - scale(value), math.NaN()
 	}, func(x float64) {
 		if r, ok := at(x); ok {
 			out = append(out, r)
@@ -200,7 +200,7 @@ func (s *solver) temperatures() []float64 {
 		r := root * float64(i) / n
 		grid = append(grid, Tc*(1-r*r))
 	}
-	for r := root / n / 2; r > 1e-4; r /= 2 {
+	for r := root / n / 2; r > 3e-3; r /= 2 { // closer to the critical point phases are hard to tell apart
 		grid = append(grid, Tc*(1-r*r))
 	}
 	return grid

@@ -236,8 +236,8 @@ func TestRefusals(t *testing.T) {
 	l := library(t)
 	b := get(t, l, "R407C")
 	nan, inf := math.NaN(), math.Inf(1)
-	for _, v := range []float64{nan, inf, -inf, 0, -1, 1e-300, 1e300, 250, 1e6} {
-		for _, w := range []float64{nan, inf, -inf, 0, -1, 1e-300, 1e300, 250, 1e6, 0.5} {
+	for _, v := range []float64{nan, inf, -inf, 0, -1, 1e-300, 1e300, 250} {
+		for _, w := range []float64{nan, 0, -1, 1e300, 250, 1e6, 0.5} {
 			for p := blend.Property(0); p <= 9; p++ {
 				for q := blend.Property(0); q <= 9; q++ {
 					states, err := b.States(blend.Given{Property: p, Value: v}, blend.Given{Property: q, Value: w})
