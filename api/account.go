@@ -4,7 +4,10 @@ package api
 type account struct {
 	good    int
 	bad     map[string]int // by outcome
+	states  int            // shown
 	outside int            // of the good ones, those outside the validity of the equation
+
+	reservations []reservation // about transport properties, in the order of the states
 }
 
 // count enters one calculation, which p stands for when it failed.
@@ -25,7 +28,11 @@ func (a *account) count(p *Problem, outside bool) {
 // add enters all that b has.
 func (a *account) add(b *account) {
 	a.good += b.good
+	a.states += b.states
 	a.outside += b.outside
+	for _, r := range b.reservations {
+		a.reserve(r.Caution, r.states)
+	}
 	for outcome, n := range b.bad {
 		if a.bad == nil {
 			a.bad = map[string]int{}

@@ -25,6 +25,8 @@ type basis struct {
 	Datum        string `json:"datum"`
 	Extrapolated bool   `json:"extrapolated"` // some result lies outside the validity of the equation
 	Version      string `json:"version"`      // of the service
+
+	Transport []transportBasis `json:"transport,omitempty"` // of the transport properties shown
 }
 
 // caution is a reservation about a result.
@@ -98,18 +100,23 @@ func datumNames(datums []props.Datum) []string {
 
 func (j *job) caution(code, detail string) { j.cautions = append(j.cautions, caution{code, detail}) }
 
-// conclude tells what the calculations as a whole have to say.
-func (j *job) conclude(a *account) {
+// conclude tells what the calculations as a whole have to say, and what the properties shown rest on.
+func (j *job) conclude(a *account, shown *selection) {
 	if a.outside > 0 {
 		j.basis.Extrapolated = true
-		j.caution("extrapolated", fmt.Sprintf("%d of %d states lie outside the validity of the equation of state and are marked; their uncertainty is not known", a.outside, a.good))
+		j.caution("extrapolated", fmt.Sprintf("%d of %d states lie outside the validity of the equation of state and are marked; their uncertainty is not known", a.outside, a.states))
+	}
+	j.basis.Transport = transportBases(j.r, shown)
+	for i := range a.reservations {
+		j.cautions = append(j.cautions, a.reservations[i].say(j.units, a.states))
 	}
 }
 
-// view returns a state in the caller's units.
-func (j *job) view(s props.State, shown *selection) stateView {
-	w := worker{job: j, shown: shown}
+// view returns a state in the caller's units and enters what is to be said of it.
+func (j *job) view(s props.State, shown *selection, into *account) stateView {
+	w := newWorker(j, shown)
 	w.show(s)
+	into.add(&w.account)
 	return w.view
 }
 

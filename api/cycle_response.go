@@ -168,13 +168,14 @@ func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
 		if len(upper) > 0 && at.Refrigerant == cycle.Refrigerant(upper[0].r) {
 			of = upper[0]
 		}
-		v := of.view(at.State, everything)
+		v := of.view(at.State, everything, &all)
 		all.count(nil, v.extrapolated)
 		resp.States = append(resp.States, cycleState{at.Label, at.Place, of.basis.Refrigerant, u.out(kindMassFlow, at.MassFlow), v})
 	}
-	j.conclude(&all)
+	j.conclude(&all, everything)
 	if len(upper) > 0 {
 		upper[0].basis.Extrapolated = j.basis.Extrapolated
+		upper[0].basis.Transport = transportBases(upper[0].r, everything)
 		resp.UpperBasis = &upper[0].basis
 		j.cautions = append(j.cautions, upper[0].cautions...)
 	}

@@ -13,6 +13,7 @@ import (
 type worker struct {
 	*job
 	shown  *selection
+	stream bool      // nothing follows the states
 	solved solved    // the last state
 	view   stateView // of it
 	account
@@ -41,7 +42,24 @@ func (w *worker) item(b []byte, p *point, at place) []byte {
 		o.text("id", p.ID)
 	}
 	w.view.write(&o)
+	if w.stream {
+		w.remark(&o)
+	}
 	return o.end()
+}
+
+// remark writes the reservations about a state beside it: a stream has no place for them behind its states.
+func (w *worker) remark(o *object) {
+	var cautions []caution
+	for i := range w.reservations {
+		cautions = append(cautions, w.reservations[i].say(w.units, 1))
+	}
+	w.reservations = w.reservations[:0]
+	if len(cautions) > 0 {
+		if err := o.value("cautions", cautions); err != nil {
+			panic("api: " + err.Error()) // cautions are text
+		}
+	}
 }
 
 // failedItem writes what stands in the place of a point that has no state.
@@ -92,7 +110,14 @@ func (w *worker) try(p *point, at place) *Problem {
 
 // show leaves s in the view.
 func (w *worker) show(s props.State) {
+	w.states++
 	w.solved.surround(w.r, s, w.shown)
+	if w.shown.transport {
+		w.solved.transport = w.transported(s)
+	}
+	if w.shown.derived {
+		w.solved.derived = w.r.Derived(s)
+	}
 	w.view.fill(&w.solved, w.units, w.shown)
 	w.view.extrapolated = w.extrapolate && w.r.Extrapolated(s)
 }

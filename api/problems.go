@@ -318,10 +318,9 @@ func (v voice) eachGiven(code, detail string) []MemberError {
 
 func (v voice) views(states []props.State) []stateView {
 	views := make([]stateView, len(states))
+	j := &job{r: v.r, units: v.units}
 	for i, s := range states {
-		var around solved
-		around.surround(v.r, s, everything)
-		views[i].fill(&around, v.units, everything)
+		views[i] = j.view(s, everything, &account{})
 	}
 	return views
 }

@@ -58,6 +58,7 @@ type refrigerantDetail struct {
 	Notes                  string            `json:"notes"`
 	Provenance             provenance        `json:"provenance"`
 	Model                  model             `json:"model"`
+	Transport              []transportModel  `json:"transport"`
 	Units                  map[string]string `json:"units"`
 	Cautions               []caution         `json:"cautions"`
 }
@@ -176,7 +177,7 @@ func (a *API) describeRefrigerant(c *gin.Context) (any, error) {
 		LowerFlammabilityLimit: concentration(class.LowerFlammabilityLimit), ToxicityLimit: concentration(class.ToxicityLimit),
 		PracticalLimit: concentration(class.PracticalLimit), ConcentrationLimit: concentration(class.ConcentrationLimit),
 		TypicalUse: class.TypicalUse, Notes: class.Notes, Provenance: provenance(class.Provenance),
-		Model:    model{modelKind, rec.Source, rec.Notes, rec.Verification},
+		Model: model{modelKind, rec.Source, rec.Notes, rec.Verification}, Transport: transportModels(r, u),
 		Units:    u.names(kindTemperature, kindPressure, kindDensity, kindMolarMass),
 		Cautions: []caution{safetyCaution},
 	}

@@ -78,10 +78,11 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 		if i%chunkSize == 0 && c.Request.Context().Err() != nil {
 			return nil, c.Request.Context().Err() // nobody waits for the answer
 		}
-		rows[i] = j.row(p, shown)
+		rows[i] = j.row(p, shown, &all)
 		all.count(rows[i].Problem, false)
 	}
 	a.metrics.calculated("saturation", &all)
+	j.conclude(&all, shown)
 	kinds := append(shown.kinds(), kindTemperature, kindPressure, kindTemperatureDifference, kindEnthalpy)
 	if accepted(c) == mediaCSV {
 		if err := j.announce(c, kinds); err != nil {
@@ -157,7 +158,7 @@ func (r *saturationRange) points(limit int) ([]saturationPoint, error) {
 }
 
 // row computes both ends of the dome at one temperature or pressure.
-func (j *job) row(p saturationPoint, shown *selection) saturationRow {
+func (j *job) row(p saturationPoint, shown *selection, into *account) saturationRow {
 	g := given{member: "temperature", kind: kindTemperature, number: p.number, Given: props.Given{Property: p.property}}
 	bubbleAt, dewAt := j.r.BubblePoint, j.r.DewPoint
 	row := saturationRow{Temperature: &p.number}
@@ -171,7 +172,7 @@ func (j *job) row(p saturationPoint, shown *selection) saturationRow {
 	if err == nil {
 		var dew props.State
 		if dew, err = dewAt(g.Value); err == nil {
-			return j.saturated(row, g, bubble, dew, shown)
+			return j.saturated(row, g, bubble, dew, shown, into)
 		}
 	}
 	row.Problem = voice{units: j.units, at: p.pointer, given: []given{g}, r: j.r}.problem(err)
@@ -179,9 +180,9 @@ func (j *job) row(p saturationPoint, shown *selection) saturationRow {
 }
 
 // saturated fills a row.
-func (j *job) saturated(row saturationRow, g given, bubble, dew props.State, shown *selection) saturationRow {
+func (j *job) saturated(row saturationRow, g given, bubble, dew props.State, shown *selection, into *account) saturationRow {
 	u := j.units
-	bubbleView, dewView := j.view(bubble, shown), j.view(dew, shown)
+	bubbleView, dewView := j.view(bubble, shown, into), j.view(dew, shown, into)
 	for _, v := range []*stateView{&bubbleView, &dewView} {
 		v.echo(g.member, g.number)
 	}

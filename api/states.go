@@ -73,7 +73,7 @@ func (a *API) states(c *gin.Context) (any, error) {
 	}
 	resp.failed = all.failed()
 	a.metrics.calculated("state", &all)
-	j.conclude(&all)
+	j.conclude(&all, shown)
 	return resp, nil
 }
 
@@ -100,7 +100,7 @@ func (a *API) singleState(c *gin.Context) (any, error) {
 	if problem != nil {
 		return nil, problem
 	}
-	j.conclude(&w.account)
+	j.conclude(&w.account, shown)
 	return &singleStateResponse{job: j, kinds: shown.kinds(), state: &w.view}, nil
 }
 

@@ -63,6 +63,7 @@ func (a *API) streamStates(c *gin.Context) error {
 	if err != nil {
 		return err
 	}
+	j.basis.Transport = transportBases(j.r, shown)
 	if err := j.announce(c, shown.kinds()); err != nil {
 		return err
 	}
@@ -72,6 +73,7 @@ func (a *API) streamStates(c *gin.Context) error {
 	c.Status(http.StatusOK)
 
 	w := newWorker(j, shown)
+	w.stream = true
 	defer func() { a.metrics.calculated("state", &w.account) }()
 	out := bufio.NewWriterSize(c.Writer, maxLine)
 	var buffer []byte

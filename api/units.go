@@ -27,6 +27,8 @@ const (
 	kindJouleThomson
 	kindCompressibility
 	kindExpansivity
+	kindDensityByEnthalpy
+	kindDensityByPressure
 	kindViscosity
 	kindThermalConductivity
 	kindSurfaceTension
@@ -141,6 +143,17 @@ var quantities = [kindCount]quantity{
 	}},
 	kindExpansivity: {"expansivity", "K-1", "[degR]-1", []unit{
 		{code: "K-1", scale: 1}, {code: "[degR]-1", scale: 1 / rankine}, {code: "[degF]-1", scale: 1 / rankine},
+	}},
+	kindDensityByEnthalpy: {"density_by_enthalpy", "kg2/(m3.kJ)", "[lb_av]2/([ft_i]3.[Btu_IT])", []unit{
+		{code: "kg2/(m3.J)", scale: 1},
+		{code: "kg2/(m3.kJ)", scale: 1e-3},
+		{code: "[lb_av]2/([ft_i]3.[Btu_IT])", scale: poundMass * poundMass / (foot * foot * foot * btu)},
+	}},
+	kindDensityByPressure: {"density_by_pressure", "kg/(m3.kPa)", "[lb_av]/([ft_i]3.[psi])", []unit{
+		{code: "kg/(m3.Pa)", scale: 1},
+		{code: "kg/(m3.kPa)", scale: 1e-3},
+		{code: "kg/(m3.bar)", scale: 1e-5},
+		{code: "[lb_av]/([ft_i]3.[psi])", scale: poundMass / (foot * foot * foot * psi)},
 	}},
 	kindViscosity: {"viscosity", "uPa.s", "[lb_av]/([ft_i].h)", []unit{
 		{code: "Pa.s", scale: 1},

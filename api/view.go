@@ -2,10 +2,12 @@ package api
 
 import (
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
 	"dewmark/props"
+	"dewmark/props/transport"
 )
 
 // solved is a state with what its surroundings say about it.
@@ -13,12 +15,20 @@ type solved struct {
 	props.State
 	bubble, dew           float64 // K, saturation temperatures at its pressure; NaN where there are none
 	superheat, subcooling float64 // K; NaN in the wrong phase
+	transport             props.Transport
+	derived               props.Derived
+}
+
+// noTransport stands where transport properties are not wanted.
+var noTransport = props.Transport{
+	Viscosity: transport.Value{Value: math.NaN()}, ThermalConductivity: transport.Value{Value: math.NaN()},
+	SurfaceTension: transport.Value{Value: math.NaN()}, Prandtl: math.NaN(),
 }
 
 // surround makes s the state, with the saturation at its pressure when it is wanted.
 func (around *solved) surround(r *props.Refrigerant, s props.State, wanted *selection) {
 	nan := math.NaN()
-	*around = solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan}
+	*around = solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan, transport: noTransport}
 	if !wanted.saturation {
 		return
 	}
@@ -68,32 +78,36 @@ var stateFields = [...]stateField{
 	{"joule_thomson_coefficient", kindJouleThomson, func(s *solved) float64 { return s.JouleThomson() }},
 	{"isothermal_compressibility", kindCompressibility, func(s *solved) float64 { return s.IsothermalCompressibility() }},
 	{"volume_expansivity", kindExpansivity, func(s *solved) float64 { return s.Expansivity() }},
-	{"viscosity", kindViscosity, notYet},
-	{"thermal_conductivity", kindThermalConductivity, notYet},
-	{"prandtl_number", kindNone, notYet},
-	{"surface_tension", kindSurfaceTension, notYet},
+	{"viscosity", kindViscosity, func(s *solved) float64 { return s.transport.Viscosity.Value }},
+	{"thermal_conductivity", kindThermalConductivity, func(s *solved) float64 { return s.transport.ThermalConductivity.Value }},
+	{"prandtl_number", kindNone, func(s *solved) float64 { return s.transport.Prandtl }},
+	{"surface_tension", kindSurfaceTension, func(s *solved) float64 { return s.transport.SurfaceTension.Value }},
 	{"dew_temperature", kindTemperature, func(s *solved) float64 { return s.dew }},
 	{"bubble_temperature", kindTemperature, func(s *solved) float64 { return s.bubble }},
 	{"superheat", kindTemperatureDifference, func(s *solved) float64 { return s.superheat }},
 	{"subcooling", kindTemperatureDifference, func(s *solved) float64 { return s.subcooling }},
+	// Only for those who ask:
+	{"density_by_enthalpy", kindDensityByEnthalpy, func(s *solved) float64 { return s.derived.DensityByEnthalpy }},
+	{"density_by_pressure", kindDensityByPressure, func(s *solved) float64 { return s.derived.DensityByPressure }},
+	{"fundamental_derivative", kindNone, func(s *solved) float64 { return s.derived.Fundamental }},
 }
 
-// notYet stands for the transport properties, which no model computes so far.
-func notYet(*solved) float64 { return math.NaN() }
-
-// firstSaturationField is the first of the fields that the saturation around a state decides; the rest follow it.
-var firstSaturationField = fieldNamed("dew_temperature")
+// The fields that need more than the state itself: transport properties, then what the saturation around the state
+// decides, then derivatives, which are shown only when a request names them.
+var firstTransportField, firstSaturationField, firstDerivedField = fieldNamed("viscosity"), fieldNamed("dew_temperature"), fieldNamed("density_by_enthalpy")
 
 // selection is what a request wants to see of a state besides its phase.
 type selection struct {
 	saturation bool  // some field needs the saturation around the state
+	transport  bool  // some field is a transport property
+	derived    bool  // some field is a derivative
 	fields     []int // of stateFields, rising
 }
 
-// everything selects all members.
+// everything selects all members but the derivatives.
 var everything = func() *selection {
-	s := &selection{saturation: true}
-	for i := 1; i < len(stateFields); i++ {
+	s := &selection{saturation: true, transport: true}
+	for i := 1; i < firstDerivedField; i++ {
 		s.fields = append(s.fields, i)
 	}
 	return s
@@ -121,11 +135,16 @@ func selectFields(names []string) (*selection, error) {
 	for i, yes := range wanted {
 		if yes {
 			s.fields = append(s.fields, i)
-			s.saturation = s.saturation || i >= firstSaturationField
+			s.derived = s.derived || i >= firstDerivedField
+			s.saturation = s.saturation || i >= firstSaturationField && i < firstDerivedField
+			s.transport = s.transport || i >= firstTransportField && i < firstSaturationField
 		}
 	}
 	return s, invalid(faults)
 }
+
+// has reports whether the selection shows the member with that name.
+func (s *selection) has(name string) bool { return slices.Contains(s.fields, fieldNamed(name)) }
 
 func fieldNamed(name string) int {
 	for i := range stateFields {
@@ -138,8 +157,8 @@ func fieldNamed(name string) int {
 
 func selectable() []string {
 	var names []string
-	for _, i := range everything.fields {
-		names = append(names, stateFields[i].name)
+	for _, f := range stateFields[1:] {
+		names = append(names, f.name)
 	}
 	return names
 }
