@@ -65,7 +65,7 @@ func (m *mixture) dome() (*dome, error) {
 
 // solver returns a solver of this view; release gives it back.
 func (b *Blend) solver() *solver {
-	s := b.solvers.Get().(*solver) //nolint:errcheck // the pool holds nothing else
+	s := b.solvers.Get().(*solver)
 	s.b, s.d, s.reach = b, b.d, b.limits
 	if b.extrapolate {
 		s.reach = b.limits.extrapolated()

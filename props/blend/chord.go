@@ -140,7 +140,8 @@ func (c *chord) aim(of Property, value float64, u split) float64 {
 	lo, hi := 0.0, 1.0
 	flo, fhi := c.look(lo, of)-value, c.look(hi, of)-value
 	r := 0.5
-	if (flo < 0) != (fhi < 0) {
+	switch {
+	case (flo < 0) != (fhi < 0):
 		for i := range 25 {
 			r = lo - flo*(hi-lo)/(fhi-flo)
 			if i%3 == 2 || !(lo < r && r < hi) {
@@ -156,9 +157,9 @@ func (c *chord) aim(of Property, value float64, u split) float64 {
 				break
 			}
 		}
-	} else if math.Abs(flo) < math.Abs(fhi) {
+	case math.Abs(flo) < math.Abs(fhi):
 		r = 0
-	} else {
+	default:
 		r = 1
 	}
 	c.look(r, of)

@@ -65,8 +65,10 @@ type kernel struct {
 
 func newKernel(m *model) *kernel {
 	n := len(m.R)
-	k := &kernel{m: m, red: newReduction(n), iso: make([]helmholtz.Isotherm, n+len(m.departures)),
-		a: make([]helmholtz.Alpha, n), first: make([]helmholtz.Alpha, n), cross: make([]float64, n*n)}
+	k := &kernel{
+		m: m, red: newReduction(n), iso: make([]helmholtz.Isotherm, n+len(m.departures)),
+		a: make([]helmholtz.Alpha, n), first: make([]helmholtz.Alpha, n), cross: make([]float64, n*n),
+	}
 	v := make([]float64, 7*n)
 	cut := func() []float64 { c := v[:n:n]; v = v[n:]; return c }
 	k.alphaC, k.alphaT, k.exT, k.exD, k.ex, k.idealA, k.idealT = cut(), cut(), cut(), cut(), cut(), cut(), cut()

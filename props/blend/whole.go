@@ -3,6 +3,7 @@ package blend
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"dewmark/props/helmholtz"
 )
@@ -97,7 +98,7 @@ func scaled(r *helmholtz.Residual, c float64) helmholtz.Residual {
 
 // joined returns the terms of a and b together.
 func joined(a, b *helmholtz.Residual) helmholtz.Residual {
-	rows := func(p, q [][]float64) [][]float64 { return append(p[:len(p):len(p)], q...) }
+	rows := func(p, q [][]float64) [][]float64 { return append(slices.Clip(p), q...) }
 	return helmholtz.Residual{
 		Polynomial: rows(a.Polynomial, b.Polynomial), Exponential: rows(a.Exponential, b.Exponential),
 		DoubleExponential: rows(a.DoubleExponential, b.DoubleExponential), Gaussian: rows(a.Gaussian, b.Gaussian),

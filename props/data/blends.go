@@ -4,6 +4,7 @@ import (
 	"bytes"
 	_ "embed" // the pair and blend files
 	"encoding/json"
+	"errors"
 	"fmt"
 	"math"
 )
@@ -71,10 +72,10 @@ func DecodeBlends(b []byte) ([]Blend, error) {
 
 func (d *Blend) check() error {
 	if d.Designation == "" || d.Source == "" {
-		return fmt.Errorf("designation and source must not be empty")
+		return errors.New("designation and source must not be empty")
 	}
 	if len(d.Components) < 2 {
-		return fmt.Errorf("a blend needs two components at least")
+		return errors.New("a blend needs two components at least")
 	}
 	seen := map[string]bool{}
 	var sum float64
@@ -99,7 +100,7 @@ func (d *Blend) check() error {
 		}
 	}
 	if !(d.Computed.MolarMass > 0) {
-		return fmt.Errorf("computed molar mass must be positive")
+		return errors.New("computed molar mass must be positive")
 	}
 	return nil
 }

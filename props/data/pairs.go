@@ -4,6 +4,7 @@ import (
 	"bytes"
 	_ "embed" // the pair and blend files
 	"encoding/json"
+	"errors"
 	"fmt"
 	"math"
 
@@ -112,7 +113,7 @@ func DecodePairs(b []byte) (*Pairs, error) {
 
 func (p *Pair) check() error {
 	if p.Components[0] == p.Components[1] {
-		return fmt.Errorf("the components are the same")
+		return errors.New("the components are the same")
 	}
 	for _, id := range p.Components {
 		if !haveRefrigerant(id) {
@@ -125,7 +126,7 @@ func (p *Pair) check() error {
 		return fmt.Errorf("status %q is unknown", p.Status)
 	}
 	if p.Source == "" || p.Provenance == "" || p.Verified == "" {
-		return fmt.Errorf("source, provenance and verified must not be empty")
+		return errors.New("source, provenance and verified must not be empty")
 	}
 	r := p.Reducing
 	switch r.Form {
@@ -153,7 +154,7 @@ func (p *Pair) check() error {
 		return nil
 	}
 	if d.Factor == 0 || math.IsNaN(d.Factor) || math.IsInf(d.Factor, 0) || len(d.Polynomial)+len(d.Exponential) == 0 {
-		return fmt.Errorf("the departure function has no factor or no terms")
+		return errors.New("the departure function has no factor or no terms")
 	}
 	_, err := helmholtz.New(helmholtz.Coefficients{
 		GasConstant: 1, ReducingTemperature: 1, ReducingDensity: 1,
