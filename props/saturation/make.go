@@ -175,10 +175,10 @@ func (m *maker) noise(lo, hi float64) (deviation, error) {
 }
 
 // edge is the s at which the piece through the critical point takes over, 1 - T/Tc = 1e-6. The sharp non-analytic terms
-// of R718 and R744 leave the phase solve sound to 1e-4 only.
+// of R718 and R744 leave the phase solve sound to 2.5e-5 only.
 func (m *maker) edge() float64 {
 	if m.eq.HasPeaks() {
-		return 0.01
+		return 0.005
 	}
 	return 0.001
 }
@@ -244,8 +244,8 @@ func (m *maker) analyticPiece() error {
 	return nil
 }
 
-// powerPiece closes the curve of an equation with non-analytic terms, whose densities follow a power law there: from
-// 0.0001 K or so of the critical temperature on by the power that the last solvable points have.
+// powerPiece closes the curve of an equation with non-analytic terms, whose densities follow a power law there, by the
+// power that the last solvable points have.
 func (m *maker) powerPiece() error {
 	c, edge := m.curve, m.edge()
 	a, err := m.at(edge)
@@ -260,9 +260,13 @@ func (m *maker) powerPiece() error {
 	k := criticalPiece{hi: edge, power: math.Log(width(b)/width(a)) / math.Log(1.05)}
 	w := math.Pow(edge, k.power)
 	k.cl, k.cv = (a.liquid/c.RhoCritical-1)/w, (1-math.Exp(a.lnVapour)/c.RhoCritical)/w
-	// Over so short a stretch ln p is a straight line to rounding.
-	lnPc := math.Log(c.PCritical)
-	k.lnP[0], k.lnP[1] = (a.lnP+lnPc)/2, (a.lnP-lnPc)/2
+	// ln p over s^2 as the parabola through the critical point and both solved ones.
+	points := []point{{s: 0, lnP: math.Log(c.PCritical)}, {s: a.s * a.s, lnP: a.lnP}, {s: b.s * b.s, lnP: b.lnP}}
+	var lnP [degree + 1]float64
+	for i, x := range nodes {
+		lnP[i] = interpolate(points, edge*edge*(x+1)/2).lnP
+	}
+	k.lnP = fit(&lnP)
 	c.critical = k
 	return nil
 }
