@@ -38,11 +38,12 @@ func (s *solver) findCritical(e *envelope) error {
 	copy(ph.x, s.m.z)
 	s.k.evaluate(ph, false)
 	e.critical = edgePoint{0, ph.T, ph.p, ph.rho}
-	e.criticalValues = u
+	rise := make([]float64, len(u))
 	for i, z := range s.m.z {
-		u[i] = math.Log(z * ph.rho)
+		rise[i] = math.Log(z*ph.rho) - u[i]
 	}
-	u[c.n], u[c.n+1], u[c.n+2] = lnRho, lnT, math.Log(ph.p)
+	rise[c.n], rise[c.n+1], rise[c.n+2] = lnRho-u[c.n], lnT-u[c.n+1], math.Log(ph.p)-u[c.n+2]
+	e.rise = rise
 	return nil
 }
 

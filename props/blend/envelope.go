@@ -11,11 +11,11 @@ import (
 // through zero at the critical point to the cold end of the dew line. Nothing folds in S: neither where temperature nor
 // where pressure is highest, nor at an azeotrope, where all compositions are equal but the densities are not.
 type envelope struct {
-	nodes          []node // by rising S
-	critical       edgePoint
-	criticalValues []float64 // in the order of a node
-	topT           edgePoint // highest temperature
-	topP           edgePoint // highest pressure
+	nodes    []node // by rising S
+	critical edgePoint
+	rise     []float64 // of the critical point over the cubic across the gap, in the order of a node
+	topT     edgePoint // highest temperature
+	topP     edgePoint // highest pressure
 }
 
 // edgePoint is a point on the curve.
@@ -227,10 +227,10 @@ func (s *solver) top(e *envelope, of coordinate) (edgePoint, bool) {
 
 // topNearCritical finds the maximum of a coordinate in the gap.
 func (e *envelope) topNearCritical(lo, hi float64, of coordinate) edgePoint {
-	n := node{v: make([]float64, len(e.criticalValues))}
+	n := node{v: make([]float64, len(e.nodes[0].v))}
 	at := func(S float64) float64 {
 		n.S = S
-		e.nearCritical(S, n.v)
+		e.interpolate(S, n.v)
 		return of.in(n.v)
 	}
 	lo, hi = max(lo, -gap), min(hi, gap)
@@ -247,24 +247,24 @@ func (e *envelope) topNearCritical(lo, hi float64, of coordinate) edgePoint {
 	return n.point()
 }
 
-// nearCritical writes the values of the curve at S between -gap and gap into out: the polynomial of fourth degree through
-// the critical point and through both ends of the gap with their slopes.
-func (e *envelope) nearCritical(S float64, out []float64) {
-	i := sort.Search(len(e.nodes), func(i int) bool { return e.nodes[i].S > 0 })
-	a, b := &e.nodes[i-1], &e.nodes[i]
-	hermite(a, b, S, out)
-	mid := make([]float64, len(out))
-	hermite(a, b, 0, mid)
-	shape := func(S float64) float64 { x, y := S-a.S, S-b.S; return x * x * y * y }
-	r := shape(S) / shape(0)
-	for j := range out {
-		out[j] += r * (e.criticalValues[j] - mid[j])
-	}
-}
-
-// interpolate writes the values of the curve at S into out, as many as out holds. It is a start for a solver.
+// interpolate writes the values of the curve at S into out, as many as out holds. It is a start for a solver; between -gap
+// and gap it is the answer.
 func (e *envelope) interpolate(S float64, out []float64) {
 	i := sort.Search(len(e.nodes), func(i int) bool { return e.nodes[i].S > S })
 	i = min(max(i, 1), len(e.nodes)-1)
-	hermite(&e.nodes[i-1], &e.nodes[i], S, out)
+	e.between(&e.nodes[i-1], &e.nodes[i], S, out)
+}
+
+// between interpolates between neighbouring nodes: by the cubic through both with their slopes and, across the gap, by the
+// polynomial of fourth degree that passes through the critical point too.
+func (e *envelope) between(a, b *node, S float64, out []float64) {
+	hermite(a, b, S, out)
+	if e.rise == nil || a.S > 0 || b.S < 0 {
+		return
+	}
+	shape := func(S float64) float64 { x, y := S-a.S, S-b.S; return x * x * y * y }
+	r := shape(S) / shape(0)
+	for j := range out {
+		out[j] += r * e.rise[j]
+	}
 }

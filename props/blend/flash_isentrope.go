@@ -91,6 +91,9 @@ func (s *solver) isentropeNewton(entropy, enthalpy float64) (result, bool) {
 	return result{}, false
 }
 
+// jump is what a property may be off at a root, in parts of R T or R.
+const jump = 1e-8
+
 // pressureOf returns the pressure with that logarithm, within the limit in spite of rounding.
 func (s *solver) pressureOf(lnP float64) float64 {
 	return math.Min(math.Exp(lnP), s.reach.PressureMax)
@@ -203,6 +206,9 @@ func (s *solver) isenthalp(enthalpy, energy float64) ([]result, error) {
 		if err != nil {
 			failure = err
 			return
+		}
+		if !(math.Abs(r.u()-energy) < jump*s.m.whole.R*r.T) {
+			return // a step of rounding between two ways of solving, not a root
 		}
 		if !(strict.TemperatureMin <= r.T && r.T <= strict.TemperatureMax && r.rho <= strict.DensityMax) {
 			return

@@ -16,11 +16,7 @@ func (s *solver) edgeAtRho(rho float64) (saturated, bool) {
 	var S float64
 	for range 50 {
 		S = (lo + hi) / 2
-		if math.Abs(S) < gap {
-			d.nearCritical(S, v)
-		} else {
-			d.interpolate(S, v)
-		}
+		d.interpolate(S, v)
 		if v[n] > target {
 			lo = S
 		} else {

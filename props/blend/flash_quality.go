@@ -110,7 +110,13 @@ func (s *solver) retrograde(ends [2]tie, given, wanted constraint) ([]result, er
 		}
 		return o.quality - wanted.value, math.NaN()
 	}, func(r float64) {
-		if o, ok := at(r); ok && math.Abs(o.quality-wanted.value) < 1e-9 {
+		o, ok := at(r)
+		if !ok {
+			return
+		}
+		u := o.unknowns()
+		if s.solveSplit(u, given, wanted) && s.belongs(c) {
+			o = s.outcome()
 			out = append(out, o.result())
 		}
 	})
@@ -164,7 +170,15 @@ func (s *solver) qualityLine(q float64, of Property, value float64) ([]result, e
 		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
 		return scale(have) - scale(value), math.NaN()
 	}, func(x float64) {
-		if r, ok := at(x); ok {
+		r, ok := at(x)
+		size := s.m.whole.R * r.T
+		switch of {
+		case Entropy:
+			size = s.m.whole.R
+		case Density:
+			size = value
+		}
+		if ok && math.Abs(r.value(of)-value) < jump*size {
 			out = append(out, r)
 		}
 	})

@@ -52,7 +52,7 @@ const (
 func (s *solver) interpolated(S float64) saturated {
 	n := len(s.m.z)
 	v := make([]float64, n+3)
-	s.d.nearCritical(S, v)
+	s.d.interpolate(S, v)
 	s.bulk.T = math.Exp(v[n+1])
 	s.bulk.rho = math.Exp(v[n])
 	s.inc.T = s.bulk.T
@@ -106,11 +106,10 @@ func (d *dome) locate(of coordinate, target float64, sd side, u []float64) (lo, 
 	} else {
 		lo = math.Max(lo, top)
 	}
-	// Bisection of the cubic; it is only a start.
 	x, y := lo, hi
-	for range 40 {
+	for range 50 {
 		S = (x + y) / 2
-		hermite(a, b, S, u)
+		d.between(a, b, S, u)
 		if (of.in(u) < target) == (sd == dense) {
 			x = S
 		} else {

@@ -209,6 +209,19 @@ func (s *solver) extensive(row []float64, vl, vv, scale float64, c func(ph *phas
 	}
 }
 
+// unknowns returns the unknowns of a solved split.
+func (o *outcome) unknowns() split {
+	n := len(o.x)
+	vl, vv := 1/o.rhoL, 1/o.rhoV
+	beta := (o.v - vl) / (vv - vl)
+	u := make(split, n+3)
+	for i := range o.x {
+		u[i] = math.Log(o.y[i]/o.x[i]) + math.Log(beta/(1-beta))
+	}
+	u[n], u[n+1], u[n+2] = math.Log(o.rhoL), math.Log(o.rhoV), math.Log(o.T)
+	return u
+}
+
 // outcome returns the split that was solved last.
 func (s *solver) outcome() outcome {
 	n := len(s.m.z)
