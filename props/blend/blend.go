@@ -238,6 +238,16 @@ func (b *Blend) NormalPoints() (bubble, dew float64) {
 	return bubble, dew
 }
 
+// Residuals returns the normal bubble and dew temperature of the model less the published ones in K, and reports whether
+// there are any: free compositions have none.
+func (b *Blend) Residuals() (bubble, dew float64, ok bool) {
+	if b.listed == nil {
+		return 0, 0, false
+	}
+	bubble, dew = b.NormalPoints()
+	return bubble - b.listed.Published.Bubble, dew - b.listed.Published.Dew, true
+}
+
 // Glide returns the difference of dew and bubble temperature at pressure p in Pa, in K.
 func (b *Blend) Glide(p float64) (float64, error) {
 	bubble, err := b.BubbleTemperature(p)
@@ -257,6 +267,31 @@ func (b *Blend) ResidualEntropy(T, rho float64) float64 {
 	s.iso.set(T)
 	a := s.iso.residual(rho / b.whole.M)
 	return a.T - a.A
+}
+
+// FugacityCoefficients returns f_i/(x_i p) of every component, in the order of [Blend.Components], in a single phase of the
+// blend at T in K and rho in kg/m3. It returns a [*RangeError] outside the limits, also where the pressure is not positive.
+func (b *Blend) FugacityCoefficients(T, rho float64) ([]float64, error) {
+	s := b.solver()
+	defer b.release(s)
+	if err := s.checkTemperature(T); err != nil {
+		return nil, err
+	}
+	if err := s.checkVolume(b.whole.M / rho); err != nil {
+		return nil, err
+	}
+	ph := s.bulk
+	ph.T, ph.rho = T, rho/b.whole.M
+	copy(ph.x, b.z)
+	s.k.evaluate(ph, false)
+	if !(ph.p > 0) {
+		return nil, s.outOfRange(Pressure, ph.p, 0, s.reach.PressureMax, LimitPhysical)
+	}
+	out := make([]float64, len(ph.x))
+	for i, l := range ph.lnF {
+		out[i] = math.Exp(l) / (ph.x[i] * ph.p)
+	}
+	return out, nil
 }
 
 // outward turns a molar quantity of the model into the unit and datum of the view; Density stands for the molar volume.

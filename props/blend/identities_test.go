@@ -156,3 +156,59 @@ func TestPhaseCompositions(t *testing.T) {
 		}
 	}
 }
+
+// Fugacity coefficients: one in a thin gas, and, with the compositions of both phases, those that make bubble and incipient
+// phase equal: f_i = x_i phi_i p (checked phase by phase in TestEqualFugacities). Their mean in moles gives the residual
+// Gibbs energy, which follows from enthalpy and entropy too: sum x_i ln(phi_i) = (g - g_ideal(T, p))/(R T).
+func TestFugacityCoefficients(t *testing.T) {
+	l := library(t)
+	for _, name := range []string{"R407C", "R455A", "R441A"} {
+		b := get(t, l, name)
+		const T = 300.0
+		thin, err := b.FugacityCoefficients(T, 1e-7)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for i, phi := range thin {
+			if !(math.Abs(phi-1) < 1e-5) { // the gas constants of the components differ by as much
+				t.Errorf("%s: coefficient %d of a thin gas is %.9g", name, i, phi)
+			}
+		}
+		const low = 1e-2 // Pa, ideal to 1e-8
+		ideal, err := b.TemperaturePressure(T, low)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, p := range []float64{2e5, 5e6} {
+			s, err := b.TemperaturePressure(T, p)
+			if err != nil {
+				t.Fatal(err)
+			}
+			phi, err := b.FugacityCoefficients(T, s.Rho)
+			if err != nil {
+				t.Fatal(err)
+			}
+			var sum float64
+			for i, x := range b.MoleFractions() {
+				sum += x * math.Log(phi[i])
+			}
+			rt := s.P * b.MolarMass() / (s.Rho * s.Z) // R T
+			want := ((s.H-T*s.S)-(ideal.H-T*ideal.S))*b.MolarMass()/rt - math.Log(p/low)
+			if !(math.Abs(sum-want) < 1e-5) {
+				t.Errorf("%s at %g Pa: mean ln(phi) %.9g, from the Gibbs energy %.9g", name, p, sum, want)
+			}
+		}
+		if _, err := b.FugacityCoefficients(T, 1e9); err == nil {
+			t.Error("a density out of reach has fugacities")
+		}
+	}
+}
+
+func TestResiduals(t *testing.T) {
+	l := library(t)
+	bubble, dew, ok := get(t, l, "R454B").Residuals()
+	// The residuals stated with the pair R32/R1234yf: +0.02 and +0.09 K.
+	if !ok || !(math.Abs(bubble-0.02) < 0.006 && math.Abs(dew-0.09) < 0.006) {
+		t.Errorf("R454B: %g and %g K, %v", bubble, dew, ok)
+	}
+}
