@@ -124,9 +124,7 @@ func (j *job) view(s props.State, shown *selection, into *account) stateView {
 func (j *job) head(o *object, kinds []kind) error {
 	o.text("refrigerant", j.basis.Refrigerant)
 	o.text("datum", j.basis.Datum)
-	if err := o.value("units", j.units.names(kinds...)); err != nil {
-		return err
-	}
+	j.units.write(o, kinds)
 	if j.units.site != nil {
 		return o.value("site", j.units.site)
 	}

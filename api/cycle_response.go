@@ -7,25 +7,29 @@ import (
 	"dewmark/service/cycle"
 )
 
+// cycleResponse holds the answer in the order it is written: what all responses begin with, then these.
 type cycleResponse struct {
-	Refrigerant string                  `json:"refrigerant"`
-	Layout      string                  `json:"layout"`
-	With        []string                `json:"with,omitempty"` // layouts that transcritical is combined with
-	Purpose     string                  `json:"purpose"`
-	Datum       string                  `json:"datum"`
-	Units       map[string]string       `json:"units"`
-	Site        *site                   `json:"site,omitempty"`
-	States      []cycleState            `json:"states"`
+	*job
+	cycleHead
+	states []cycleState
+	cycleAccounts
+}
+
+type cycleHead struct {
+	Layout  string   `json:"layout"`
+	With    []string `json:"with,omitempty"` // layouts that transcritical is combined with
+	Purpose string   `json:"purpose"`
+}
+
+type cycleAccounts struct {
 	Components  []component             `json:"components"`
 	Compressors []compressorPerformance `json:"compressors"`
 	Performance performance             `json:"performance"`
 	Figures     figures                 `json:"figures"`
 	Optima      []optimum               `json:"optima,omitempty"`
 	Closure     closure                 `json:"closure"`
-	Ambient     float64                 `json:"ambient_temperature"` // dead state of the exergy account
-	Basis       basis                   `json:"basis"`
+	Ambient     float64                 `json:"ambient_temperature"`   // dead state of the exergy account
 	UpperBasis  *basis                  `json:"upper_basis,omitempty"` // of a cascade's upper circuit
-	Cautions    []caution               `json:"cautions"`
 }
 
 // cycleState is a state with its label and place, which stand before the members of the state.
@@ -35,15 +39,35 @@ type cycleState struct {
 	state                     stateView
 }
 
-// MarshalJSON writes the state as an object.
-func (s cycleState) MarshalJSON() ([]byte, error) {
-	o := begin(nil)
-	o.text("label", s.label)
-	o.text("place", s.place)
-	o.text("refrigerant", s.refrigerant)
-	o.number("mass_flow", s.massFlow)
-	s.state.write(&o)
-	return o.end(), nil
+// encode writes the response. States are too many numbers for reflection.
+func (r *cycleResponse) encode(b []byte) ([]byte, error) {
+	o := begin(b)
+	if err := r.head(&o, append(everything.kinds(), cycleKinds...)); err != nil {
+		return nil, err
+	}
+	if err := o.members(&r.cycleHead); err != nil {
+		return nil, err
+	}
+	o.name("states")
+	o.b = append(o.b, '[')
+	for i := range r.states {
+		if i > 0 {
+			o.b = append(o.b, ',')
+		}
+		s, item := &r.states[i], begin(o.b)
+		item.text("label", s.label)
+		item.text("place", s.place)
+		item.text("refrigerant", s.refrigerant)
+		item.number("mass_flow", s.massFlow)
+		s.state.write(&item)
+		o.b = item.end()
+	}
+	o.b = append(o.b, ']')
+	if err := o.members(&r.cycleAccounts); err != nil {
+		return nil, err
+	}
+	err := r.tail(&o)
+	return o.end(), err
 }
 
 type component struct {
@@ -136,9 +160,7 @@ var cycleKinds = []kind{kindMassFlow, kindVolumeFlow, kindHeatFlow, kindPower, k
 // cycleResponse turns a solution into the caller's units. Upper is the upper circuit of a cascade.
 func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
 	u := j.units
-	resp := &cycleResponse{
-		Refrigerant: j.basis.Refrigerant, Layout: s.Layout.String(), Purpose: s.Purpose.String(), Datum: j.basis.Datum,
-		Units: u.names(append(everything.kinds(), cycleKinds...)...), Site: u.site,
+	resp := &cycleResponse{job: j, cycleHead: cycleHead{Layout: s.Layout.String(), Purpose: s.Purpose.String()}, cycleAccounts: cycleAccounts{
 		Performance: performanceOf(&s.Performance, u), Figures: figuresOf(&s.Figures, u),
 		Closure: closure{
 			EnergyResidualFraction:    s.Closure.EnergyResidualFraction,
@@ -149,7 +171,7 @@ func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
 			ExergyResidualFraction:    u.known(kindNone, s.Closure.ExergyResidualFraction),
 		},
 		Ambient: u.out(kindTemperature, s.Ambient),
-	}
+	}}
 	for _, l := range s.With {
 		resp.With = append(resp.With, l.String())
 	}
@@ -170,7 +192,7 @@ func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
 		}
 		v := of.view(at.State, everything, &all)
 		all.count(nil, v.extrapolated)
-		resp.States = append(resp.States, cycleState{at.Label, at.Place, of.basis.Refrigerant, u.out(kindMassFlow, at.MassFlow), v})
+		resp.states = append(resp.states, cycleState{at.Label, at.Place, of.basis.Refrigerant, u.out(kindMassFlow, at.MassFlow), v})
 	}
 	j.conclude(&all, everything)
 	if len(upper) > 0 {
@@ -181,7 +203,6 @@ func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
 	}
 	j.repeat(s.Cautions, all.outside > 0)
 	j.caution("calculation_aid", handling(j.r, upper))
-	resp.Basis, resp.Cautions = j.basis, j.cautions
 	return resp
 }
 

@@ -45,6 +45,26 @@ func (o *object) value(name string, v any) error {
 	return err
 }
 
+// members writes all members of the struct v.
+func (o *object) members(v any) error {
+	start := len(o.b)
+	b, err := appendValue(o.b, v)
+	if err != nil {
+		return err
+	}
+	text := b[start : len(b)-1] // without the closing brace
+	switch {
+	case len(text) == 1:
+		o.b = b[:start]
+	case b[start-1] == '{':
+		o.b = b[:start+copy(b[start:], text[1:])]
+	default:
+		text[0] = ','
+		o.b = b[:len(b)-1]
+	}
+	return nil
+}
+
 // appendValue writes v as [encoding/json] does, characters that only HTML minds left alone.
 func appendValue(b []byte, v any) ([]byte, error) {
 	out := bytes.NewBuffer(b)

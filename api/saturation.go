@@ -30,27 +30,40 @@ type saturationRange struct {
 }
 
 type saturationResponse struct {
-	Refrigerant string            `json:"refrigerant"`
-	Datum       string            `json:"datum"`
-	Units       map[string]string `json:"units"`
-	Site        *site             `json:"site,omitempty"`
-	Failed      int               `json:"failed"`
-	Rows        []saturationRow   `json:"rows"`
-	Basis       basis             `json:"basis"`
-	Cautions    []caution         `json:"cautions"`
+	*job
+	kinds  []kind
+	failed int
+	rows   []saturationRow
 }
 
-// saturationRow is one row of the table. A failed row holds the given number and the problem alone.
+// saturationRow is one row of the table in the caller's units. A failed row has the given number and the problem alone,
+// NaN in the rest.
 type saturationRow struct {
-	Temperature       *float64   `json:"temperature,omitempty"`
-	Pressure          *float64   `json:"pressure,omitempty"`
-	BubbleTemperature *float64   `json:"bubble_temperature,omitempty"`
-	DewTemperature    *float64   `json:"dew_temperature,omitempty"`
-	Glide             *float64   `json:"glide,omitempty"`
-	LatentHeat        *float64   `json:"latent_heat,omitempty"`
-	Bubble            *stateView `json:"bubble,omitempty"`
-	Dew               *stateView `json:"dew,omitempty"`
-	Problem           *Problem   `json:"problem,omitempty"`
+	numbers     [len(rowColumns)]float64
+	bubble, dew stateView
+	problem     *Problem
+}
+
+// The numbers of a row.
+const (
+	rowTemperature = iota
+	rowPressure
+	rowBubbleTemperature
+	rowDewTemperature
+	rowGlide
+	rowLatentHeat
+)
+
+var rowColumns = [...]struct {
+	name string
+	kind kind
+}{
+	rowTemperature:       {"temperature", kindTemperature},
+	rowPressure:          {"pressure", kindPressure},
+	rowBubbleTemperature: {"bubble_temperature", kindTemperature},
+	rowDewTemperature:    {"dew_temperature", kindTemperature},
+	rowGlide:             {"glide", kindTemperatureDifference},
+	rowLatentHeat:        {"latent_heat", kindEnthalpy},
 }
 
 // saturation answers POST /v1/saturation.
@@ -78,8 +91,8 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 		if i%chunkSize == 0 && c.Request.Context().Err() != nil {
 			return nil, c.Request.Context().Err() // nobody waits for the answer
 		}
-		rows[i] = j.row(p, shown, &all)
-		all.count(rows[i].Problem, false)
+		j.row(&rows[i], p, shown, &all)
+		all.count(rows[i].problem, false)
 	}
 	a.metrics.calculated("saturation", &all)
 	j.conclude(&all, shown)
@@ -90,10 +103,47 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 		}
 		return &saturationTable{job: j, rows: rows, fields: shown.columns()}, nil
 	}
-	return saturationResponse{
-		Refrigerant: j.basis.Refrigerant, Datum: j.basis.Datum, Units: j.units.names(kinds...), Site: j.units.site,
-		Failed: all.failed(), Rows: rows, Basis: j.basis, Cautions: j.cautions,
-	}, nil
+	return &saturationResponse{job: j, kinds: kinds, failed: all.failed(), rows: rows}, nil
+}
+
+// encode writes the response.
+func (r *saturationResponse) encode(b []byte) ([]byte, error) {
+	o := begin(b)
+	if err := r.head(&o, r.kinds); err != nil {
+		return nil, err
+	}
+	o.number("failed", float64(r.failed))
+	o.name("rows")
+	o.b = append(o.b, '[')
+	for i := range r.rows {
+		if i > 0 {
+			o.b = append(o.b, ',')
+		}
+		var err error
+		if o.b, err = r.rows[i].encode(o.b); err != nil {
+			return nil, err
+		}
+	}
+	o.b = append(o.b, ']')
+	err := r.tail(&o)
+	return o.end(), err
+}
+
+// encode adds the row as an object.
+func (r *saturationRow) encode(b []byte) ([]byte, error) {
+	o := begin(b)
+	for i, x := range r.numbers {
+		if !math.IsNaN(x) {
+			o.number(rowColumns[i].name, x)
+		}
+	}
+	if r.problem != nil {
+		err := o.value("problem", r.problem)
+		return o.end(), err
+	}
+	r.bubble.member(&o, "bubble")
+	r.dew.member(&o, "dew")
+	return o.end(), nil
 }
 
 // saturationPoint is where a row is wanted.
@@ -158,46 +208,37 @@ func (r *saturationRange) points(limit int) ([]saturationPoint, error) {
 }
 
 // row computes both ends of the dome at one temperature or pressure.
-func (j *job) row(p saturationPoint, shown *selection, into *account) saturationRow {
+func (j *job) row(row *saturationRow, p saturationPoint, shown *selection, into *account) {
 	g := given{member: "temperature", kind: kindTemperature, number: p.number, Given: props.Given{Property: p.property}}
-	bubbleAt, dewAt := j.r.BubblePoint, j.r.DewPoint
-	row := saturationRow{Temperature: &p.number}
+	bubbleAt, dewAt, column := j.r.BubblePoint, j.r.DewPoint, rowTemperature
 	if p.property == props.Pressure {
 		g.member, g.kind = "pressure", kindPressure
-		bubbleAt, dewAt = j.r.BubblePointAtPressure, j.r.DewPointAtPressure
-		row = saturationRow{Pressure: &p.number}
+		bubbleAt, dewAt, column = j.r.BubblePointAtPressure, j.r.DewPointAtPressure, rowPressure
 	}
 	g.Value = j.units.in(g.kind, p.number)
+	for i := range row.numbers {
+		row.numbers[i] = math.NaN()
+	}
+	row.numbers[column] = p.number
 	bubble, err := bubbleAt(g.Value)
+	var dew props.State
 	if err == nil {
-		var dew props.State
-		if dew, err = dewAt(g.Value); err == nil {
-			return j.saturated(row, g, bubble, dew, shown, into)
-		}
+		dew, err = dewAt(g.Value)
 	}
-	row.Problem = voice{units: j.units, at: p.pointer, given: []given{g}, r: j.r}.problem(err)
-	return row
-}
-
-// saturated fills a row.
-func (j *job) saturated(row saturationRow, g given, bubble, dew props.State, shown *selection, into *account) saturationRow {
+	if err != nil {
+		row.problem = voice{units: j.units, at: p.pointer, given: []given{g}, r: j.r}.problem(err)
+		return
+	}
 	u := j.units
-	bubbleView, dewView := j.view(bubble, shown, into), j.view(dew, shown, into)
-	for _, v := range []*stateView{&bubbleView, &dewView} {
-		v.echo(g.member, g.number)
+	row.bubble, row.dew = j.view(bubble, shown, into), j.view(dew, shown, into)
+	row.bubble.echo(g.member, g.number)
+	row.dew.echo(g.member, g.number)
+	row.numbers = [...]float64{
+		rowTemperature: u.out(kindTemperature, dew.T), rowPressure: u.out(kindPressure, dew.P),
+		rowBubbleTemperature: u.out(kindTemperature, bubble.T), rowDewTemperature: u.out(kindTemperature, dew.T),
+		rowGlide: u.out(kindTemperatureDifference, dew.T-bubble.T), rowLatentHeat: u.out(kindEnthalpy, dew.H-bubble.H),
 	}
-	bubbleT, dewT := u.out(kindTemperature, bubble.T), u.out(kindTemperature, dew.T)
-	if g.Property == props.Temperature {
-		bubbleT, dewT = g.number, g.number
-		row.Pressure = new(u.out(kindPressure, dew.P))
-	} else {
-		row.Temperature = &dewT
-	}
-	row.BubbleTemperature, row.DewTemperature = &bubbleT, &dewT
-	row.Glide = new(u.out(kindTemperatureDifference, dew.T-bubble.T))
-	row.LatentHeat = new(u.out(kindEnthalpy, dew.H-bubble.H))
-	row.Bubble, row.Dew = &bubbleView, &dewView
-	return row
+	row.numbers[column] = p.number
 }
 
 // saturationTable is the answer as CSV, RFC 4180. A line of it says all it means: refrigerant and datum are columns, and
@@ -240,20 +281,6 @@ func (t *saturationTable) encode(b []byte) ([]byte, error) {
 	return out.Bytes(), w.Error()
 }
 
-// rowColumns are the columns that stand before those of the two states.
-var rowColumns = [...]struct {
-	name  string
-	kind  kind
-	value func(*saturationRow) *float64
-}{
-	{"temperature", kindTemperature, func(r *saturationRow) *float64 { return r.Temperature }},
-	{"pressure", kindPressure, func(r *saturationRow) *float64 { return r.Pressure }},
-	{"bubble_temperature", kindTemperature, func(r *saturationRow) *float64 { return r.BubbleTemperature }},
-	{"dew_temperature", kindTemperature, func(r *saturationRow) *float64 { return r.DewTemperature }},
-	{"glide", kindTemperatureDifference, func(r *saturationRow) *float64 { return r.Glide }},
-	{"latent_heat", kindEnthalpy, func(r *saturationRow) *float64 { return r.LatentHeat }},
-}
-
 // titles names the columns.
 func (t *saturationTable) titles() []string {
 	titles := []string{"refrigerant", "datum"}
@@ -277,27 +304,22 @@ func (t *saturationTable) titles() []string {
 // cells writes one row; what does not exist stays empty.
 func (t *saturationTable) cells(r *saturationRow) []string {
 	cells := []string{t.basis.Refrigerant, t.basis.Datum}
-	for _, c := range rowColumns {
-		x := math.NaN()
-		if v := c.value(r); v != nil {
-			x = *v
-		}
+	for _, x := range r.numbers {
 		cells = append(cells, cell(x))
 	}
-	for _, v := range []*stateView{r.Bubble, r.Dew} {
+	for _, v := range []*stateView{&r.bubble, &r.dew} {
 		for _, f := range t.fields {
-			x := math.NaN()
-			if v != nil {
-				x = v.numbers[f]
+			if r.problem == nil {
+				cells = append(cells, cell(v.numbers[f]))
+			} else {
+				cells = append(cells, "")
 			}
-			cells = append(cells, cell(x))
 		}
 	}
-	problem := ""
-	if r.Problem != nil {
-		problem = r.Problem.Detail
+	if r.problem != nil {
+		return append(cells, r.problem.Detail)
 	}
-	return append(cells, problem)
+	return append(cells, "")
 }
 
 func cell(x float64) string {

@@ -434,6 +434,24 @@ func (u *units) difference(p float64) string {
 	return sixDigits(p/unit.scale) + " " + strings.TrimSuffix(unit.code, "(g)")
 }
 
+// write adds the member units: the code in force for each kind.
+func (u *units) write(o *object, kinds []kind) {
+	var used [kindCount]bool
+	for _, k := range kinds {
+		if k != kindNone {
+			used[k] = true
+		}
+	}
+	o.name("units")
+	codes := begin(o.b)
+	for k, yes := range used {
+		if yes {
+			codes.text(quantities[k].name, u.of[k].code)
+		}
+	}
+	o.b = codes.end()
+}
+
 // names returns the code in force for each kind.
 func (u *units) names(kinds ...kind) map[string]string {
 	codes := make(map[string]string, len(kinds))

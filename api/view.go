@@ -208,6 +208,14 @@ func (v *stateView) write(o *object) {
 	}
 }
 
+// member adds v to o as a member of that name.
+func (v *stateView) member(o *object, name string) {
+	o.name(name)
+	inner := begin(o.b)
+	v.write(&inner)
+	o.b = inner.end()
+}
+
 // MarshalJSON writes v as an object of its own.
 func (v stateView) MarshalJSON() ([]byte, error) {
 	o := begin(nil)
