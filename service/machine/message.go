@@ -10,32 +10,47 @@ import (
 type Message struct {
 	text    string // with one %s a number
 	numbers []cycle.Number
+	cycle   *cycle.Message // instead, one that the cycle wrote
 }
 
-func message(text string, numbers ...cycle.Number) Message { return Message{text, numbers} }
+func message(text string, numbers ...cycle.Number) Message {
+	return Message{text: text, numbers: numbers}
+}
 
 // String returns the sentence with its numbers in SI units.
 func (m Message) String() string { return m.Render(cycle.Number.String) }
 
-// Render returns the sentence with each number as print writes it.
-func (m Message) Render(print func(cycle.Number) string) string {
+// Render returns the sentence with each number as write has it.
+func (m Message) Render(write func(cycle.Number) string) string {
+	if m.cycle != nil {
+		return m.cycle.Render(write)
+	}
 	if len(m.numbers) == 0 {
 		return m.text
 	}
 	words := make([]any, len(m.numbers))
 	for i, n := range m.numbers {
-		words[i] = print(n)
+		words[i] = write(n)
 	}
 	return fmt.Sprintf(m.text, words...)
 }
 
 // Numbers returns the numbers of the sentence in their order.
-func (m Message) Numbers() []cycle.Number { return append([]cycle.Number(nil), m.numbers...) }
+func (m Message) Numbers() []cycle.Number {
+	if m.cycle != nil {
+		return m.cycle.Numbers()
+	}
+	return append([]cycle.Number(nil), m.numbers...)
+}
 
 func temperature(v float64) cycle.Number { return cycle.Number{Quantity: cycle.Temperature, Value: v} }
+
 func difference(v float64) cycle.Number {
 	return cycle.Number{Quantity: cycle.TemperatureDifference, Value: v}
 }
 func pressure(v float64) cycle.Number { return cycle.Number{Quantity: cycle.Pressure, Value: v} }
 func heat(v float64) cycle.Number     { return cycle.Number{Quantity: cycle.HeatFlow, Value: v} }
 func plain(v float64) cycle.Number    { return cycle.Number{Quantity: cycle.Dimensionless, Value: v} }
+
+// fromCycle takes over a message of the cycle.
+func fromCycle(m cycle.Message) Message { return Message{cycle: &m} }

@@ -1,0 +1,264 @@
+package machine
+
+import (
+	"math"
+
+	"dewmark/props/secondary"
+)
+
+// A coil cools moist air. Its evaporating zone is computed as fully dry and as fully wet, and the one that passes more heat
+// counts; the wet one is driven by the enthalpy of saturated air at the refrigerant's temperature (Braun, Klein and
+// Mitchell, ASHRAE Trans. 95 (1989)). The superheating zone is dry: its surface is hardly below the dew point.
+
+// airState is moist air on its way through a coil.
+type airState struct{ T, W, h float64 } // K, kg/kg, J/kg
+
+// strip is a part of a coil with its share of the air.
+type strip struct {
+	pressure float64 // Pa
+	air      airState
+	flow     float64 // kg/s of dry air
+	T1, T2   float64 // K, of the refrigerant
+	heat     float64 // W
+	share    float64 // of the thermal resistance on the side of the air
+}
+
+func (s *strip) capacity() float64 { return s.flow * moistCapacity(s.air.W) }
+
+// moistCapacity returns the heat capacity of moist air in J/K per kg of dry air.
+func moistCapacity(W float64) float64 { return secondary.Air{W: W}.HeatCapacity() }
+
+// middle is the refrigerant's mean temperature, which drives condensation.
+func (s *strip) middle() float64 { return (s.T1 + s.T2) / 2 }
+
+// dry returns the conductance that the heat takes without condensation.
+func (s *strip) dry(a Arrangement) float64 {
+	C, most := s.capacity(), s.air.T-s.T1
+	if glide := s.T2 - s.T1; glide > noGlide {
+		own := s.heat / glide
+		least, largest := math.Min(own, C), math.Max(own, C)
+		return least * transferUnits(a, s.heat/(least*most), least/largest, C >= own)
+	}
+	return C * transferUnits(a, s.heat/(C*most), 0, true)
+}
+
+// wet returns the conductance, as of a dry coil, that the heat takes on a wet surface, and the mean temperature of that
+// surface. It is infinite where the air would leave with less than the enthalpy of saturation.
+func (s *strip) wet() (ua, surface float64) {
+	T := s.middle()
+	hT, slope, _ := secondary.Saturation(s.pressure, T)
+	in := s.air.h - hT
+	out := in - s.heat/s.flow
+	if !(out > 0) {
+		return math.Inf(1), T
+	}
+	units := math.Log(in / out)        // NTU*
+	mean := s.heat / s.flow / units    // J/kg, logarithmic mean of the enthalpy differences
+	x := s.surface(hT, slope, T, mean) // K above the refrigerant
+	inner := slope
+	if x > 0 {
+		h, _, _ := secondary.Saturation(s.pressure, T+x)
+		inner = (h - hT) / x
+	}
+	return units * s.flow * (moistCapacity(s.air.W)*s.share + inner*(1-s.share)), T + x
+}
+
+// surface returns by how much the wet surface is warmer than the refrigerant: the enthalpy difference divides between the
+// resistance of the air and that of the inside.
+func (s *strip) surface(hT, slope, T, mean float64) float64 {
+	cp := moistCapacity(s.air.W)
+	target := (1 - s.share) * mean
+	x := target / (cp*s.share + slope*(1-s.share))
+	for range surfaceSteps {
+		h, dh, _ := secondary.Saturation(s.pressure, T+x)
+		step := (cp*s.share*x + (1-s.share)*(h-hT) - target) / (cp*s.share + (1-s.share)*dh)
+		x -= step
+		if math.Abs(step) < 1e-12*T {
+			break
+		}
+	}
+	return math.Max(0, x)
+}
+
+// surfaceSteps is more than Newton's method needs: the function is convex and starts above its zero.
+const surfaceSteps = 20
+
+// wetHeat returns the heat that a wet surface passes at conductance ua.
+func (s *strip) wetHeat(ua float64) float64 {
+	T := s.middle()
+	hT, slope, _ := secondary.Saturation(s.pressure, T)
+	in := s.air.h - hT
+	if !(in > 0) {
+		return 0
+	}
+	cp := moistCapacity(s.air.W)
+	passed := func(inner float64) float64 {
+		return -math.Expm1(-ua/s.flow/(cp*s.share+inner*(1-s.share))) * s.flow * in
+	}
+	most := s.air.T - T
+	x, _ := bracketed(0, most, func(x float64) (float64, error) {
+		inner := slope
+		if x > 0 {
+			h, _, _ := secondary.Saturation(s.pressure, T+x)
+			inner = (h - hT) / x
+		}
+		return x - (1-s.share)*passed(inner)/ua, nil
+	})
+	if x > 0 {
+		h, _, _ := secondary.Saturation(s.pressure, T+x)
+		slope = (h - hT) / x
+	}
+	return passed(slope)
+}
+
+// outcome is what a strip leaves behind.
+type outcome struct {
+	air       airState
+	wet       bool
+	surface   float64 // K, mean of a wet surface
+	apparatus float64 // K, apparatus dew point; NaN when dry
+	shed      float64 // kg/s of water or frost
+}
+
+// leave returns the air behind a strip of conductance ua. The air that leaves a wet strip mixes air that bypassed the
+// surface and saturated air at the apparatus dew point.
+func (s *strip) leave(ua float64, wet bool, surface float64) outcome {
+	in := s.air
+	dry := outcome{air: airState{in.T - s.heat/s.capacity(), in.W, in.h - s.heat/s.flow}, surface: math.NaN(), apparatus: math.NaN()}
+	if !wet {
+		return dry
+	}
+	contact := -math.Expm1(-ua / s.share / s.capacity()) // 1 - bypass factor
+	apparatus := saturatedAt(s.pressure, in.h-s.heat/s.flow/contact)
+	_, _, WA := secondary.Saturation(s.pressure, apparatus)
+	if !(WA < in.W) { // the surface is below the dew point only in name
+		return dry
+	}
+	out := outcome{wet: true, surface: surface, apparatus: apparatus}
+	out.air.W = in.W - contact*(in.W-WA)
+	out.air.h = in.h - s.heat/s.flow - (in.W-out.air.W)*secondary.CondensateEnthalpy(surface)
+	out.air.T = dryBulb(out.air.h, out.air.W)
+	if T := saturatedAt(s.pressure, out.air.h); out.air.T < T { // fog rains out
+		_, _, W := secondary.Saturation(s.pressure, T)
+		out.air.T, out.air.W = T, W
+		out.air.h = in.h - s.heat/s.flow - (in.W-W)*secondary.CondensateEnthalpy(surface)
+	}
+	out.shed = s.flow * (in.W - out.air.W)
+	return out
+}
+
+// dryBulb returns the temperature of moist air with enthalpy h.
+func dryBulb(h, W float64) float64 {
+	a := secondary.Air{T: zeroCelsius, W: W}
+	return a.Heated(h - a.Enthalpy()).T
+}
+
+// saturatedAt returns the temperature at which saturated air has enthalpy h.
+func saturatedAt(p, h float64) float64 {
+	low, high := 180.0, 370.0 // K; no coil comes near
+	T, _ := bracketed(low, high, func(T float64) (float64, error) {
+		hT, _, _ := secondary.Saturation(p, T)
+		return math.Min(hT, 1e9) - h, nil
+	})
+	return T
+}
+
+// strip returns the part of the coil that a segment is, with a share of the air that enters in a state.
+func (w *work) strip(s *segment, air airState, flow, share float64) strip {
+	return strip{
+		pressure: w.stream.air.P, air: air, flow: flow, T1: s.T1, T2: s.T2, heat: w.duty * (s.to - s.from), share: share,
+	}
+}
+
+func (w *work) entering() airState {
+	return airState{w.stream.inT, w.stream.air.W, w.stream.inH}
+}
+
+// canBeWet reports whether water or frost can form in a segment.
+func (w *work) canBeWet(s *segment) bool {
+	if s.zone != Evaporating || w.stream.air.W == 0 {
+		return false
+	}
+	_, _, W := secondary.Saturation(w.stream.air.P, (s.T1+s.T2)/2)
+	return W < w.stream.air.W
+}
+
+// coilMismatch is the mismatch of a coil.
+func (w *work) coilMismatch(ua, share float64) float64 {
+	if w.reach < 0 {
+		return w.reach/crossReach - 1
+	}
+	if !w.series() {
+		return 1/w.coilShares(ua, share) - 1
+	}
+	needed, short := w.coilSeries(share, nil)
+	if math.IsInf(needed, 1) {
+		return short/crossReach - 1
+	}
+	w.needed = needed
+	return ua/needed - 1
+}
+
+// coilShares adds up the shares of a coil's zones that lie side by side.
+func (w *work) coilShares(ua, share float64) float64 {
+	var area float64
+	for i := range w.segments {
+		area += w.coilShare(&w.segments[i], ua, share)
+	}
+	return area
+}
+
+// coilShare returns the share of area and air that a segment takes. A wet strip's heat grows with both alike, so the share is
+// its heat over that of the whole coil.
+func (w *work) coilShare(s *segment, ua, share float64) float64 {
+	dry := w.crossShare(s, ua)
+	if !w.canBeWet(s) {
+		return dry
+	}
+	k := w.strip(s, w.entering(), w.stream.flow, share)
+	return math.Min(dry, k.heat/k.wetHeat(ua*s.ratio))
+}
+
+// visit hears of each strip with its conductance, the share of the air, and the air behind it.
+type visit func(s *segment, ua, share float64, k *strip, out outcome)
+
+// coilSeries adds up what the zones take that the air passes one after another. Where the air cannot give the heat it
+// returns infinity and by how many kelvins it falls short, negative.
+func (w *work) coilSeries(share float64, tell visit) (needed, short float64) {
+	air := w.entering()
+	n := len(w.segments)
+	for j := range n {
+		s := &w.segments[j]
+		if w.arrangement == Counterflow {
+			s = &w.segments[n-1-j]
+		}
+		k := w.strip(s, air, w.stream.flow, share)
+		ua, wet, surface := k.dry(w.arrangement), false, math.NaN()
+		left := air.T - k.heat/k.capacity() - k.coldEnd(w.arrangement)
+		if w.canBeWet(s) {
+			if u, T := k.wet(); u < ua {
+				ua, wet, surface = u, true, T
+			}
+			h, slope, _ := secondary.Saturation(k.pressure, k.middle())
+			left = math.Max(left, (air.h-k.heat/k.flow-h)/slope)
+		}
+		if math.IsInf(ua, 1) || math.IsNaN(ua) {
+			return math.Inf(1), math.Min(0, left)
+		}
+		needed += ua / s.ratio
+		out := k.leave(ua, wet, surface)
+		if tell != nil {
+			tell(s, ua, 1, &k, out)
+		}
+		air = out.air
+	}
+	return needed, 0
+}
+
+// coldEnd returns the refrigerant's temperature where dry air leaves the strip.
+func (s *strip) coldEnd(a Arrangement) float64 {
+	if a == ParallelFlow {
+		return s.T2
+	}
+	return s.T1
+}

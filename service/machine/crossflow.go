@@ -1,0 +1,100 @@
+package machine
+
+import "math"
+
+// In crossflow the zones lie side by side: each has a share of the area and the same share of the stream, which enters all
+// of them at its inlet temperature.
+
+// beginAside looks at the differences that matter in crossflow and in coils: the stream's inlet against each segment, its
+// outlet against the two-phase zone.
+func (w *work) beginAside() {
+	w.needed, w.pinch, w.pinchAt, w.reach = math.NaN(), math.Inf(1), 0, 0
+	if !w.stream.known {
+		w.pinch, w.pinchAt = math.NaN(), math.NaN()
+	}
+	for i := range w.segments {
+		s := &w.segments[i]
+		d := w.stream.sign * (s.T2 - w.stream.inT)
+		w.reach = math.Min(w.reach, d)
+		if !w.stream.known {
+			continue
+		}
+		w.note(d, s.to)
+		if s.zone == Condensing || s.zone == Evaporating {
+			w.note(w.stream.sign*(s.T2-w.stream.outT), s.to)
+		}
+	}
+}
+
+// crossMismatch is the mismatch of an exchanger in crossflow.
+func (w *work) crossMismatch(ua float64) float64 {
+	if w.reach < 0 {
+		return w.reach/crossReach - 1
+	}
+	var area float64 // shares of all zones together
+	for i := range w.segments {
+		area += w.crossShare(&w.segments[i], ua)
+	}
+	return 1/area - 1
+}
+
+// crossShare returns the share of area and stream that a dry segment takes in crossflow at the conductance ua of the whole.
+func (w *work) crossShare(s *segment, ua float64) float64 {
+	C := w.stream.capacity
+	heat := w.duty * (s.to - s.from)
+	most := math.Abs(s.T1 - w.stream.inT)
+	if glide := math.Abs(s.T1 - s.T2); glide > noGlide {
+		own := heat / glide // W/K, capacity flow of the refrigerant
+		miss := func(share float64) float64 {
+			return heatAside(w.arrangement, ua*s.ratio*share, own, share*C, most)/heat - 1
+		}
+		low, high := 0.0, 1.0
+		for miss(high) < 0 {
+			if low, high = high, 4*high; high > mostShare {
+				return math.Inf(1)
+			}
+		}
+		share, _ := bracketed(low, high, func(x float64) (float64, error) {
+			if x == 0 {
+				return -1, nil
+			}
+			return miss(x), nil
+		})
+		return share
+	}
+	return heat / (-math.Expm1(-ua*s.ratio/C) * C * most)
+}
+
+// mostShare bounds the search for a share of area; an exchanger that is so much too small has no point anyway.
+const mostShare = 1e6
+
+// heatAside returns the heat of a segment whose refrigerant has capacity flow own and whose stream has other, W/K, at the
+// largest difference of temperatures.
+func heatAside(a Arrangement, ua, own, other, most float64) float64 {
+	least, largest := own, other
+	if other < own {
+		least, largest = other, own
+	}
+	return effectiveness(a, ua/least, least/largest, other >= own) * least * most
+}
+
+// neededAside returns the conductance at which the zones' shares add up to the whole.
+func (w *work) neededAside(shares func(ua float64) float64) float64 {
+	if !w.stream.known || w.reach < 0 {
+		return math.NaN()
+	}
+	low, high := 0.0, w.duty // W/K; one kelvin
+	for range 60 {
+		if shares(high) <= 1 {
+			ua, _ := bracketed(low, high, func(ua float64) (float64, error) {
+				if ua == 0 {
+					return -1, nil
+				}
+				return 1/shares(ua) - 1, nil
+			})
+			return ua
+		}
+		low, high = high, 4*high
+	}
+	return math.Inf(1)
+}
