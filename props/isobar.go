@@ -80,8 +80,8 @@ func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
 		start.T = math.Min(math.Max(start.T, lo), hi)
 	} else if p < r.curve.PMin {
 		start = fluidState{T: lo, rho: p / (r.Rs * lo)}
-	} else if f, ok := r.compressed(p, y, v); ok {
-		start = f
+	} else if T, rho, ok := r.starts.near(p, y, r.ownDatum(y, v)); ok {
+		start.T, start.rho = T, rho
 	}
 	f, ok := r.newton2(p, y, v, start.T, start.rho)
 	if !ok || !(lo*(1-1e-9) <= f.T && f.T <= hi*(1+1e-9)) || !r.onSide(f, side) || !r.clearOfDome(f, p, -1e-8) {
@@ -116,6 +116,14 @@ func (r *Refrigerant) snap(d *dome, y Property, x float64) float64 {
 	return x
 }
 
+// ownDatum returns a caloric property as the equation itself counts it.
+func (r *Refrigerant) ownDatum(y Property, v float64) float64 {
+	if y == Entropy {
+		return v - r.s0
+	}
+	return v - r.h0
+}
+
 // along estimates where on an isobar property y is v, from a state on it whose derivatives are known.
 func along(f fluidState, y Property, v float64) fluidState {
 	have, yT, yRho := f.value(y)
@@ -132,20 +140,6 @@ func along(f fluidState, y Property, v float64) fluidState {
 	// Density falls with temperature, in a gas as 1/T, in a liquid by its expansivity.
 	beta := f.pT / (f.rho * f.pRho)
 	return fluidState{T: T, rho: f.rho * math.Pow(f.T/T, math.Min(math.Max(beta*f.T, 0.1), 3))}
-}
-
-// compressed estimates a state above the critical pressure from the critical isotherm: from its point at pressure p a
-// step along the isobar leads to where y is v, near enough for Newton's method when v is not far.
-func (r *Refrigerant) compressed(p float64, y Property, v float64) (fluidState, bool) {
-	T := r.curve.TCritical * math.Pow(p/r.curve.PCritical, 0.12) // near the ridge of the heat capacity
-	T = math.Min(T, r.reach().TemperatureMax)
-	var iso helmholtz.Isotherm
-	iso.Set(r.eq, T)
-	f, err := r.density(&iso, p, r.supercritical(T, p))
-	if err != nil {
-		return f, false
-	}
-	return along(f, y, v), true
 }
 
 // onSide reports whether a solution lies on the side of the dome that it was looked for.

@@ -40,13 +40,14 @@ type Refrigerant struct {
 
 // fluid is what all views of a refrigerant share.
 type fluid struct {
-	rec   data.Record
-	eq    *helmholtz.Equation
-	M     float64 // kg/mol
-	Rs    float64 // J/(kg K)
-	flow  *transport.Model
-	build sync.Once
-	made  *saturation.Curve
+	rec    data.Record
+	eq     *helmholtz.Equation
+	M      float64 // kg/mol
+	Rs     float64 // J/(kg K)
+	flow   *transport.Model
+	build  sync.Once
+	made   *saturation.Curve
+	starts starts // above the critical pressure
 }
 
 func newFluid(rec data.Record) (*fluid, error) {
@@ -74,13 +75,20 @@ func (f *fluid) saturation() *saturation.Curve {
 			panic("props: " + f.rec.ID + ": " + err.Error())
 		}
 		f.made = curve
+		f.starts = makeStarts(f.plain())
 	})
 	return f.made
 }
 
 // view returns the refrigerant with enthalpies and entropies as the equation itself counts them.
 func (f *fluid) view() *Refrigerant {
-	c := f.saturation()
+	f.saturation()
+	return f.plain()
+}
+
+// plain is view when the saturation curve has just been made.
+func (f *fluid) plain() *Refrigerant {
+	c := f.made
 	v := f.rec.Validity
 	_, liquid, _ := c.At(c.TMin)
 	return &Refrigerant{fluid: f, curve: c, limits: Limits{

@@ -94,8 +94,28 @@ func interpolate(points []point, s float64) point {
 	return out
 }
 
-// at solves the equilibrium at s, started from the trace.
+// at solves the equilibrium at s, started from the trace. Close to the critical point of an equation with non-analytic
+// terms the rounding of one solve would show in the curve; there it is averaged over neighbours so close that the curve
+// itself does not change.
 func (m *maker) at(s float64) (point, error) {
+	const near, several, apart = 0.05, 8, 1e-10
+	if !m.eq.HasPeaks() || s > near {
+		return m.once(s)
+	}
+	mean := point{s: s}
+	for i := range several {
+		p, err := m.once(s * (1 + apart*(float64(i)-float64(several-1)/2)))
+		if err != nil {
+			return point{}, err
+		}
+		mean.lnP += p.lnP / several
+		mean.liquid += p.liquid / several
+		mean.lnVapour += p.lnVapour / several
+	}
+	return mean, nil
+}
+
+func (m *maker) once(s float64) (point, error) {
 	i, _ := slices.BinarySearchFunc(m.trace, s, func(p point, s float64) int { return cmp.Compare(p.s, s) })
 	lo := min(max(0, i-2), len(m.trace)-4)
 	return m.solve(s, interpolate(m.trace[lo:lo+4], s))
@@ -114,10 +134,14 @@ func (m *maker) expand() error {
 	if err != nil {
 		return err
 	}
+	const quiet = 0.009
 	for lo := c.critical.hi; lo < sMax; {
 		hi := math.Min(sMax, lo+widest)
 		if sMax-hi < 0.01 { // no sliver at the end
 			hi = sMax
+		}
+		if m.eq.HasPeaks() && lo < quiet {
+			hi = quiet // 1 - T/Tc = 8e-5: keeps the noise of the phase solve nearer to the critical point in there
 		}
 		k, err := m.split(lo, hi)
 		if err != nil {
