@@ -1,0 +1,149 @@
+package readings
+
+import "dewmark/service/cycle"
+
+// Machine is what an installed machine is compared with. [Expected] makes one from a [machine.Machine].
+type Machine interface {
+	// Expect returns how the healthy machine would run with this source, sink and speed.
+	Expect(c *Conditions) (*Expectation, error)
+	// Flow returns the mass flow in kg/s that the compressor should move, by its map or its efficiencies, with the relative
+	// standard uncertainty of that. It returns an error where it cannot tell.
+	Flow(suctionPressure, suctionTemperature, dischargePressure, speed float64) (flow, relative float64, err error)
+}
+
+// Conditions are what a sample says of the surroundings. Values that are not read are NaN.
+type Conditions struct {
+	Source, Sink StreamConditions
+	Speed        float64 // 1/s
+	Ambient      float64 // K
+}
+
+// StreamConditions are what a sample says of a stream.
+type StreamConditions struct {
+	Stream
+	InletTemperature  float64 // K
+	OutletTemperature float64 // K
+	MassFlow          float64 // kg/s
+	VolumeFlow        float64 // m3/s
+	InletHumidity     float64 // relative
+	Pressure          float64 // Pa, of moist air; NaN for the standard atmosphere
+}
+
+// Feature names a number by which faults show.
+type Feature uint8
+
+// The features. Approaches are those of the leaving streams.
+const (
+	FeatureEvaporation      Feature = iota // K
+	FeatureLowPressure                     // Pa
+	FeatureSuperheat                       // K, at the compressor suction
+	FeatureCondensation                    // K
+	FeatureHighPressure                    // Pa
+	FeatureSubcooling                      // K
+	FeatureDischarge                       // K
+	FeaturePressureRatio                   //
+	FeatureCondenserChange                 // K, of the stream
+	FeatureEvaporatorChange                // K, of the stream
+	FeatureCondenserPinch                  // K, approach
+	FeatureEvaporatorPinch                 // K, approach
+	FeatureCapacity                        // W, that of the machine's purpose
+	FeaturePower                           // W
+	FeatureCount
+)
+
+var featureTable = [FeatureCount]struct {
+	name     string
+	quantity cycle.Quantity
+}{
+	{"t_evap", cycle.Temperature},
+	{"p_evap", cycle.Pressure},
+	{"superheat", cycle.TemperatureDifference},
+	{"t_cond", cycle.Temperature},
+	{"p_cond", cycle.Pressure},
+	{"subcooling", cycle.TemperatureDifference},
+	{"t_discharge", cycle.Temperature},
+	{"pressure_ratio", cycle.Dimensionless},
+	{"dt_condenser_fluid", cycle.TemperatureDifference},
+	{"dt_evaporator_fluid", cycle.TemperatureDifference},
+	{"approach_condenser", cycle.TemperatureDifference},
+	{"approach_evaporator", cycle.TemperatureDifference},
+	{"capacity", cycle.HeatFlow},
+	{"power", cycle.Power},
+}
+
+func (f Feature) String() string {
+	if f >= FeatureCount {
+		return ""
+	}
+	return featureTable[f].name
+}
+
+// Quantity returns the kind of quantity of the feature.
+func (f Feature) Quantity() cycle.Quantity { return featureTable[f].quantity }
+
+// Expectation is how a healthy machine would run. Values that it does not tell are NaN.
+type Expectation struct {
+	Features [FeatureCount]float64
+	// Standard holds the standard uncertainties of the expected values, SI.
+	Standard [FeatureCount]float64
+	Cautions []Caution
+}
+
+// Comparison holds what is measured against what is expected.
+type Comparison struct {
+	Residuals []Residual
+	// ChiSquared sums the squares of all residuals in units of their joint uncertainty; above Limit, chance explains them in
+	// less than 1 of 20 cases.
+	ChiSquared, Limit float64
+	Degrees           int
+}
+
+// Deviates reports whether the residuals show more than chance.
+func (c *Comparison) Deviates() bool { return c.ChiSquared > c.Limit }
+
+// Residual is a feature that is both measured and expected.
+type Residual struct {
+	Feature            Feature
+	Measured, Expected float64
+	Standard           float64 // of the difference: of measurement and expectation together
+	Normalised         float64 // difference over Standard
+}
+
+// Indication is a fault that the residuals may point to. It is never a verdict.
+type Indication struct {
+	Fault  string
+	Source string // of its signs
+	// Score is the mean logarithm of the probability that the true residuals have the signs of the fault, at most 0.
+	Score        float64
+	For, Against []Evidence // the strongest first
+}
+
+// Evidence is a feature with the sign that the fault has in it.
+type Evidence struct {
+	Feature     Feature
+	Sign        Sign
+	Normalised  float64 // residual over its standard uncertainty
+	Probability float64 // that the true residual has the sign
+	Strong      bool    // residual beyond twice its standard uncertainty
+}
+
+// Sign is the direction of a residual.
+type Sign uint8
+
+// The signs.
+const (
+	Falls       Sign = iota + 1 // -
+	Stays                       // 0
+	Rises                       // +
+	StaysOrFall                 // 0 or -
+	StaysOrRise                 // 0 or +
+)
+
+var signNames = [...]string{"", "-", "0", "+", "0 or -", "0 or +"}
+
+func (s Sign) String() string {
+	if int(s) >= len(signNames) {
+		return ""
+	}
+	return signNames[s]
+}

@@ -1,0 +1,66 @@
+package readings
+
+import "strings"
+
+// Code is a stable name for a reason to refuse.
+type Code string
+
+// The reasons to refuse an installation or a sample.
+const (
+	Missing     Code = "missing"       // a field that is needed
+	Surplus     Code = "surplus"       // a field that contradicts another or does not belong here
+	OutOfBounds Code = "out_of_bounds" // a number outside what it can be
+	NotAllowed  Code = "not_allowed"   // a choice that does not exist here
+	NoState     Code = "no_state"      // a secondary fluid has no such state within its limits
+)
+
+// Refusal says why one field cannot be.
+type Refusal struct {
+	Code    Code
+	Field   string  // path of the field to blame, such as "sink.volume_flow"; "" when it is the whole
+	Message Message // what was wrong and what is allowed
+	Cause   error   // of a property model, or nil
+}
+
+// RefusedError reports an installation or a sample that cannot be. It lists every field at fault.
+type RefusedError struct{ Refusals []Refusal }
+
+func (e *RefusedError) Error() string {
+	texts := make([]string, len(e.Refusals))
+	for i, r := range e.Refusals {
+		texts[i] = r.Message.String()
+		if r.Field != "" {
+			texts[i] = r.Field + ": " + texts[i]
+		}
+		if r.Cause != nil {
+			texts[i] += ": " + r.Cause.Error()
+		}
+	}
+	return "readings: " + strings.Join(texts, "; ")
+}
+
+// Unwrap returns the errors behind the refusals.
+func (e *RefusedError) Unwrap() []error {
+	var causes []error
+	for _, r := range e.Refusals {
+		if r.Cause != nil {
+			causes = append(causes, r.Cause)
+		}
+	}
+	return causes
+}
+
+// refusals collects what is wrong.
+type refusals []Refusal
+
+func (r *refusals) add(code Code, field string, m Message) {
+	*r = append(*r, Refusal{Code: code, Field: field, Message: m})
+}
+
+// err returns what was wrong, or nil.
+func (r refusals) err() error {
+	if len(r) == 0 {
+		return nil
+	}
+	return &RefusedError{r}
+}

@@ -1,0 +1,99 @@
+package uncertainty
+
+import (
+	"cmp"
+	"math"
+	"slices"
+)
+
+// Estimate is a result with its uncertainty to first order. A result that is not known is NaN throughout.
+type Estimate struct {
+	Value            float64
+	Standard         float64 // combined standard uncertainty
+	Expanded         float64 // CoverageFactor times Standard
+	CoverageFactor   float64
+	DegreesOfFreedom float64 // effective; infinite where all inputs' are
+	Budget           []Share // nil without inputs; the largest share first
+}
+
+// NoEstimate is the estimate of what is not known.
+var NoEstimate = Estimate{math.NaN(), math.NaN(), math.NaN(), math.NaN(), math.NaN(), nil}
+
+// Known reports whether there is a result.
+func (e *Estimate) Known() bool { return !math.IsNaN(e.Value) }
+
+// Share is what one input adds to the uncertainty of a result.
+type Share struct {
+	Input       string
+	Sensitivity float64 // partial derivative of the result by the input, SI
+	Standard    float64 // of the input, SI
+	// Share is the part of the variance: (c u)² / u_c², and half of what the correlations with other inputs add, which may
+	// leave it below zero. Shares add up to 1.
+	Share   float64
+	Assumed bool // the input's uncertainty is a default
+}
+
+// Estimate returns a result with its uncertainty at a coverage. The budget is appended to room, and the rest of room
+// returned.
+func (in *Inputs) Estimate(y Linear, p Coverage, room []Share) (Estimate, []Share) {
+	if !y.Known() {
+		return NoEstimate, room
+	}
+	e := Estimate{Value: y.Value, Standard: in.Standard(y), DegreesOfFreedom: math.Inf(1)}
+	if !(e.Standard > 0) || math.IsInf(e.Standard, 0) {
+		e.CoverageFactor = p.Factor(0)
+		e.Expanded = e.CoverageFactor * e.Standard
+		return e, room
+	}
+	from := len(room)
+	variance := e.Standard * e.Standard
+	for i := range in.List {
+		x := &in.List[i]
+		if c := y.slopes[i]; c != 0 {
+			room = append(room, Share{x.Name, c, x.Standard, c * x.Standard * in.leaning(y, i) / variance, x.Assumed})
+		}
+	}
+	e.Budget = room[from:len(room):len(room)]
+	slices.SortStableFunc(e.Budget, func(a, b Share) int { return cmp.Compare(b.Share, a.Share) })
+	e.DegreesOfFreedom = in.degrees(y, variance)
+	e.CoverageFactor = p.Factor(e.DegreesOfFreedom)
+	e.Expanded = e.CoverageFactor * e.Standard
+	return e, room
+}
+
+// leaning returns the covariance of a result with input i over the input's standard uncertainty.
+func (in *Inputs) leaning(y Linear, i int) float64 {
+	v := y.slopes[i] * in.List[i].Standard
+	for _, k := range in.Correlations {
+		switch i {
+		case k.A:
+			v += k.Coefficient * y.slopes[k.B] * in.List[k.B].Standard
+		case k.B:
+			v += k.Coefficient * y.slopes[k.A] * in.List[k.A].Standard
+		}
+	}
+	return v
+}
+
+// degrees returns the effective degrees of freedom by the formula of Welch and Satterthwaite (JCGM 100, eq G.2b). It
+// holds for independent inputs: where two that are correlated have finite ones, the result has at most the fewer.
+func (in *Inputs) degrees(y Linear, variance float64) float64 {
+	var sum float64
+	for i := range in.List {
+		if x := &in.List[i]; x.DegreesOfFreedom > 0 {
+			part := y.slopes[i] * x.Standard
+			sum += part * part * part * part / x.DegreesOfFreedom
+		}
+	}
+	if sum == 0 {
+		return math.Inf(1)
+	}
+	nu := variance * variance / sum
+	for _, k := range in.Correlations {
+		a, b := in.List[k.A].DegreesOfFreedom, in.List[k.B].DegreesOfFreedom
+		if a > 0 && b > 0 && y.slopes[k.A] != 0 && y.slopes[k.B] != 0 {
+			nu = math.Min(nu, math.Min(a, b))
+		}
+	}
+	return nu
+}
