@@ -138,7 +138,7 @@ func ExampleDatum() {
 	}
 	_, err = catalogue.Refrigerant("R718", props.ASHRAE)
 	if e, ok := errors.AsType[*props.DatumError](err); ok {
-		fmt.Println("water allows", e.Allowed)
+		fmt.Printf("water allows %v\n", e.Allowed)
 	}
 	// Output:
 	// IIR    h' = 256.41, h" = 419.43, difference 163.02 kJ/kg

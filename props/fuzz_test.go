@@ -19,7 +19,7 @@ func FuzzStates(f *testing.F) {
 		index := uint8(0)
 		for k, name := range names {
 			if name == id {
-				index = uint8(k) //nolint:gosec // fewer than 256 refrigerants
+				index = uint8(k)
 			}
 		}
 		critical := r.Critical()
@@ -38,7 +38,7 @@ func FuzzStates(f *testing.F) {
 			}
 			for k, pair := range allPairs() {
 				if (i+j+k)%4 == 0 {
-					f.Add(index, uint8(k), value(s, pair[0]), value(s, pair[1])) //nolint:gosec // 21 pairs
+					f.Add(index, uint8(k), value(s, pair[0]), value(s, pair[1]))
 				}
 			}
 		}

@@ -147,7 +147,8 @@ func (r *Refrigerant) SaturationLimits() (T, p float64) { return r.curve.TMin, r
 // SaturationBounds returns the largest relative errors of the saturation curve that were measured when it was made.
 func (r *Refrigerant) SaturationBounds() saturation.Bounds { return r.curve.Bounds() }
 
-// NormalBoilingPoint returns the boiling temperature at 101.325 kPa in K, or NaN when the refrigerant sublimes there.
+// NormalBoilingPoint returns the boiling temperature at 101.325 kPa in K, or NaN when the saturation curve begins above
+// that pressure: R744 sublimes there, the ranges of R161 and R1132(E) do not reach it.
 func (r *Refrigerant) NormalBoilingPoint() float64 {
 	T, err := r.SaturationTemperature(StandardAtmosphere)
 	if err != nil {

@@ -261,8 +261,15 @@ func TestUnknownRefrigerant(t *testing.T) {
 		name string
 		want string // among the suggestions, or empty for none at all
 	}{
-		{"R134", "R134a"}, {"R290a", "R290"}, {"propan", "R290"}, {"amonia", "R717"}, {"R7444", "R744"},
-		{"", ""}, {"xyzzyxyzzy", ""}, {strings.Repeat("R134a", 1000), ""}, {"\x00\xff", ""},
+		{"R134", "R134a"},
+		{"R290a", "R290"},
+		{"propan", "R290"},
+		{"amonia", "R717"},
+		{"R7444", "R744"},
+		{"", ""},
+		{"xyzzyxyzzy", ""},
+		{strings.Repeat("R134a", 1000), ""},
+		{"\x00\xff", ""},
 	} {
 		_, err := catalogue(t).Refrigerant(tt.name, props.DefaultDatum)
 		e, ok := errors.AsType[*props.UnknownRefrigerantError](err)
@@ -279,12 +286,19 @@ func TestUnknownRefrigerant(t *testing.T) {
 			}
 		}
 	}
-	for name, want := range map[string]string{
-		"r134a": "R134a", "R-134a": "R134a", "HFC-134a": "R134a", " r 1234 ZE (e) ": "R1234ze(E)", "CO2": "R744", "propane": "R290", "Ammonia": "R717", "water": "R718",
+	for _, tt := range [][2]string{
+		{"r134a", "R134a"},
+		{"R-134a", "R134a"},
+		{"HFC-134a", "R134a"},
+		{" r 1234 ZE (e) ", "R1234ze(E)"},
+		{"CO2", "R744"},
+		{"propane", "R290"},
+		{"Ammonia", "R717"},
+		{"water", "R718"},
 	} {
-		r, err := catalogue(t).Refrigerant(name, props.DefaultDatum)
-		if err != nil || r.Designation() != want {
-			t.Errorf("%q: %v, want %s", name, err, want)
+		r, err := catalogue(t).Refrigerant(tt[0], props.DefaultDatum)
+		if err != nil || r.Designation() != tt[1] {
+			t.Errorf("%q: %v, want %s", tt[0], err, tt[1])
 		}
 	}
 }

@@ -4,6 +4,7 @@ import (
 	"math"
 	"math/big"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"dewmark/props/helmholtz"
@@ -66,7 +67,7 @@ func withBlends(t *testing.T) []*subject {
 	t.Helper()
 	all := equations(t)
 	for _, id := range []string{"R404A", "R407C", "R410A", "R507A"} {
-		all = append(all[:len(all):len(all)], pseudoPure(t, id).subject)
+		all = append(slices.Clip(all), pseudoPure(t, id).subject)
 	}
 	return all
 }

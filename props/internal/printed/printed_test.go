@@ -10,8 +10,12 @@ func TestParse(t *testing.T) {
 		text string
 		want Value
 	}{
-		{"51.21", Value{51.21, 0.005}}, {"-2.30", Value{-2.3, 0.005}}, {"1001", Value{1001, 0.5}},
-		{"753625.00", Value{753625, 0.005}}, {"0.353658941e4", Value{3536.58941, 5e-6}}, {"1.2e-3", Value{0.0012, 5e-5}},
+		{"51.21", Value{51.21, 0.005}},
+		{"-2.30", Value{-2.3, 0.005}},
+		{"1001", Value{1001, 0.5}},
+		{"753625.00", Value{753625, 0.005}},
+		{"0.353658941e4", Value{3536.58941, 5e-6}},
+		{"1.2e-3", Value{0.0012, 5e-5}},
 	} {
 		got, err := Parse(tt.text)
 		if err != nil || got.V != tt.want.V || math.Abs(got.Half/tt.want.Half-1) > 1e-12 {
