@@ -59,6 +59,9 @@ func (s *solver) quality(fixed Property, value, q float64) ([]result, error) {
 			}
 		}
 		if len(out) == 0 {
+			if fixed == Pressure && q == 0 {
+				bottom = s.d.min[dense].p
+			}
 			return nil, s.outOfRange(fixed, value, bottom, s.lineEnd(fixed, q), LimitEnvelope)
 		}
 		return out, nil
