@@ -221,3 +221,26 @@ func BenchmarkDecode(b *testing.B) {
 		})
 	}
 }
+
+// FuzzDecodeQuery checks that no query panics, and that a refused one gets a problem that points somewhere.
+func FuzzDecodeQuery(f *testing.F) {
+	for _, query := range []string{
+		"refrigerant=R290&temperature=5&pressure=400&system=IP", "units.pressure=bar(g)&site.altitude=450&extrapolate=true&properties=density,enthalpy",
+		"temperature=NaN&temperature=1", "units=SI&units.system=SI", "a.b.c=1&a.b=2&a=3", "temperature={}&site=[[[", ".=1&=2", "quality=1e999&id=%ff",
+	} {
+		f.Add(query)
+	}
+	f.Fuzz(func(t *testing.T, text string) {
+		query, err := url.ParseQuery(text)
+		if err != nil {
+			return
+		}
+		var req singleStateRequest
+		if err := decodeQuery(query, &req); err != nil {
+			p, ok := errors.AsType[*Problem](err)
+			if !ok || p.Status != 400 && p.Status != 422 || len(p.Errors) == 0 || !strings.HasPrefix(p.Errors[0].Pointer, "#") {
+				t.Fatalf("%q: %v", text, err)
+			}
+		}
+	})
+}

@@ -20,7 +20,7 @@ func (a *API) observe(c *gin.Context) {
 		seconds, status := a.now().Sub(start).Seconds(), c.Writer.Status()
 		route := cmp.Or(c.FullPath(), "unmatched") // never the raw path, of which there is no end
 		a.metrics.request(route, methodLabel(c.Request.Method), strconv.Itoa(status), seconds)
-		a.log.LogAttrs(c.Request.Context(), levelFor(status), "request",
+		a.log.LogAttrs(c.Request.Context(), levelFor(route, status), "request",
 			slog.String("method", c.Request.Method), slog.String("route", route), slog.Int("status", status),
 			slog.Float64("duration_s", seconds), slog.Int("bytes", max(c.Writer.Size(), 0)), slog.Any("err", c.Errors.Errors()))
 	}()
@@ -28,8 +28,10 @@ func (a *API) observe(c *gin.Context) {
 }
 
 // levelFor keeps probes and good answers out of a log at the default level.
-func levelFor(status int) slog.Level {
+func levelFor(route string, status int) slog.Level {
 	switch {
+	case route == "/readyz" || route == "/livez":
+		return slog.LevelDebug
 	case status >= http.StatusInternalServerError && status != http.StatusServiceUnavailable:
 		return slog.LevelError
 	case status >= http.StatusBadRequest:

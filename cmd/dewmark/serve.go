@@ -100,7 +100,7 @@ func (s *settings) serve(ctx context.Context, log *slog.Logger) error {
 	case <-ctx.Done():
 	}
 	a.Drain()
-	log.LogAttrs(ctx, slog.LevelInfo, "stopping", slog.Duration("drain", s.drain))
+	log.LogAttrs(ctx, slog.LevelInfo, "stopping", slog.Float64("drain_s", s.drain.Seconds()))
 	deadline, cancel := context.WithTimeout(context.WithoutCancel(ctx), s.drain)
 	defer cancel()
 	for _, srv := range servers {
