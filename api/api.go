@@ -140,6 +140,9 @@ func (a *API) Warm(ctx context.Context) error {
 	return nil
 }
 
+// WarmBlends prepares the blends, which takes a second or two. The API is ready without it.
+func (a *API) WarmBlends(ctx context.Context) error { return a.catalogue.WarmBlends(ctx) }
+
 // Drain turns the API not ready, so that no new traffic is sent to it. It goes on answering.
 func (a *API) Drain() { a.setReady(false) }
 

@@ -35,12 +35,9 @@ type caution struct {
 	Detail string `json:"detail"`
 }
 
-// modelKind is what all refrigerants are computed from.
-const modelKind = "equation of state explicit in the Helmholtz energy"
-
 // job is a calculation whose refrigerant, datum and units are known.
 type job struct {
-	r           *props.Refrigerant
+	r           props.Refrigerant
 	extrapolate bool
 	units       *units
 	basis       basis
@@ -58,10 +55,11 @@ func (a *API) begin(c *calculation) (*job, error) {
 		return nil, err
 	}
 	if c.Extrapolate {
-		r = r.Extrapolate()
+		r = props.Extrapolate(r)
 	}
+	id := r.Identity()
 	j := &job{r: r, extrapolate: c.Extrapolate, units: u, cautions: []caution{}, basis: basis{
-		Refrigerant: r.Designation(), Model: modelKind, Source: r.Record().Source, Datum: r.Datum().String(), Version: a.version,
+		Refrigerant: r.Designation(), Model: id.Model, Source: id.Source, Datum: r.Datum().String(), Version: a.version,
 	}}
 	if c.Datum == "" && r.Datum() != props.IIR {
 		j.caution("datum_not_defined", r.Designation()+" has no saturated liquid at 0 °C, so that IIR, the datum by default, is not defined; "+
@@ -71,7 +69,7 @@ func (a *API) begin(c *calculation) (*job, error) {
 }
 
 // refrigerant finds the refrigerant of a request, counting from the datum with that name.
-func (a *API) refrigerant(name, datum string) (*props.Refrigerant, error) {
+func (a *API) refrigerant(name, datum string) (props.Refrigerant, error) {
 	d, ok := props.ParseDatum(datum)
 	if !ok && datum != "" {
 		return nil, invalid([]MemberError{{

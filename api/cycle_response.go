@@ -225,7 +225,7 @@ func (j *job) repeat(cautions []cycle.Caution, extrapolated bool) {
 }
 
 // handling is the caution that goes with whatever someone might build, charge or wire by.
-func handling(r *props.Refrigerant, upper []*job) string {
+func handling(r props.Refrigerant, upper []*job) string {
 	classes := []string{safetyOf(r)}
 	for _, above := range upper {
 		classes = append(classes, safetyOf(above.r))
@@ -234,8 +234,8 @@ func handling(r *props.Refrigerant, upper []*job) string {
 		"; a calculation aid only: equipment documentation, local codes and a licensed person decide what may be charged, pressurised or wired"
 }
 
-func safetyOf(r *props.Refrigerant) string {
-	if class := r.Record().Classification.SafetyClass; class != nil {
+func safetyOf(r props.Refrigerant) string {
+	if class := r.Identity().Classification.SafetyClass; class != nil {
 		return r.Designation() + " has safety class " + *class
 	}
 	return r.Designation() + " has no safety class on record and is to be treated as flammable and toxic"

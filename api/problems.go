@@ -120,7 +120,7 @@ func problemFor(err error) *Problem {
 // for properties, and where they stand. The zero value speaks SI of a request's refrigerant and datum.
 type voice struct {
 	units *units
-	r     *props.Refrigerant
+	r     props.Refrigerant
 	at    string // pointer to the item
 	given []given
 }

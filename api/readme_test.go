@@ -4,14 +4,18 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"maps"
 	"math"
 	"net/http"
 	"net/http/httptest"
 	"os"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
+
+	"github.com/prometheus/client_golang/prometheus"
 )
 
 // The README promises its readers the answers that it prints, numbers to the last few digits.
@@ -54,6 +58,42 @@ func TestReadmeAnswers(t *testing.T) {
 			}
 			compareJSON(t, "", any(want), any(got))
 		})
+	}
+}
+
+// The README's table of metrics has all of our own, and no other.
+func TestReadmeMetrics(t *testing.T) {
+	text, err := os.ReadFile("../README.md")
+	if err != nil {
+		t.Fatal(err)
+	}
+	_, table, found := strings.Cut(string(text), "\nMetrics for Prometheus")
+	table, _, _ = strings.Cut(table, "\n## ")
+	if !found {
+		t.Fatal("README.md has no table of metrics")
+	}
+	listed := map[string]bool{}
+	for row := range strings.SplitSeq(table, "\n") {
+		if cells := strings.Split(row, "|"); len(cells) > 2 {
+			for _, name := range regexp.MustCompile("`([a-z_]+)`").FindAllStringSubmatch(cells[1], -1) {
+				listed["dewmark_"+name[1]] = true
+			}
+		}
+	}
+	registered := map[string]bool{}
+	a := newAPI(t, func(*Options) {})
+	descriptions := make(chan *prometheus.Desc)
+	go func() {
+		a.registry.Describe(descriptions)
+		close(descriptions)
+	}()
+	for d := range descriptions {
+		if m := regexp.MustCompile(`fqName: "(dewmark_[a-z_]+)"`).FindStringSubmatch(d.String()); m != nil {
+			registered[m[1]] = true
+		}
+	}
+	if !maps.Equal(listed, registered) {
+		t.Errorf("README.md lists %v, the service has %v", slices.Sorted(maps.Keys(listed)), slices.Sorted(maps.Keys(registered)))
 	}
 }
 

@@ -46,7 +46,7 @@ type refrigerantDetail struct {
 	Aliases                []string          `json:"aliases"`
 	TripleTemperature      *float64          `json:"triple_temperature"`
 	DensityMax             float64           `json:"density_max"`
-	AcentricFactor         float64           `json:"acentric_factor"`
+	AcentricFactor         *float64          `json:"acentric_factor"`
 	Datums                 []string          `json:"datums"` // its default first
 	ODP                    *float64          `json:"odp"`
 	GWP                    gwp               `json:"gwp"`
@@ -161,8 +161,8 @@ func (a *API) describeRefrigerant(c *gin.Context) (any, error) {
 		}
 		return nil, p
 	}
-	rec, limits := r.Record(), r.Limits()
-	class := &rec.Classification
+	id, limits := r.Identity(), r.Limits()
+	class := &id.Classification
 	concentration := func(x *float64) *float64 {
 		if x == nil {
 			return nil
@@ -171,17 +171,17 @@ func (a *API) describeRefrigerant(c *gin.Context) (any, error) {
 	}
 	d := refrigerantDetail{
 		refrigerantSummary: summarise(r, u),
-		MolarMass:          tidy(u.out(kindMolarMass, r.MolarMass())), Formula: rec.Formula, CAS: rec.CAS, Aliases: append([]string{}, rec.Aliases...),
-		DensityMax: tidy(u.out(kindDensity, limits.DensityMax)), AcentricFactor: rec.Acentric, Datums: datumNames(r.Datums()),
+		MolarMass:          tidy(u.out(kindMolarMass, r.MolarMass())), Formula: id.Formula, CAS: id.CAS, Aliases: append([]string{}, id.Aliases...),
+		DensityMax: tidy(u.out(kindDensity, limits.DensityMax)), AcentricFactor: known(id.Acentric), Datums: datumNames(r.Datums()),
 		ODP: class.ODP, GWP: gwp(class.GWP100),
 		LowerFlammabilityLimit: concentration(class.LowerFlammabilityLimit), ToxicityLimit: concentration(class.ToxicityLimit),
 		PracticalLimit: concentration(class.PracticalLimit), ConcentrationLimit: concentration(class.ConcentrationLimit),
 		TypicalUse: class.TypicalUse, Notes: class.Notes, Provenance: provenance(class.Provenance),
-		Model: model{modelKind, rec.Source, rec.Notes, rec.Verification}, Transport: transportModels(r, u),
+		Model: model{id.Model, id.Source, id.Notes, id.Verification}, Transport: transportModels(r, u),
 		Units:    u.names(kindTemperature, kindPressure, kindDensity, kindMolarMass),
 		Cautions: []caution{safetyCaution},
 	}
-	if t := rec.TripleTemperature; t != nil {
+	if t := id.TripleTemperature; t != nil {
 		d.TripleTemperature = new(tidy(u.out(kindTemperature, *t)))
 	}
 	if class.SafetyClass == nil {
@@ -194,15 +194,18 @@ var safetyCaution = caution{
 	"safety_data", "classification and limits are for orientation; the edition of the standard in force, the safety data sheet, local codes and a licensed person decide",
 }
 
-func summarise(r *props.Refrigerant, u *units) refrigerantSummary {
-	rec, limits, critical := r.Record(), r.Limits(), r.Critical()
+func summarise(r props.Refrigerant, u *units) refrigerantSummary {
+	id, limits, critical := r.Identity(), r.Limits(), r.Critical()
 	s := refrigerantSummary{
-		Designation: rec.ID, Name: rec.Name, Kind: "pure", Composition: []fraction{{rec.ID, 1}},
-		SafetyClass: rec.Classification.SafetyClass, GWP100: rec.Classification.GWP100.AR6,
+		Designation: id.Designation, Name: id.Name, Kind: string(id.Kind),
+		SafetyClass: id.Classification.SafetyClass, GWP100: id.Classification.GWP100.AR6,
 		CriticalTemperature: u.out(kindTemperature, critical.T), CriticalPressure: u.out(kindPressure, critical.P),
 		CriticalDensity: u.out(kindDensity, critical.Rho), NormalBoilingPoint: known(u.out(kindTemperature, r.NormalBoilingPoint())),
 		TemperatureMin: tidy(u.out(kindTemperature, limits.TemperatureMin)), TemperatureMax: tidy(u.out(kindTemperature, limits.TemperatureMax)),
 		PressureMax: tidy(u.out(kindPressure, limits.PressureMax)),
+	}
+	for _, c := range id.Composition {
+		s.Composition = append(s.Composition, fraction(c))
 	}
 	return s
 }

@@ -82,7 +82,7 @@ type transportUncertainty struct {
 var transportProperties = []transport.Property{transport.Viscosity, transport.ThermalConductivity, transport.SurfaceTension}
 
 // transportModels describes all models of a refrigerant, the recommended one of each property first.
-func transportModels(r *props.Refrigerant, u *units) []transportModel {
+func transportModels(r props.Refrigerant, u *units) []transportModel {
 	models := []transportModel{}
 	for _, p := range transportProperties {
 		for _, rec := range r.TransportRecords(p) {
@@ -109,7 +109,7 @@ type transportBasis struct {
 }
 
 // transportBases lists the recommended models of the properties that shown shows.
-func transportBases(r *props.Refrigerant, shown *selection) []transportBasis {
+func transportBases(r props.Refrigerant, shown *selection) []transportBasis {
 	var bases []transportBasis
 	if !shown.transport {
 		return nil

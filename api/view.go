@@ -26,29 +26,33 @@ var noTransport = props.Transport{
 }
 
 // surround makes s the state, with the saturation at its pressure when it is wanted.
-func (around *solved) surround(r *props.Refrigerant, s props.State, wanted *selection) {
+func (around *solved) surround(r props.Refrigerant, s props.State, wanted *selection) {
 	nan := math.NaN()
 	*around = solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan, transport: noTransport}
 	if !wanted.saturation {
 		return
 	}
-	T := s.T // of a state inside the dome, its ends included
-	if math.IsNaN(s.Quality) {
-		var err error
-		if T, err = r.SaturationTemperature(s.P); err != nil {
-			return
-		}
+	bubble, err := r.BubbleTemperature(s.P)
+	if err != nil {
+		return
 	}
-	around.bubble, around.dew = T, T
-	switch {
+	dew, err := r.DewTemperature(s.P)
+	if err != nil {
+		return
+	}
+	around.bubble, around.dew = bubble, dew
+	switch { // the ends of the dome exactly, in spite of rounding
 	case s.Quality == 0:
-		around.subcooling = 0
+		around.bubble, around.subcooling = s.T, 0
 	case s.Quality == 1:
-		around.superheat = 0
+		around.dew, around.superheat = s.T, 0
 	case s.Phase == props.Liquid:
-		around.subcooling = T - s.T
+		around.subcooling = bubble - s.T
 	case s.Phase == props.Vapour:
-		around.superheat = s.T - T
+		around.superheat = s.T - dew
+	}
+	if _, pure := r.(*props.Pure); pure && !math.IsNaN(s.Quality) {
+		around.bubble, around.dew = s.T, s.T
 	}
 }
 

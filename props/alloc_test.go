@@ -9,7 +9,7 @@ import (
 
 // operations are the calls whose cost a caller in a loop counts on, around a vapour and its neighbours that every
 // refrigerant has.
-func operations(t testing.TB, r *props.Refrigerant) map[string]func() (props.State, error) {
+func operations(t testing.TB, r *props.Pure) map[string]func() (props.State, error) {
 	t.Helper()
 	c := r.Critical()
 	T := 0.85 * c.T
@@ -39,7 +39,7 @@ func operations(t testing.TB, r *props.Refrigerant) map[string]func() (props.Sta
 }
 
 func TestNoAllocation(t *testing.T) {
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		for name, f := range operations(t, refrigerant(t, id)) {
 			n := testing.AllocsPerRun(10, func() {
 				s, err := f()

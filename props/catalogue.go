@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"context"
 	"fmt"
+	"maps"
 	"runtime"
 	"slices"
 	"strconv"
@@ -12,14 +13,17 @@ import (
 	"sync/atomic"
 	"unicode"
 
+	"dewmark/props/blend"
 	"dewmark/props/data"
 )
 
-// Catalogue holds every refrigerant of the embedded data. It is safe for concurrent use.
+// Catalogue holds every refrigerant of the embedded data, pure ones and blends. It is safe for concurrent use.
 type Catalogue struct {
-	fluids []*fluid // in natural order of designation
-	byName map[string]*fluid
-	warmed atomic.Int64
+	library *blend.Library
+	blends  map[string]string // designation by folded name
+	fluids  []*fluid          // in natural order of designation
+	byName  map[string]*fluid
+	warmed  atomic.Int64
 }
 
 // NewCatalogue reads the embedded coefficient files. The saturation curve of a refrigerant is made when it is first
@@ -47,12 +51,32 @@ func NewCatalogue() (*Catalogue, error) {
 	if err := addTransport(c.fluids); err != nil {
 		return nil, err
 	}
+	if c.library, err = blend.NewLibrary(records); err != nil {
+		return nil, err
+	}
+	c.blends = map[string]string{}
+	for _, b := range c.library.Listed() {
+		c.blends[foldName(b.Designation)] = b.Designation
+	}
 	slices.SortFunc(c.fluids, func(a, b *fluid) int { return compareDesignations(a.rec.ID, b.rec.ID) })
 	return c, nil
 }
 
 // Designations returns the ISO 817 designation of every refrigerant in natural order: R32 before R134a before R1234yf.
 func (c *Catalogue) Designations() []string {
+	names := make([]string, 0, len(c.fluids)+len(c.blends))
+	for _, f := range c.fluids {
+		names = append(names, f.rec.ID)
+	}
+	for _, b := range c.library.Listed() {
+		names = append(names, b.Designation)
+	}
+	slices.SortFunc(names, compareDesignations)
+	return names
+}
+
+// PureDesignations is [Catalogue.Designations] without the blends.
+func (c *Catalogue) PureDesignations() []string {
 	names := make([]string, len(c.fluids))
 	for i, f := range c.fluids {
 		names[i] = f.rec.ID
@@ -63,7 +87,23 @@ func (c *Catalogue) Designations() []string {
 // Refrigerant returns the refrigerant called name, its enthalpies and entropies counted from datum. Spelling is
 // forgiving: case, spaces, hyphens and brackets do not matter, trade prefixes such as HFC and common names are known.
 // It returns an [*UnknownRefrigerantError] or a [*DatumError].
-func (c *Catalogue) Refrigerant(name string, datum Datum) (*Refrigerant, error) {
+func (c *Catalogue) Refrigerant(name string, datum Datum) (Refrigerant, error) {
+	if designation, ok := c.blends[foldName(name)]; ok {
+		b, err := c.library.Blend(designation, datum)
+		if err != nil {
+			return nil, err
+		}
+		return c.newBlend(b)
+	}
+	r, err := c.Pure(name, datum)
+	if err != nil {
+		return nil, err
+	}
+	return r, nil
+}
+
+// Pure is [Catalogue.Refrigerant] for a refrigerant that is not a blend.
+func (c *Catalogue) Pure(name string, datum Datum) (*Pure, error) {
 	f, ok := c.byName[foldName(name)]
 	if !ok {
 		return nil, &UnknownRefrigerantError{Name: name, Suggestions: c.near(name)}
@@ -71,7 +111,29 @@ func (c *Catalogue) Refrigerant(name string, datum Datum) (*Refrigerant, error) 
 	return f.withDatum(datum)
 }
 
-// Warm makes the saturation curves of all refrigerants on all cores. It returns early with the cause when ctx ends.
+// Mixture returns a mixture of refrigerants by mass or mole fractions; the names of the components may be spelt as in
+// [Catalogue.Refrigerant]. A pair of components without published parameters is modelled by combining rules and shows in
+// [Refrigerant.Reservations]; one whose parameters nobody has tested needs acceptUnverified. The call follows the phase
+// envelope, which takes some 10 to 100 ms, so that callers keep the result. It returns an [*UnknownRefrigerantError], a
+// [*blend.CompositionError], a [*blend.EnvelopeError], a [*blend.UnverifiedPairError] or a [*DatumError].
+func (c *Catalogue) Mixture(composition blend.Composition, datum Datum, acceptUnverified bool) (*Blend, error) {
+	shares := slices.Clone(composition.Shares)
+	for i := range shares {
+		f, ok := c.byName[foldName(shares[i].Designation)]
+		if !ok {
+			return nil, &UnknownRefrigerantError{Name: shares[i].Designation, Suggestions: c.near(shares[i].Designation)}
+		}
+		shares[i].Designation = f.rec.ID
+	}
+	composition.Shares = shares
+	b, err := c.library.Mixture(composition, datum, acceptUnverified)
+	if err != nil {
+		return nil, err
+	}
+	return c.newBlend(b)
+}
+
+// Warm makes the saturation curves of all pure refrigerants on all cores. It returns early with the cause when ctx ends.
 func (c *Catalogue) Warm(ctx context.Context) error {
 	var wg sync.WaitGroup
 	var next atomic.Int64
@@ -91,6 +153,20 @@ func (c *Catalogue) Warm(ctx context.Context) error {
 	return context.Cause(ctx)
 }
 
+// WarmBlends makes the phase envelopes of all listed blends, one after the other: some 30 ms each, otherwise spent by the
+// first request for a blend. It returns early with the cause when ctx ends, and the first failure.
+func (c *Catalogue) WarmBlends(ctx context.Context) error {
+	for _, b := range c.library.Listed() {
+		if ctx.Err() != nil {
+			return context.Cause(ctx)
+		}
+		if _, err := c.library.Blend(b.Designation, DefaultDatum); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
 // foldName reduces a name to what distinguishes it: lower case letters and digits.
 func foldName(name string) string {
 	return strings.Map(func(r rune) rune {
@@ -108,16 +184,21 @@ func (c *Catalogue) near(name string) []string {
 		return nil
 	}
 	best := map[string]int{}
-	for known, f := range c.byName {
+	known := map[string]string{}
+	for name, f := range c.byName {
+		known[name] = f.rec.ID
+	}
+	maps.Copy(known, c.blends)
+	for known, id := range known {
 		d := editDistance(key, known)
 		if len(key) >= 3 && strings.HasPrefix(known, key) {
 			d = 0 // an unfinished name
 		}
-		if d > 2 {
+		if d > 1 && len(key) < 6 || d > 2 { // a short name has too many neighbours at two letters
 			continue
 		}
-		if have, ok := best[f.rec.ID]; !ok || d < have {
-			best[f.rec.ID] = d
+		if have, ok := best[id]; !ok || d < have {
+			best[id] = d
 		}
 	}
 	ids := make([]string, 0, len(best))

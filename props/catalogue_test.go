@@ -12,7 +12,7 @@ import (
 )
 
 func TestDesignations(t *testing.T) {
-	names := catalogue(t).Designations()
+	names := catalogue(t).PureDesignations()
 	if len(names) != 46 {
 		t.Errorf("%d refrigerants, want 46", len(names))
 	}
@@ -45,12 +45,12 @@ func TestConcurrentUse(t *testing.T) {
 			rng := rand.New(rand.NewPCG(3, uint64(i)))
 			for range 40 {
 				id := ids[rng.IntN(len(ids))]
-				a, err := shared.Refrigerant(id, props.DefaultDatum)
+				a, err := shared.Pure(id, props.DefaultDatum)
 				if err != nil {
 					t.Error(err)
 					return
 				}
-				b, err := alone.Refrigerant(id, props.DefaultDatum)
+				b, err := alone.Pure(id, props.DefaultDatum)
 				if err != nil {
 					t.Error(err)
 					return

@@ -107,10 +107,10 @@ const (
 
 // zero returns what to subtract from the enthalpy and entropy of r to count from the datum of a row, and the view of
 // the refrigerant that it belongs to.
-func zero(t *testing.T, row printed.Row) (r *props.Refrigerant, h, s float64) {
+func zero(t *testing.T, row printed.Row) (r *props.Pure, h, s float64) {
 	t.Helper()
-	view := func(d props.Datum) *props.Refrigerant {
-		r, err := catalogue(t).Refrigerant(row["fluid"], d)
+	view := func(d props.Datum) *props.Pure {
+		r, err := catalogue(t).Pure(row["fluid"], d)
 		if err != nil {
 			t.Fatalf("%s: %v", row["id"], err)
 		}
@@ -137,7 +137,7 @@ func zero(t *testing.T, row printed.Row) (r *props.Refrigerant, h, s float64) {
 
 // idealGas returns enthalpy and entropy of the ideal gas at T in K and p in Pa, from a state so thin that what is left
 // of the real gas does not count.
-func idealGas(t *testing.T, r *props.Refrigerant, T, p float64) (h, s float64) {
+func idealGas(t *testing.T, r *props.Pure, T, p float64) (h, s float64) {
 	t.Helper()
 	thin, err := r.TemperatureDensity(T, 1e-7)
 	if err != nil {

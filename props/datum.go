@@ -1,32 +1,7 @@
 package props
 
-import "slices"
-
-// Datum says where enthalpy and entropy of a refrigerant are zero or have an agreed value.
-type Datum uint8
-
-// The datums. Each needs a saturated liquid at its reference point; see [Refrigerant.Datums].
-const (
-	// DefaultDatum is IIR, or TriplePoint for a refrigerant that is no liquid at 0 °C.
-	DefaultDatum Datum = iota
-	IIR                // saturated liquid at 0 °C: h = 200 kJ/kg, s = 1 kJ/(kg K)
-	ASHRAE             // saturated liquid at -40 °C: h = 0, s = 0
-	NBP                // saturated liquid at 101.325 kPa: h = 0, s = 0
-	TriplePoint        // saturated liquid at the triple point: u = 0, s = 0; the datum of IAPWS-95
-)
-
-var datumNames = [...]string{"", "IIR", "ASHRAE", "NBP", "triple_point"}
-
-func (d Datum) String() string { return nameOf(datumNames[:], int(d)) }
-
-// ParseDatum returns the datum with that name and reports whether there is one.
-func ParseDatum(name string) (Datum, bool) {
-	i := slices.Index(datumNames[:], name)
-	return Datum(max(i, 0)), i > 0
-}
-
 // withDatum returns the view of f that counts from d.
-func (f *fluid) withDatum(d Datum) (*Refrigerant, error) {
+func (f *fluid) withDatum(d Datum) (*Pure, error) {
 	r := f.view()
 	if d == DefaultDatum {
 		d = IIR
@@ -51,7 +26,7 @@ func (f *fluid) withDatum(d Datum) (*Refrigerant, error) {
 }
 
 // reference returns the saturated liquid that d counts from, as r counts, and reports whether it exists.
-func (r *Refrigerant) reference(d Datum) (State, bool) {
+func (r *Pure) reference(d Datum) (State, bool) {
 	var s State
 	var err error
 	switch d {
@@ -74,7 +49,7 @@ func (r *Refrigerant) reference(d Datum) (State, bool) {
 }
 
 // Datums returns the datums that the refrigerant can have.
-func (r *Refrigerant) Datums() []Datum {
+func (r *Pure) Datums() []Datum {
 	var out []Datum
 	for _, d := range []Datum{IIR, ASHRAE, NBP, TriplePoint} {
 		if _, ok := r.reference(d); ok {

@@ -9,10 +9,10 @@ import (
 
 // TestDatums checks the agreed values of every datum and that differences between states do not depend on it.
 func TestDatums(t *testing.T) {
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		base := refrigerant(t, id)
 		c, l := base.Critical(), base.Limits()
-		states := func(r *props.Refrigerant) []props.State {
+		states := func(r *props.Pure) []props.State {
 			return []props.State{
 				mustState(t)(r.TemperatureDensity(0.9*c.T, 0.01*c.Rho)),
 				mustState(t)(r.TemperatureQuality(0.8*c.T, 0.3)),
@@ -21,7 +21,7 @@ func TestDatums(t *testing.T) {
 		}
 		want := states(base)
 		for _, d := range base.Datums() {
-			r, err := catalogue(t).Refrigerant(id, d)
+			r, err := catalogue(t).Pure(id, d)
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -50,7 +50,7 @@ func TestDatums(t *testing.T) {
 
 // reference returns the saturated liquid from which a datum counts and its agreed h, s and u, NaN where none is agreed:
 // IIR and ASHRAE as every handbook has them, the triple point as in IAPWS R6-95(2018).
-func reference(t *testing.T, r *props.Refrigerant, d props.Datum) (ref props.State, h, s, u float64) {
+func reference(t *testing.T, r *props.Pure, d props.Datum) (ref props.State, h, s, u float64) {
 	t.Helper()
 	nan := math.NaN()
 	switch d {

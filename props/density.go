@@ -20,7 +20,7 @@ const saturationTie = 1e-10
 
 // TemperaturePressure returns the state at T in K and p in Pa. On the saturation line itself, where p equals the
 // vapour pressure to 1e-10, it returns an [*AmbiguousError] with saturated liquid and vapour.
-func (r *Refrigerant) TemperaturePressure(T, p float64) (State, error) {
+func (r *Pure) TemperaturePressure(T, p float64) (State, error) {
 	if err := r.checkTemperature(T); err != nil {
 		return State{}, err
 	}
@@ -42,7 +42,7 @@ func (r *Refrigerant) TemperaturePressure(T, p float64) (State, error) {
 }
 
 // subcritical returns the branch of an isotherm below the critical temperature that holds pressure p.
-func (r *Refrigerant) subcritical(iso *helmholtz.Isotherm, p, ps, liquid, vapour float64) branch {
+func (r *Pure) subcritical(iso *helmholtz.Isotherm, p, ps, liquid, vapour float64) branch {
 	if p < ps {
 		// The compressibility factor falls almost linearly with pressure from 1 to that of saturated vapour.
 		z := ps / (vapour * r.Rs * iso.T)
@@ -57,7 +57,7 @@ func (r *Refrigerant) subcritical(iso *helmholtz.Isotherm, p, ps, liquid, vapour
 
 // supercritical returns the branch of an isotherm above the critical temperature, started from the cubic equation of
 // Peng and Robinson, Ind. Eng. Chem. Fundam. 15 (1976) 59.
-func (r *Refrigerant) supercritical(T, p float64) branch {
+func (r *Pure) supercritical(T, p float64) branch {
 	tc, pc, w := r.curve.TCritical, r.curve.PCritical, r.rec.Acentric
 	k := 0.37464 + w*(1.54226-0.26992*w)
 	alpha := 1 + k*(1-math.Sqrt(T/tc))
@@ -80,10 +80,10 @@ func (r *Refrigerant) supercritical(T, p float64) branch {
 
 // densest is the highest density that solvers try: a little beyond the limit, so that a state beyond it is found and
 // refused by name.
-func (r *Refrigerant) densest() float64 { return 1.15 * r.reach().DensityMax }
+func (r *Pure) densest() float64 { return 1.15 * r.reach().DensityMax }
 
 // solveDensity returns the state at pressure p on a branch of an isotherm.
-func (r *Refrigerant) solveDensity(iso *helmholtz.Isotherm, p float64, b branch) (State, error) {
+func (r *Pure) solveDensity(iso *helmholtz.Isotherm, p float64, b branch) (State, error) {
 	f, err := r.density(iso, p, b)
 	if err != nil {
 		return State{}, err
@@ -95,7 +95,7 @@ func (r *Refrigerant) solveDensity(iso *helmholtz.Isotherm, p float64, b branch)
 }
 
 // density solves the density at pressure p by Newton's method, with bisection wherever a step leaves the branch.
-func (r *Refrigerant) density(iso *helmholtz.Isotherm, p float64, b branch) (fluidState, error) {
+func (r *Pure) density(iso *helmholtz.Isotherm, p float64, b branch) (fluidState, error) {
 	const limit = 100 // Newton takes 3 to 6 steps; bisection alone would need 60
 	const rounding = 1e-15
 	RT := r.Rs * iso.T

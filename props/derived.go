@@ -18,7 +18,7 @@ type Derived struct {
 // boundaries and exist in the dome too, where density follows the equilibrium of both phases; they jump at its edge. At
 // quality 0 and 1 they are those of the single phase. The fundamental derivative (Thompson, Phys. Fluids 14 (1971) 1843)
 // is differenced along the isentrope, good to about seven digits.
-func (r *Refrigerant) Derived(s State) Derived {
+func (r *Pure) Derived(s State) Derived {
 	if s.Phase == TwoPhase {
 		return r.domeDerivatives(s)
 	}
@@ -34,7 +34,7 @@ func (r *Refrigerant) Derived(s State) Derived {
 }
 
 // domeDerivatives differentiates v = v' + x (v” - v') with x = (h - h')/(h” - h').
-func (r *Refrigerant) domeDerivatives(s State) Derived {
+func (r *Pure) domeDerivatives(s State) Derived {
 	d := r.domeAt(s.T)
 	l, v := r.domeState(&d, 0), r.domeState(&d, 1)
 	slope := 1 / s.DPDT // dT/dp along the saturation line
@@ -58,7 +58,7 @@ func (r *Refrigerant) domeDerivatives(s State) Derived {
 
 // fundamental differences the speed of sound between two points on the isentrope, found by a midpoint step of
 // (dT/d rho) = T (dp/dT)/(rho^2 cv).
-func (r *Refrigerant) fundamental(s State) float64 {
+func (r *Pure) fundamental(s State) float64 {
 	const h = 1e-4
 	at := func(T, rho float64) (slope, w float64) {
 		var iso helmholtz.Isotherm

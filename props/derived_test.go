@@ -13,7 +13,7 @@ import (
 func TestDerived(t *testing.T) {
 	rng := rand.New(rand.NewPCG(7, 7))
 	checked := map[props.Phase]int{}
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		for range 60 {
 			s, ok := sample(r, rng)

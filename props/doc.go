@@ -11,7 +11,7 @@
 //	suction, err := propane.TemperaturePressure(278.15, 400e3)
 //
 // Any two independent properties out of temperature, pressure, density, enthalpy, entropy, internal energy and vapour
-// quality fix a state; [Refrigerant.States] takes any such pair and returns every solution.
+// quality fix a state; [Pure.States] takes any such pair and returns every solution.
 //
 // All values are immutable once made and safe for concurrent use. Errors are typed: [RangeError], [AmbiguousError],
 // [NoSolutionError], [ConvergenceError], [DependentPairError], [UnknownRefrigerantError], [DatumError], [ConditionError],

@@ -4,7 +4,7 @@ import "math"
 
 // qualityLine calls found with every state of quality x whose property y, density included, is v. Along a line of
 // constant quality none of them need be monotonic: the enthalpy of saturated vapour, for one, has a maximum.
-func (r *Refrigerant) qualityLine(x float64, y Property, v float64, found func(State)) error {
+func (r *Pure) qualityLine(x float64, y Property, v float64, found func(State)) error {
 	if err := r.checkQuality(x); err != nil {
 		return err
 	}
@@ -43,7 +43,7 @@ func (r *Refrigerant) qualityLine(x float64, y Property, v float64, found func(S
 
 // curveTemperatures returns a rising grid over the saturation curve, even in sqrt(1-T/Tc), where the properties of both
 // phases are smooth, and geometric in its last step, where a line of constant quality may still turn.
-func (r *Refrigerant) curveTemperatures() []float64 {
+func (r *Pure) curveTemperatures() []float64 {
 	const n, last = 64, 6
 	c := r.curve
 	s := math.Sqrt(1 - c.TMin/c.TCritical)

@@ -10,7 +10,7 @@ import (
 // TestLeverRule checks that in the dome volume, enthalpy, entropy and internal energy are straight lines between the
 // saturated phases, that these have equal Gibbs energies, and that all ways into the dome agree.
 func TestLeverRule(t *testing.T) {
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		c := r.Critical()
 		Tmin, _ := r.SaturationLimits()

@@ -14,7 +14,7 @@ type fluidState struct {
 }
 
 // evaluate returns the state of a single phase at density rho in kg/m3 on an isotherm.
-func (r *Refrigerant) evaluate(iso *helmholtz.Isotherm, rho float64) fluidState {
+func (r *Pure) evaluate(iso *helmholtz.Isotherm, rho float64) fluidState {
 	res := iso.Residual(rho / r.M)
 	id := &iso.Ideal
 	RT := r.Rs * iso.T
@@ -48,7 +48,7 @@ func (f *fluidState) value(y Property) (v, dT, dRho float64) {
 
 // state completes a single-phase state. Pressure p is the one that is known exactly, from which the equation's own
 // differs by rounding that matters in a cold liquid.
-func (r *Refrigerant) state(f fluidState, p float64) State {
+func (r *Pure) state(f fluidState, p float64) State {
 	q := f.T * f.pT / f.rho
 	s := State{
 		Phase: r.phase(f.T, p, f.rho),
@@ -65,7 +65,7 @@ func (r *Refrigerant) state(f fluidState, p float64) State {
 	return s
 }
 
-func (r *Refrigerant) phase(T, p, rho float64) Phase {
+func (r *Pure) phase(T, p, rho float64) Phase {
 	c := r.curve
 	switch {
 	case T <= c.TCritical && rho > c.RhoCritical*r.M:
@@ -84,19 +84,19 @@ type dome struct {
 }
 
 // domeAt returns the saturated phases at temperature T, which must lie on the curve.
-func (r *Refrigerant) domeAt(T float64) dome {
+func (r *Pure) domeAt(T float64) dome {
 	p, liquid, vapour := r.curve.At(T)
 	return r.domeOf(T, p, liquid*r.M, vapour*r.M)
 }
 
 // domeAtPressure returns the saturated phases at pressure p, which must lie on the curve.
-func (r *Refrigerant) domeAtPressure(p float64) dome {
+func (r *Pure) domeAtPressure(p float64) dome {
 	T := r.curve.Temperature(p)
 	_, liquid, vapour := r.curve.At(T)
 	return r.domeOf(T, p, liquid*r.M, vapour*r.M)
 }
 
-func (r *Refrigerant) domeOf(T, p, liquid, vapour float64) dome {
+func (r *Pure) domeOf(T, p, liquid, vapour float64) dome {
 	var iso helmholtz.Isotherm
 	iso.Set(r.eq, T)
 	d := dome{T: T, p: p, liquid: r.evaluate(&iso, liquid), vapour: r.evaluate(&iso, vapour)}
@@ -127,7 +127,7 @@ func (d *dome) value(y Property, x float64) float64 {
 }
 
 // domeState returns the state at quality x. The ends are the saturated phases themselves, with all their properties.
-func (r *Refrigerant) domeState(d *dome, x float64) State {
+func (r *Pure) domeState(d *dome, x float64) State {
 	switch x {
 	case 0:
 		s := r.state(d.liquid, d.p)

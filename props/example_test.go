@@ -15,7 +15,7 @@ func ExampleCatalogue() {
 		log.Fatal(err)
 	}
 	for _, name := range []string{"R290", "HFC-134a", "carbon dioxide"} {
-		r, err := catalogue.Refrigerant(name, props.DefaultDatum)
+		r, err := catalogue.Pure(name, props.DefaultDatum)
 		if err != nil {
 			log.Fatal(err)
 		}
@@ -23,7 +23,7 @@ func ExampleCatalogue() {
 		fmt.Printf("%s: critical point %.2f K, %.4f MPa; %.0f K to %.0f K\n",
 			r.Designation(), c.T, c.P/1e6, r.Limits().TemperatureMin, r.Limits().TemperatureMax)
 	}
-	_, err = catalogue.Refrigerant("R32b", props.DefaultDatum)
+	_, err = catalogue.Pure("R32b", props.DefaultDatum)
 	if e, ok := errors.AsType[*props.UnknownRefrigerantError](err); ok {
 		fmt.Println("near:", e.Suggestions[0])
 	}
@@ -40,7 +40,7 @@ func ExampleRefrigerant_TemperaturePressure() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	propane, err := catalogue.Refrigerant("R290", props.IIR)
+	propane, err := catalogue.Pure("R290", props.IIR)
 	if err != nil {
 		log.Fatal(err)
 	}
@@ -70,7 +70,7 @@ func ExampleRefrigerant_States() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	r, err := catalogue.Refrigerant("R134a", props.IIR)
+	r, err := catalogue.Pure("R134a", props.IIR)
 	if err != nil {
 		log.Fatal(err)
 	}
@@ -98,7 +98,7 @@ func ExampleRefrigerant_DewPoint() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	ammonia, err := catalogue.Refrigerant("R717", props.IIR)
+	ammonia, err := catalogue.Pure("R717", props.IIR)
 	if err != nil {
 		log.Fatal(err)
 	}
@@ -122,7 +122,7 @@ func ExampleDatum() {
 		log.Fatal(err)
 	}
 	for _, datum := range []props.Datum{props.IIR, props.ASHRAE, props.NBP} {
-		r, err := catalogue.Refrigerant("R134a", datum)
+		r, err := catalogue.Pure("R134a", datum)
 		if err != nil {
 			log.Fatal(err)
 		}
@@ -136,7 +136,7 @@ func ExampleDatum() {
 		}
 		fmt.Printf("%-6s h' = %6.2f, h\" = %6.2f, difference %.2f kJ/kg\n", r.Datum(), liquid.H/1e3, vapour.H/1e3, (vapour.H-liquid.H)/1e3)
 	}
-	_, err = catalogue.Refrigerant("R718", props.ASHRAE)
+	_, err = catalogue.Pure("R718", props.ASHRAE)
 	if e, ok := errors.AsType[*props.DatumError](err); ok {
 		fmt.Printf("water allows %v\n", e.Allowed)
 	}

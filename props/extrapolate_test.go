@@ -11,7 +11,7 @@ import (
 // TestExtrapolate asks beyond the range of each equation: refused at first, answered by the view that extrapolates, and
 // marked as such, up to the limits that its documentation names.
 func TestExtrapolate(t *testing.T) {
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		plain := refrigerant(t, id)
 		wide := plain.Extrapolate()
 		l, c := plain.Limits(), plain.Critical()
@@ -55,7 +55,7 @@ func TestExtrapolate(t *testing.T) {
 
 // TestPoints compares what a refrigerant says about its own landmarks.
 func TestPoints(t *testing.T) {
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		l, c := r.Limits(), r.Critical()
 		T, p := r.SaturationLimits()

@@ -13,7 +13,7 @@ import (
 // its temperature and density, or quality.
 func FuzzStates(f *testing.F) {
 	c := catalogue(f)
-	names := c.Designations()
+	names := c.PureDesignations()
 	for i, id := range []string{"R134a", "R290", "R717", "R718", "R744", "R1234yf", "R22", "R32"} {
 		r := refrigerant(f, id)
 		index := uint8(0)
@@ -74,7 +74,7 @@ func FuzzStates(f *testing.F) {
 
 // reproduced evaluates a state again from temperature and quality inside the dome and at its edge, and from temperature
 // and density elsewhere.
-func reproduced(r *props.Refrigerant, s props.State) (props.State, error) {
+func reproduced(r *props.Pure, s props.State) (props.State, error) {
 	if !math.IsNaN(s.Quality) {
 		return r.TemperatureQuality(s.T, s.Quality)
 	}
@@ -87,7 +87,7 @@ func reproduced(r *props.Refrigerant, s props.State) (props.State, error) {
 
 // blur is how far a property of a state may be off when temperature and density are known to ten digits, and what
 // rounding of the terms of the equation adds.
-func blur(r *props.Refrigerant, s props.State, p props.Property) float64 {
+func blur(r *props.Pure, s props.State, p props.Property) float64 {
 	const digits = 1e-10
 	R := gasConstant(r)
 	terms := 1e-15 * 500.0

@@ -10,13 +10,13 @@ import (
 )
 
 // eachSinglePhase calls f with random single-phase states over the whole range of every refrigerant.
-func eachSinglePhase(t *testing.T, f func(t *testing.T, r *props.Refrigerant, s props.State)) {
+func eachSinglePhase(t *testing.T, f func(t *testing.T, r *props.Pure, s props.State)) {
 	t.Helper()
 	n := 150
 	if testing.Short() {
 		n = 25
 	}
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		t.Run(id, func(t *testing.T) {
 			r := refrigerant(t, id)
 			rng := rand.New(rand.NewPCG(11, uint64(len(id))))
@@ -43,7 +43,7 @@ func near(got, want, tolerance, scale float64) bool {
 
 // TestRelations checks what holds between the members of a state without any derivative being taken.
 func TestRelations(t *testing.T) {
-	eachSinglePhase(t, func(t *testing.T, r *props.Refrigerant, s props.State) {
+	eachSinglePhase(t, func(t *testing.T, r *props.Pure, s props.State) {
 		R := gasConstant(r)
 		q := s.T * s.DPDT * s.DPDT / (s.Rho * s.Rho * s.DPDRho)
 		for _, c := range []struct {
@@ -70,7 +70,7 @@ func TestRelations(t *testing.T) {
 }
 
 // gasConstant returns the specific gas constant in J/(kg K), by way of the file of the refrigerant.
-func gasConstant(r *props.Refrigerant) float64 { return r.Record().GasConstant / r.MolarMass() }
+func gasConstant(r *props.Pure) float64 { return r.Record().GasConstant / r.MolarMass() }
 
 // difference is a derivative by central differences over h and 2h, extrapolated to none, and how far it may be off: by
 // a fifth of what the two differ, and by the rounding of the values. It reports false where a state is missing or of
@@ -94,7 +94,7 @@ func difference(s props.State, h, noise float64, at func(h float64) (props.State
 func TestDifferences(t *testing.T) {
 	type count struct{ seen, skipped, sharp int }
 	counts := map[string]*count{}
-	eachSinglePhase(t, func(t *testing.T, r *props.Refrigerant, s props.State) {
+	eachSinglePhase(t, func(t *testing.T, r *props.Pure, s props.State) {
 		dT, dRho := 2e-4*s.T, 2e-4*s.Rho
 		// A pressure step that neither a gas nor a stiff liquid feels too much or too little.
 		dp := math.Min(1e-3*s.P, 2e-4*s.Rho*s.DPDRho)

@@ -7,12 +7,12 @@ import (
 )
 
 // EnthalpyEntropy returns the state at h in J/kg and s in J/(kg K). The pair has one solution at most.
-func (r *Refrigerant) EnthalpyEntropy(h, s float64) (State, error) {
+func (r *Pure) EnthalpyEntropy(h, s float64) (State, error) {
 	return r.isentrope(s, Enthalpy, h)
 }
 
 // EntropyInternalEnergy returns the state at s in J/(kg K) and u in J/kg. The pair has one solution at most.
-func (r *Refrigerant) EntropyInternalEnergy(s, u float64) (State, error) {
+func (r *Pure) EntropyInternalEnergy(s, u float64) (State, error) {
 	return r.isentrope(s, InternalEnergy, u)
 }
 
@@ -20,13 +20,13 @@ func (r *Refrigerant) EntropyInternalEnergy(s, u float64) (State, error) {
 const lowestPressure = 1e-6
 
 // pressure returns the pressure with that logarithm, within the limit in spite of rounding.
-func (r *Refrigerant) pressure(lnP float64) float64 {
+func (r *Pure) pressure(lnP float64) float64 {
 	return math.Min(math.Exp(lnP), r.reach().PressureMax)
 }
 
 // isentrope returns the state of entropy s with property y, enthalpy or internal energy, equal to v. Both rise with
 // pressure along an isentrope: (dh/dp) = 1/rho, (du/dp) = p/(rho^2 w^2).
-func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error) {
+func (r *Pure) isentrope(s float64, y Property, v float64) (State, error) {
 	if math.IsNaN(s) || math.IsInf(s, 0) {
 		return State{}, r.notFinite(Entropy, s)
 	}
@@ -42,9 +42,9 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 		if at, err = r.PressureEntropy(r.pressure(lnP), s); err != nil {
 			return 0, err
 		}
-		return pick(&at, y) - v, nil
+		return y.Of(&at) - v, nil
 	}
-	lo, hi, err := r.isentropeEnds(s, Given{y, v})
+	lo, hi, err := r.isentropeEnds(s, Given{Property: y, Value: v})
 	if err != nil {
 		return State{}, err
 	}
@@ -58,7 +58,7 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 		return State{}, err
 	}
 	if !(a <= 0 && b >= 0) {
-		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: pick(&low, y), Max: pick(&at, y), Limit: LimitAttainable}
+		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: y.Of(&low), Max: y.Of(&at), Limit: LimitAttainable}
 	}
 	lnP, err := bracketed(lo, a, hi, b, miss)
 	if err != nil {
@@ -74,7 +74,7 @@ func (r *Refrigerant) isentrope(s float64, y Property, v float64) (State, error)
 
 // alongIsentrope solves by Newton's method in pressure, whose derivative is known. It reports false when an iterate
 // leaves the range or the steps do not settle.
-func (r *Refrigerant) alongIsentrope(s float64, y Property, v float64) (State, bool) {
+func (r *Pure) alongIsentrope(s float64, y Property, v float64) (State, bool) {
 	const limit = 30
 	p := r.curve.PCritical / 8 // the middle of where refrigerants work
 	last := math.Inf(1)
@@ -90,7 +90,7 @@ func (r *Refrigerant) alongIsentrope(s float64, y Property, v float64) (State, b
 			}
 			slope *= p / (at.Rho * at.W * at.W)
 		}
-		step := (v - pick(&at, y)) / slope
+		step := (v - y.Of(&at)) / slope
 		if math.Abs(step) < 4e-16 || math.Abs(step) < 1e-9 && math.Abs(step) >= last/2 {
 			return at, true
 		}
@@ -106,30 +106,11 @@ func (r *Refrigerant) alongIsentrope(s float64, y Property, v float64) (State, b
 	return State{}, false
 }
 
-func pick(s *State, y Property) float64 {
-	switch y {
-	case Temperature:
-		return s.T
-	case Pressure:
-		return s.P
-	case Density:
-		return s.Rho
-	case Enthalpy:
-		return s.H
-	case Entropy:
-		return s.S
-	case InternalEnergy:
-		return s.U
-	default:
-		return s.Quality
-	}
-}
-
 // isentropeEnds returns the logarithms of the lowest and highest pressure at which a state of entropy s exists. An
 // isentrope is warmer at higher pressure: it enters the range of the equation at its lowest temperature or at the
 // lowest pressure, and leaves it at the highest temperature or pressure.
-func (r *Refrigerant) isentropeEnds(s float64, other Given) (lo, hi float64, err error) {
-	return r.walk(Given{Entropy, s}, other, r.reach().PressureMax)
+func (r *Pure) isentropeEnds(s float64, other Given) (lo, hi float64, err error) {
+	return r.walk(Given{Property: Entropy, Value: s}, other, r.reach().PressureMax)
 }
 
 // side tells where a failed state lies: -1 where the state would be too cold or solid, +1 where too hot, 0 for a state.
@@ -151,7 +132,7 @@ func side(err error, y Property, v float64) (int, error) {
 
 // walk finds the ends, in the logarithm of pressure up to top, of the one stretch where states with the property along
 // exist, by a coarse scan and bisection at both edges. The other given property is for the error.
-func (r *Refrigerant) walk(along, other Given, top float64) (from, to float64, err error) {
+func (r *Pure) walk(along, other Given, top float64) (from, to float64, err error) {
 	const n = 48
 	y, v := along.Property, along.Value
 	lo, hi := math.Log(lowestPressure), math.Log(top)
@@ -208,7 +189,7 @@ func (r *Refrigerant) walk(along, other Given, top float64) (from, to float64, e
 
 // extent returns the lowest and the highest value of property y at the corners of the range, lowest pressure and
 // highest at the lowest and highest temperature.
-func (r *Refrigerant) extent(y Property) (low, high float64) {
+func (r *Pure) extent(y Property) (low, high float64) {
 	low, high = math.Inf(1), math.Inf(-1)
 	l := r.reach()
 	for _, T := range []float64{l.TemperatureMin, l.TemperatureMax} {
@@ -224,7 +205,7 @@ func (r *Refrigerant) extent(y Property) (low, high float64) {
 
 // enthalpyEnergy calls found with every state of enthalpy h and internal energy u. The two differ by p/rho alone, which
 // an ideal gas fixes by temperature, so that the pair is weak in a thin gas.
-func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
+func (r *Pure) enthalpyEnergy(h, u float64, found func(State)) error {
 	if math.IsNaN(h) || math.IsInf(h, 0) {
 		return r.notFinite(Enthalpy, h)
 	}
@@ -233,7 +214,7 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 	}
 	// An isenthalp may leave the range of temperatures and come back. Walking it in a wider range leaves no gap.
 	wide := r.Extrapolate()
-	lo, hi, err := wide.walk(Given{Enthalpy, h}, Given{InternalEnergy, u}, r.reach().PressureMax)
+	lo, hi, err := wide.walk(Given{Property: Enthalpy, Value: h}, Given{Property: InternalEnergy, Value: u}, r.reach().PressureMax)
 	if err != nil {
 		return err
 	}
@@ -269,7 +250,7 @@ func (r *Refrigerant) enthalpyEnergy(h, u float64, found func(State)) error {
 }
 
 // slopeAtEnthalpy returns (du/d ln p) at constant enthalpy, by differences.
-func (r *Refrigerant) slopeAtEnthalpy(lnP, h float64) float64 {
+func (r *Pure) slopeAtEnthalpy(lnP, h float64) float64 {
 	const step = 1e-5
 	above, err := r.PressureEnthalpy(r.pressure(lnP+step), h)
 	if err != nil {
@@ -288,7 +269,7 @@ func (r *Refrigerant) slopeAtEnthalpy(lnP, h float64) float64 {
 // isenthalpPressures returns a rising grid of ln p from lo to hi for a scan along the isenthalp h: coarse where the
 // fluid is an almost ideal gas or well inside the dome, finer towards the critical pressure, and with the points where
 // the isenthalp enters and leaves the dome, at which it has a kink.
-func (r *Refrigerant) isenthalpPressures(h, lo, hi float64) []float64 {
+func (r *Pure) isenthalpPressures(h, lo, hi float64) []float64 {
 	critical := math.Log(r.curve.PCritical)
 	grid := []float64{lo}
 	for x := lo; x < hi; grid = append(grid, x) {

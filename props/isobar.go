@@ -7,28 +7,28 @@ import (
 )
 
 // PressureEnthalpy returns the state at p in Pa and h in J/kg. The pair has one solution at most.
-func (r *Refrigerant) PressureEnthalpy(p, h float64) (State, error) { return r.isobar(p, Enthalpy, h) }
+func (r *Pure) PressureEnthalpy(p, h float64) (State, error) { return r.isobar(p, Enthalpy, h) }
 
 // PressureEntropy returns the state at p in Pa and s in J/(kg K). The pair has one solution at most.
-func (r *Refrigerant) PressureEntropy(p, s float64) (State, error) { return r.isobar(p, Entropy, s) }
+func (r *Pure) PressureEntropy(p, s float64) (State, error) { return r.isobar(p, Entropy, s) }
 
 // PressureInternalEnergy returns the state at p in Pa and u in J/kg. The pair has one solution at most.
-func (r *Refrigerant) PressureInternalEnergy(p, u float64) (State, error) {
+func (r *Pure) PressureInternalEnergy(p, u float64) (State, error) {
 	return r.isobar(p, InternalEnergy, u)
 }
 
-// PressureEnthalpyNear is [Refrigerant.PressureEnthalpy] with a start: the temperature and density of a state that is
+// PressureEnthalpyNear is [Pure.PressureEnthalpy] with a start: the temperature and density of a state that is
 // not far. A good start saves half the time; a bad one costs some and changes nothing.
-func (r *Refrigerant) PressureEnthalpyNear(p, h float64, start State) (State, error) {
+func (r *Pure) PressureEnthalpyNear(p, h float64, start State) (State, error) {
 	return r.isobarNear(p, Enthalpy, h, start)
 }
 
-// PressureEntropyNear is [Refrigerant.PressureEntropy] with a start, like [Refrigerant.PressureEnthalpyNear].
-func (r *Refrigerant) PressureEntropyNear(p, s float64, start State) (State, error) {
+// PressureEntropyNear is [Pure.PressureEntropy] with a start, like [Pure.PressureEnthalpyNear].
+func (r *Pure) PressureEntropyNear(p, s float64, start State) (State, error) {
 	return r.isobarNear(p, Entropy, s, start)
 }
 
-func (r *Refrigerant) isobarNear(p float64, y Property, v float64, start State) (State, error) {
+func (r *Pure) isobarNear(p float64, y Property, v float64, start State) (State, error) {
 	if r.checkPressure(p) == nil {
 		if f, ok := r.newton2(p, y, v, start.T, start.Rho); ok && r.clearOfDome(f, p, 1e-8) {
 			s := r.state(f, p)
@@ -43,7 +43,7 @@ func (r *Refrigerant) isobarNear(p float64, y Property, v float64, start State) 
 // clearOfDome reports whether a solution of the equation at pressure p is the single phase that is stable there. Many
 // equations have false roots inside the dome, at pressures far above the critical one too. At the very edge, within a
 // fraction edge of the vapour pressure, it says no.
-func (r *Refrigerant) clearOfDome(f fluidState, p, edge float64) bool {
+func (r *Pure) clearOfDome(f fluidState, p, edge float64) bool {
 	c := r.curve
 	if f.T >= c.TCritical {
 		return true
@@ -55,7 +55,7 @@ func (r *Refrigerant) clearOfDome(f fluidState, p, edge float64) bool {
 
 // isobar returns the state at pressure p with the caloric property y equal to v. Along an isobar all three rise with
 // temperature.
-func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
+func (r *Pure) isobar(p float64, y Property, v float64) (State, error) {
 	if err := r.checkPressure(p); err != nil {
 		return State{}, err
 	}
@@ -99,7 +99,7 @@ func (r *Refrigerant) isobar(p float64, y Property, v float64) (State, error) {
 
 // snap makes a quality that differs from 0 or 1 by rounding exactly so: given values that were computed from a
 // saturated phase return to it. In a cold fluid a larger step would be one from liquid into vapour.
-func (r *Refrigerant) snap(d *dome, y Property, x float64) float64 {
+func (r *Pure) snap(d *dome, y Property, x float64) float64 {
 	const noise = 2e-13 // relative error of the saturation temperature, and with it of the saturated phases
 	a, b := d.value(y, 0), d.value(y, 1)
 	scale := 10 * r.Rs
@@ -117,7 +117,7 @@ func (r *Refrigerant) snap(d *dome, y Property, x float64) float64 {
 }
 
 // ownDatum returns a caloric property as the equation itself counts it.
-func (r *Refrigerant) ownDatum(y Property, v float64) float64 {
+func (r *Pure) ownDatum(y Property, v float64) float64 {
 	if y == Entropy {
 		return v - r.s0
 	}
@@ -143,14 +143,14 @@ func along(f fluidState, y Property, v float64) fluidState {
 }
 
 // onSide reports whether a solution lies on the side of the dome that it was looked for.
-func (r *Refrigerant) onSide(f fluidState, side Phase) bool {
+func (r *Pure) onSide(f fluidState, side Phase) bool {
 	dense := f.rho > r.curve.RhoCritical*r.M
 	return side == AnyPhase || f.T > r.curve.TCritical || dense == (side == Liquid)
 }
 
 // searchIsobar finds the temperature between lo and hi at which property y is v by bracketing, with the density solved
 // at each step. It cannot miss, at the price of some ten density solves.
-func (r *Refrigerant) searchIsobar(p float64, y Property, v, lo, hi float64, side Phase) (fluidState, error) {
+func (r *Pure) searchIsobar(p float64, y Property, v, lo, hi float64, side Phase) (fluidState, error) {
 	var f fluidState
 	miss := func(T float64) (float64, error) {
 		var err error
@@ -185,7 +185,7 @@ func (r *Refrigerant) searchIsobar(p float64, y Property, v, lo, hi float64, sid
 
 // unattainable returns the error for a property that no state at pressure p has, with the range that they do have. The
 // search saw values from low to high; where it covered one side of a dome only, the other end lies across it.
-func (r *Refrigerant) unattainable(p float64, y Property, v, low, high float64) error {
+func (r *Pure) unattainable(p float64, y Property, v, low, high float64) error {
 	if f, err := r.singlePhase(r.reach().TemperatureMin, p, AnyPhase); err == nil {
 		low, _, _ = f.value(y)
 	}
@@ -197,7 +197,7 @@ func (r *Refrigerant) unattainable(p float64, y Property, v, low, high float64) 
 
 // singlePhase returns the single phase at T and p. On the saturation line itself rounding would choose a phase; side
 // says which one is meant.
-func (r *Refrigerant) singlePhase(T, p float64, side Phase) (fluidState, error) {
+func (r *Pure) singlePhase(T, p float64, side Phase) (fluidState, error) {
 	var iso helmholtz.Isotherm
 	iso.Set(r.eq, T)
 	if T >= r.curve.TCritical {
@@ -213,6 +213,6 @@ func (r *Refrigerant) singlePhase(T, p float64, side Phase) (fluidState, error) 
 	return r.density(&iso, p, r.subcritical(&iso, p, ps, liquid*r.M, vapour*r.M))
 }
 
-func (r *Refrigerant) notFinite(y Property, v float64) error {
+func (r *Pure) notFinite(y Property, v float64) error {
 	return &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: math.Inf(-1), Max: math.Inf(1), Limit: LimitPhysical}
 }

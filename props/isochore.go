@@ -8,7 +8,7 @@ import (
 
 // isochore returns the state at density rho with the caloric property y equal to v. Along an isochore all three rise
 // with temperature, through the dome and out of it, so that there is one state at most.
-func (r *Refrigerant) isochore(rho float64, y Property, v float64) (State, error) {
+func (r *Pure) isochore(rho float64, y Property, v float64) (State, error) {
 	if err := r.checkDensity(rho); err != nil {
 		return State{}, err
 	}
@@ -25,7 +25,7 @@ func (r *Refrigerant) isochore(rho float64, y Property, v float64) (State, error
 }
 
 // valueAt returns caloric property y at temperature T and density rho, in the dome or out of it.
-func (r *Refrigerant) valueAt(T, rho float64, y Property) float64 {
+func (r *Pure) valueAt(T, rho float64, y Property) float64 {
 	if T < r.curve.TCritical {
 		p, liquid, vapour := r.curve.At(T)
 		if vapour*r.M <= rho && rho <= liquid*r.M {
@@ -42,7 +42,7 @@ func (r *Refrigerant) valueAt(T, rho float64, y Property) float64 {
 
 // pressureDensity calls found with every state at pressure p and density rho. There is one, but for cold water, whose
 // density has a maximum in temperature.
-func (r *Refrigerant) pressureDensity(p, rho float64, found func(State)) error {
+func (r *Pure) pressureDensity(p, rho float64, found func(State)) error {
 	if err := r.checkPressure(p); err != nil {
 		return err
 	}
@@ -110,7 +110,7 @@ func (r *Refrigerant) pressureDensity(p, rho float64, found func(State)) error {
 
 // pressureOnIsochore polishes the temperature at which the isochore rho has pressure p: the last digits of a
 // temperature found from densities are lost where a liquid hardly expands.
-func (r *Refrigerant) pressureOnIsochore(T, p, rho float64) (fluidState, bool) {
+func (r *Pure) pressureOnIsochore(T, p, rho float64) (fluidState, bool) {
 	var iso helmholtz.Isotherm
 	for range 8 {
 		iso.Set(r.eq, T)

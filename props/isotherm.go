@@ -7,7 +7,7 @@ import (
 )
 
 // TemperatureDensity returns the state at T in K and rho in kg/m3.
-func (r *Refrigerant) TemperatureDensity(T, rho float64) (State, error) {
+func (r *Pure) TemperatureDensity(T, rho float64) (State, error) {
 	if err := r.checkTemperature(T); err != nil {
 		return State{}, err
 	}
@@ -38,7 +38,7 @@ func (r *Refrigerant) TemperatureDensity(T, rho float64) (State, error) {
 }
 
 // TemperatureQuality returns the state inside the dome at T in K and quality x from 0 to 1.
-func (r *Refrigerant) TemperatureQuality(T, x float64) (State, error) {
+func (r *Pure) TemperatureQuality(T, x float64) (State, error) {
 	if err := r.checkSaturationTemperature(T); err != nil {
 		return State{}, err
 	}
@@ -50,7 +50,7 @@ func (r *Refrigerant) TemperatureQuality(T, x float64) (State, error) {
 }
 
 // PressureQuality returns the state inside the dome at p in Pa and quality x from 0 to 1.
-func (r *Refrigerant) PressureQuality(p, x float64) (State, error) {
+func (r *Pure) PressureQuality(p, x float64) (State, error) {
 	if err := r.checkSaturationPressure(p); err != nil {
 		return State{}, err
 	}
@@ -64,7 +64,7 @@ func (r *Refrigerant) PressureQuality(p, x float64) (State, error) {
 
 // onDome returns the state at quality x from the temperature, pressure and densities of the saturated phases. At the
 // ends it evaluates one phase only.
-func (r *Refrigerant) onDome(T, p, liquid, vapour, x float64) State {
+func (r *Pure) onDome(T, p, liquid, vapour, x float64) State {
 	if x > 0 && x < 1 {
 		d := r.domeOf(T, p, liquid, vapour)
 		return r.domeState(&d, x)
@@ -80,7 +80,7 @@ func (r *Refrigerant) onDome(T, p, liquid, vapour, x float64) State {
 	return s
 }
 
-func (r *Refrigerant) checkQuality(x float64) error {
+func (r *Pure) checkQuality(x float64) error {
 	if !(0 <= x && x <= 1) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Quality, Value: x, Min: 0, Max: 1, Limit: LimitPhysical}
 	}
@@ -93,7 +93,7 @@ const thinnest = 1e-9
 
 // isotherm calls found with every state at temperature T whose caloric property y is v. Entropy falls with density, but
 // for cold water; enthalpy and internal energy turn back in a compressed fluid, so that a pair may have several states.
-func (r *Refrigerant) isotherm(T float64, y Property, v float64, found func(State)) error {
+func (r *Pure) isotherm(T float64, y Property, v float64, found func(State)) error {
 	if err := r.checkTemperature(T); err != nil {
 		return err
 	}
@@ -145,7 +145,7 @@ func (r *Refrigerant) isotherm(T float64, y Property, v float64, found func(Stat
 
 // roundingOf returns the rounding error of property y in state f: a few units in the last place of the terms it is
 // summed from.
-func roundingOf(y Property, f fluidState, r *Refrigerant) float64 {
+func roundingOf(y Property, f fluidState, r *Pure) float64 {
 	const ulp = 4e-16
 	if y == Entropy {
 		return ulp * (math.Abs(f.s) + math.Abs(r.s0) + 10*r.Rs)
@@ -154,7 +154,7 @@ func roundingOf(y Property, f fluidState, r *Refrigerant) float64 {
 }
 
 // densities returns a rising grid from lo to hi, geometric in a gas and finer where a fluid is dense.
-func (r *Refrigerant) densities(lo, hi float64) []float64 {
+func (r *Pure) densities(lo, hi float64) []float64 {
 	grid := []float64{lo}
 	c := r.curve.RhoCritical * r.M
 	for x := lo; ; {

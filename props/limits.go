@@ -16,7 +16,7 @@ const (
 )
 
 // checkTemperature returns a RangeError unless T lies in the range the view answers.
-func (r *Refrigerant) checkTemperature(T float64) error {
+func (r *Pure) checkTemperature(T float64) error {
 	l := r.reach()
 	if !(l.TemperatureMin <= T && T <= l.TemperatureMax) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Temperature, Value: T, Min: l.TemperatureMin, Max: l.TemperatureMax, Limit: LimitValidity}
@@ -25,7 +25,7 @@ func (r *Refrigerant) checkTemperature(T float64) error {
 }
 
 // checkPressure returns a RangeError unless p is positive and in the range the view answers.
-func (r *Refrigerant) checkPressure(p float64) error {
+func (r *Pure) checkPressure(p float64) error {
 	l := r.reach()
 	if !(vacuum <= p && p <= l.PressureMax) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: p, Min: 0, Max: l.PressureMax, Limit: LimitValidity}
@@ -38,7 +38,7 @@ func (r *Refrigerant) checkPressure(p float64) error {
 const vacuum = 1e-290
 
 // checkDensity returns a RangeError unless rho is positive and in the range the view answers.
-func (r *Refrigerant) checkDensity(rho float64) error {
+func (r *Pure) checkDensity(rho float64) error {
 	l := r.reach()
 	if !(vacuum <= rho && rho <= l.DensityMax) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Density, Value: rho, Min: 0, Max: l.DensityMax, Limit: LimitDensity}
@@ -48,7 +48,7 @@ func (r *Refrigerant) checkDensity(rho float64) error {
 
 // checkFluid returns a RangeError when a single-phase state is denser than the equation allows or on the solid side of
 // the melting curve.
-func (r *Refrigerant) checkFluid(T, p, rho float64) error {
+func (r *Pure) checkFluid(T, p, rho float64) error {
 	if err := r.checkDensity(rho); err != nil {
 		return err
 	}
@@ -60,7 +60,7 @@ func (r *Refrigerant) checkFluid(T, p, rho float64) error {
 
 // check returns a RangeError unless a single-phase state that a solver found lies in the range the view answers. Limits
 // count as reached within rounding.
-func (r *Refrigerant) check(s State) error {
+func (r *Pure) check(s State) error {
 	const slack = 1e-10
 	l := r.reach()
 	T, p := s.T, s.P
@@ -78,13 +78,13 @@ func (r *Refrigerant) check(s State) error {
 		err = r.checkFluid(T, p/(1+slack), s.Rho/(1+slack))
 	}
 	if e, ok := errors.AsType[*RangeError](err); ok {
-		e.Value = pick(&s, e.Property) // as it is, without the slack
+		e.Value = e.Property.Of(&s) // as it is, without the slack
 	}
 	return err
 }
 
 // Extrapolated reports whether s lies outside the validity of the equation.
-func (r *Refrigerant) Extrapolated(s State) bool {
+func (r *Pure) Extrapolated(s State) bool {
 	plain := *r
 	plain.extrapolate = false
 	return s.Phase != TwoPhase && plain.check(s) != nil
@@ -92,7 +92,7 @@ func (r *Refrigerant) Extrapolated(s State) bool {
 
 // meltingPressure returns the pressure above which the refrigerant is solid at temperature T, or +Inf where no melting
 // curve is known; there the density limit of the equation stands in for it.
-func (r *Refrigerant) meltingPressure(T float64) float64 {
+func (r *Pure) meltingPressure(T float64) float64 {
 	switch r.rec.ID {
 	case "R718":
 		return waterMeltingPressure(T)

@@ -27,7 +27,7 @@ func TestWaterMeltingPressure(t *testing.T) {
 // Span and Wagner, J. Phys. Chem. Ref. Data 25 (1996) 1509: triple point at 216.592 K, 0.51795 MPa; the tables run along
 // the melting curve at 226.679 K, 50 MPa and 327.673 K, 800 MPa (in testdata/single_phase.csv, temperatures rounded).
 func TestCarbonDioxideMeltingPressure(t *testing.T) {
-	r := &Refrigerant{fluid: &fluid{}}
+	r := &Pure{fluid: &fluid{}}
 	r.rec.ID = "R744"
 	for _, tt := range []struct{ T, want, half float64 }{ // K, Pa, what half a millikelvin is worth
 		{216.592, 0.51795e6, 0}, {226.679, 50e6, 2.6e3}, {327.673, 800e6, 4.6e3},
@@ -43,7 +43,7 @@ func TestMeltingPressureRises(t *testing.T) {
 		id       string
 		from, to float64 // K
 	}{{"R718", 273.16, 714}, {"R744", 216.592, 1100}} {
-		r := &Refrigerant{fluid: &fluid{}}
+		r := &Pure{fluid: &fluid{}}
 		r.rec.ID = tt.id
 		last := 0.0
 		for T := tt.from; T < tt.to; T += 0.5 {

@@ -16,7 +16,7 @@ func TestDensityAlongIsotherms(t *testing.T) {
 	if testing.Short() {
 		nT, nP = 8, 30
 	}
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		l, c := r.Limits(), r.Critical()
 		for i := range nT {
@@ -67,7 +67,7 @@ func TestIsobars(t *testing.T) {
 	if testing.Short() {
 		n = 60
 	}
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		l, c := r.Limits(), r.Critical()
 		for _, p := range []float64{0.01 * c.P, 0.3 * c.P, 0.9 * c.P, 0.999 * c.P, 1.001 * c.P, 0.99 * math.Min(2*c.P, l.PressureMax)} {

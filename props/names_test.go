@@ -35,7 +35,7 @@ func TestUnknownRefrigerant(t *testing.T) {
 			t.Errorf("%.20q: suggestions %v, want %q", tt.name, e.Suggestions, tt.want)
 		}
 		for _, id := range e.Suggestions {
-			if !slices.Contains(catalogue(t).Designations(), id) || !strings.Contains(err.Error(), id) {
+			if !slices.Contains(catalogue(t).PureDesignations(), id) || !strings.Contains(err.Error(), id) {
 				t.Errorf("%q: suggestion %q in %q", tt.name, id, err)
 			}
 		}
@@ -74,7 +74,7 @@ func TestDatumRefused(t *testing.T) {
 			t.Errorf("%s of %s: %T %v, want %v allowed", tt.datum, tt.id, err, err, tt.allowed)
 		}
 	}
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		if len(r.Datums()) == 0 || !slices.Contains(r.Datums(), r.Datum()) {
 			t.Errorf("%s: datum %s, possible %v", id, r.Datum(), r.Datums())

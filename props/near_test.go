@@ -12,7 +12,7 @@ import (
 func TestNear(t *testing.T) {
 	rng := rand.New(rand.NewPCG(3, 9))
 	n := 0
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		r := refrigerant(t, id)
 		for range 100 {
 			s, ok := sample(r, rng)

@@ -9,7 +9,7 @@ import (
 // newton2 solves pressure and a caloric property together for temperature and density, from a start. It reports
 // success only; the caller must check that the solution lies on the side of the dome that it meant, and falls back to
 // a bracketed solver otherwise.
-func (r *Refrigerant) newton2(p float64, y Property, v, T, rho float64) (fluidState, bool) {
+func (r *Pure) newton2(p float64, y Property, v, T, rho float64) (fluidState, bool) {
 	const limit = 25
 	var iso helmholtz.Isotherm
 	last := math.Inf(1)

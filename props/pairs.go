@@ -8,7 +8,7 @@ import (
 
 // States returns every state within the limits that has both given properties, in order of rising temperature and then
 // falling density. It returns an error when there is none, or when the pair leaves a state too uncertain to be of use.
-func (r *Refrigerant) States(a, b Given) ([]State, error) {
+func (r *Pure) States(a, b Given) ([]State, error) {
 	if a.Property > b.Property {
 		a, b = b, a
 	}
@@ -80,44 +80,23 @@ func (r *Refrigerant) States(a, b Given) ([]State, error) {
 		return nil, &NoSolutionError{Refrigerant: r.rec.ID, Pair: [2]Given{a, b}}
 	}
 	for i := range states {
-		echo(&states[i], a)
-		echo(&states[i], b)
+		states[i].Set(a)
+		states[i].Set(b)
 	}
 	slices.SortFunc(states, func(s, t State) int { return cmp.Or(cmp.Compare(s.T, t.T), cmp.Compare(t.Rho, s.Rho)) })
 	return states, nil
 }
 
-// echo puts the value that was given into the state, in place of the one that came back from the solver a rounding
-// away.
-func echo(s *State, g Given) {
-	switch g.Property {
-	case Temperature:
-		s.T = g.Value
-	case Pressure:
-		s.P = g.Value
-	case Density:
-		s.Rho = g.Value
-	case Enthalpy:
-		s.H = g.Value
-	case Entropy:
-		s.S = g.Value
-	case InternalEnergy:
-		s.U = g.Value
-	case Quality:
-		s.Quality = g.Value
-	}
-}
-
 // State returns the one state that has both given properties and, unless phase is AnyPhase, that phase. It returns an
 // [*AmbiguousError] when more than one state remains and a [*NoSolutionError] when none does.
-func (r *Refrigerant) State(a, b Given, phase Phase) (State, error) {
+func (r *Pure) State(a, b Given, phase Phase) (State, error) {
 	states, err := r.States(a, b)
 	if err != nil {
 		return State{}, err
 	}
 	match := states
 	if phase != AnyPhase {
-		match = slices.DeleteFunc(slices.Clone(states), func(s State) bool { return !s.is(phase) })
+		match = slices.DeleteFunc(slices.Clone(states), func(s State) bool { return !s.Is(phase) })
 	}
 	switch len(match) {
 	case 1:
@@ -126,9 +105,4 @@ func (r *Refrigerant) State(a, b Given, phase Phase) (State, error) {
 		return State{}, &NoSolutionError{Refrigerant: r.rec.ID, Pair: [2]Given{a, b}, Phase: phase, Solutions: states}
 	}
 	return State{}, &AmbiguousError{Refrigerant: r.rec.ID, Pair: [2]Property{a.Property, b.Property}, Solutions: match}
-}
-
-// is reports whether the state is of that phase; saturated liquid and vapour count as two-phase too.
-func (s State) is(phase Phase) bool {
-	return s.Phase == phase || phase == TwoPhase && (s.Quality == 0 || s.Quality == 1)
 }

@@ -18,9 +18,9 @@ func catalogue(t testing.TB) *props.Catalogue {
 	return c
 }
 
-func refrigerant(t testing.TB, name string) *props.Refrigerant {
+func refrigerant(t testing.TB, name string) *props.Pure {
 	t.Helper()
-	r, err := catalogue(t).Refrigerant(name, props.DefaultDatum)
+	r, err := catalogue(t).Pure(name, props.DefaultDatum)
 	if err != nil {
 		t.Fatal(err)
 	}

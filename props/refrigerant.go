@@ -13,23 +13,9 @@ import (
 // StandardAtmosphere is the pressure of the normal boiling point, Pa (ISO 2533, sea level).
 const StandardAtmosphere = 101325.0
 
-// Limits is the range in which an equation of state is valid.
-type Limits struct {
-	TemperatureMin, TemperatureMax float64 // K
-	PressureMax                    float64 // Pa
-	DensityMax                     float64 // kg/m3
-}
-
-// Point is a state point named by temperature, pressure and density.
-type Point struct {
-	T   float64 // K
-	P   float64 // Pa
-	Rho float64 // kg/m3
-}
-
-// Refrigerant computes the states of one refrigerant, with enthalpy and entropy counted from one datum. It is immutable,
+// Pure computes the states of a pure refrigerant, with enthalpy and entropy counted from one datum. It is immutable,
 // cheap to copy and safe for concurrent use.
-type Refrigerant struct {
+type Pure struct {
 	*fluid
 	curve       *saturation.Curve
 	limits      Limits
@@ -81,17 +67,17 @@ func (f *fluid) saturation() *saturation.Curve {
 }
 
 // view returns the refrigerant with enthalpies and entropies as the equation itself counts them.
-func (f *fluid) view() *Refrigerant {
+func (f *fluid) view() *Pure {
 	f.saturation()
 	return f.plain()
 }
 
 // plain is view when the saturation curve has just been made.
-func (f *fluid) plain() *Refrigerant {
+func (f *fluid) plain() *Pure {
 	c := f.made
 	v := f.rec.Validity
 	_, liquid, _ := c.At(c.TMin)
-	return &Refrigerant{fluid: f, curve: c, limits: Limits{
+	return &Pure{fluid: f, curve: c, limits: Limits{
 		TemperatureMin: v.TemperatureMin,
 		// The saturation curve itself belongs to the range even where the stated one ends just below the critical point.
 		TemperatureMax: math.Max(v.TemperatureMax, c.TCritical),
@@ -110,46 +96,43 @@ func (f *fluid) Record() *data.Record { return &f.rec }
 func (f *fluid) MolarMass() float64 { return f.M }
 
 // Datum returns the datum that is in force, never DefaultDatum.
-func (r *Refrigerant) Datum() Datum { return r.datum }
+func (r *Pure) Datum() Datum { return r.datum }
 
 // Extrapolate returns a view that also answers above the temperature, pressure and density limits of the equation: to
 // 1.5 times the highest temperature, 2 times the highest pressure and 1.15 times the highest density. The answers are
-// extrapolations; [Refrigerant.Extrapolated] tells which.
-func (r *Refrigerant) Extrapolate() *Refrigerant {
+// extrapolations; [Pure.Extrapolated] tells which.
+func (r *Pure) Extrapolate() *Pure {
 	view := *r
 	view.extrapolate = true
 	return &view
 }
 
 // Limits returns the range of validity of the equation.
-func (r *Refrigerant) Limits() Limits { return r.limits }
+func (r *Pure) Limits() Limits { return r.limits }
 
 // reach returns the range in which the view answers.
-func (r *Refrigerant) reach() Limits {
-	l := r.limits
+func (r *Pure) reach() Limits {
 	if r.extrapolate {
-		l.TemperatureMax *= 1.5
-		l.PressureMax *= 2
-		l.DensityMax *= 1.15
+		return r.limits.Extrapolated()
 	}
-	return l
+	return r.limits
 }
 
 // Critical returns the critical point of the equation itself, which differs slightly from the one its authors state.
-func (r *Refrigerant) Critical() Point {
+func (r *Pure) Critical() Point {
 	return Point{T: r.curve.TCritical, P: r.curve.PCritical, Rho: r.curve.RhoCritical * r.M}
 }
 
 // SaturationLimits returns the lowest temperature in K and pressure in Pa of the saturation curve, which are those of
 // the triple point where the equation reaches it.
-func (r *Refrigerant) SaturationLimits() (T, p float64) { return r.curve.TMin, r.curve.PMin }
+func (r *Pure) SaturationLimits() (T, p float64) { return r.curve.TMin, r.curve.PMin }
 
 // SaturationBounds returns the largest relative errors of the saturation curve that were measured when it was made.
-func (r *Refrigerant) SaturationBounds() saturation.Bounds { return r.curve.Bounds() }
+func (r *Pure) SaturationBounds() saturation.Bounds { return r.curve.Bounds() }
 
 // NormalBoilingPoint returns the boiling temperature at 101.325 kPa in K, or NaN when the saturation curve begins above
 // that pressure: R744 sublimes there, the ranges of R161 and R1132(E) do not reach it.
-func (r *Refrigerant) NormalBoilingPoint() float64 {
+func (r *Pure) NormalBoilingPoint() float64 {
 	T, err := r.SaturationTemperature(StandardAtmosphere)
 	if err != nil {
 		return math.NaN()
@@ -158,9 +141,9 @@ func (r *Refrigerant) NormalBoilingPoint() float64 {
 }
 
 // SaturationPressure returns the vapour pressure in Pa at temperature T in K. It returns a [*RangeError] unless T lies
-// between the lowest temperature of the equation and its critical temperature. The same holds for [Refrigerant.BubblePoint]
-// and [Refrigerant.DewPoint].
-func (r *Refrigerant) SaturationPressure(T float64) (float64, error) {
+// between the lowest temperature of the equation and its critical temperature. The same holds for [Pure.BubblePoint]
+// and [Pure.DewPoint].
+func (r *Pure) SaturationPressure(T float64) (float64, error) {
 	if err := r.checkSaturationTemperature(T); err != nil {
 		return 0, err
 	}
@@ -169,7 +152,7 @@ func (r *Refrigerant) SaturationPressure(T float64) (float64, error) {
 
 // SaturationTemperature returns the boiling temperature in K at pressure p in Pa. It returns a [*RangeError] unless p lies
 // between the vapour pressure at the lowest temperature of the equation and the critical pressure.
-func (r *Refrigerant) SaturationTemperature(p float64) (float64, error) {
+func (r *Pure) SaturationTemperature(p float64) (float64, error) {
 	if err := r.checkSaturationPressure(p); err != nil {
 		return 0, err
 	}
@@ -177,25 +160,25 @@ func (r *Refrigerant) SaturationTemperature(p float64) (float64, error) {
 }
 
 // BubblePoint returns saturated liquid at temperature T in K: phase Liquid, quality 0.
-func (r *Refrigerant) BubblePoint(T float64) (State, error) { return r.TemperatureQuality(T, 0) }
+func (r *Pure) BubblePoint(T float64) (State, error) { return r.TemperatureQuality(T, 0) }
 
 // DewPoint returns saturated vapour at temperature T in K: phase Vapour, quality 1.
-func (r *Refrigerant) DewPoint(T float64) (State, error) { return r.TemperatureQuality(T, 1) }
+func (r *Pure) DewPoint(T float64) (State, error) { return r.TemperatureQuality(T, 1) }
 
 // BubblePointAtPressure returns saturated liquid at pressure p in Pa.
-func (r *Refrigerant) BubblePointAtPressure(p float64) (State, error) { return r.PressureQuality(p, 0) }
+func (r *Pure) BubblePointAtPressure(p float64) (State, error) { return r.PressureQuality(p, 0) }
 
 // DewPointAtPressure returns saturated vapour at pressure p in Pa.
-func (r *Refrigerant) DewPointAtPressure(p float64) (State, error) { return r.PressureQuality(p, 1) }
+func (r *Pure) DewPointAtPressure(p float64) (State, error) { return r.PressureQuality(p, 1) }
 
-func (r *Refrigerant) checkSaturationTemperature(T float64) error {
+func (r *Pure) checkSaturationTemperature(T float64) error {
 	if !(r.curve.TMin <= T && T <= r.curve.TCritical) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Temperature, Value: T, Min: r.curve.TMin, Max: r.curve.TCritical, Limit: LimitSaturation}
 	}
 	return nil
 }
 
-func (r *Refrigerant) checkSaturationPressure(p float64) error {
+func (r *Pure) checkSaturationPressure(p float64) error {
 	if !(r.curve.PMin <= p && p <= r.curve.PCritical) {
 		return &RangeError{Refrigerant: r.rec.ID, Property: Pressure, Value: p, Min: r.curve.PMin, Max: r.curve.PCritical, Limit: LimitSaturation}
 	}

@@ -137,7 +137,7 @@ func TestUnattainable(t *testing.T) {
 
 // checkAnswer fails the test when an answer of States is not one: no state and no error, both, a state with a number
 // that does not exist, an error of an unknown type or one that contradicts itself.
-func checkAnswer(t testing.TB, r *props.Refrigerant, a, b props.Given, states []props.State, err error) {
+func checkAnswer(t testing.TB, r *props.Pure, a, b props.Given, states []props.State, err error) {
 	t.Helper()
 	fail := func(format string, args ...any) {
 		t.Helper()

@@ -43,7 +43,7 @@ func value(s props.State, p props.Property) float64 {
 
 // sample returns a random state of r: half of them anywhere in temperature and density, a fifth inside the dome, the
 // rest near the saturation line and near the critical point. It reports false when the draw lies outside validity.
-func sample(r *props.Refrigerant, rng *rand.Rand) (props.State, bool) {
+func sample(r *props.Pure, rng *rand.Rand) (props.State, bool) {
 	l, c := r.Limits(), r.Critical()
 	between := func(a, b float64) float64 { return a + (b-a)*rng.Float64() }
 	var s props.State
@@ -83,7 +83,7 @@ func TestRoundTrips(t *testing.T) {
 		perRefrigerant = n
 	}
 	pairs := allPairs()
-	for _, id := range catalogue(t).Designations() {
+	for _, id := range catalogue(t).PureDesignations() {
 		t.Run(id, func(t *testing.T) {
 			t.Parallel()
 			r := refrigerant(t, id)
@@ -116,7 +116,7 @@ func TestRoundTrips(t *testing.T) {
 }
 
 // recovered checks one state and pair and reports whether the solver refused the pair as too weak there.
-func recovered(t *testing.T, r *props.Refrigerant, s props.State, a, b props.Given) bool {
+func recovered(t *testing.T, r *props.Pure, s props.State, a, b props.Given) bool {
 	t.Helper()
 	states, err := r.States(a, b)
 	if _, ok := errors.AsType[*props.ConditionError](err); ok {

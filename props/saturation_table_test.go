@@ -61,7 +61,7 @@ func TestSaturationTable(t *testing.T) {
 	})
 }
 
-func saturated(t *testing.T, r *props.Refrigerant, row printed.Row) (l, v props.State, err error) {
+func saturated(t *testing.T, r *props.Pure, row printed.Row) (l, v props.State, err error) {
 	t.Helper()
 	var errV error
 	switch row["given"] {

@@ -68,7 +68,7 @@ func tabulated(t *testing.T, row printed.Row) (s props.State, h0, s0 float64, er
 
 // atPressure returns the state of a row that gives temperature and pressure. Tables go a little beyond the range of
 // their equation, and along the melting line, whose temperature they print rounded.
-func atPressure(t *testing.T, r *props.Refrigerant, row printed.Row) (props.State, error) {
+func atPressure(t *testing.T, r *props.Pure, row printed.Row) (props.State, error) {
 	t.Helper()
 	T, _ := row.Value(t, "input_T_K")
 	p := row.Input(t, "input_p_kPa") * 1e3
@@ -95,7 +95,7 @@ func atPressure(t *testing.T, r *props.Refrigerant, row printed.Row) (props.Stat
 	return s, err
 }
 
-func meltingPressure(t *testing.T, r *props.Refrigerant, T float64) float64 {
+func meltingPressure(t *testing.T, r *props.Pure, T float64) float64 {
 	t.Helper()
 	_, err := r.Extrapolate().TemperaturePressure(T, 1.5*r.Limits().PressureMax)
 	e, ok := errors.AsType[*props.RangeError](err)

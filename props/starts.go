@@ -17,7 +17,7 @@ type isobarStarts struct {
 }
 
 // makeStarts fills the table with the view that counts from the equation's own datum.
-func makeStarts(r *Refrigerant) starts {
+func makeStarts(r *Pure) starts {
 	var out starts
 	tc, pc := r.curve.TCritical, r.curve.PCritical
 	for _, x := range []float64{1, 1.1, 1.25, 1.5, 2, 3, 5, 10, 30, 100} {

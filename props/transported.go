@@ -30,7 +30,7 @@ func (t *Transport) Cautions() []transport.Caution {
 
 // Transport returns the transport properties of a state that r made, by the recommended published correlations. It
 // returns a [*transport.StateError] when no correlation gives a usable value there.
-func (r *Refrigerant) Transport(s State) (Transport, error) {
+func (r *Pure) Transport(s State) (Transport, error) {
 	nan := transport.Value{Value: math.NaN()}
 	t := Transport{Viscosity: nan, ThermalConductivity: nan, SurfaceTension: nan, Prandtl: math.NaN()}
 	var err error
@@ -57,7 +57,7 @@ func (r *Refrigerant) Transport(s State) (Transport, error) {
 
 // TransportRecords returns what the transport correlations of a property are, in order of preference. The caller must
 // not modify them.
-func (r *Refrigerant) TransportRecords(p transport.Property) []*transport.Record {
+func (r *Pure) TransportRecords(p transport.Property) []*transport.Record {
 	return r.flow.Records(p)
 }
 

@@ -91,8 +91,12 @@ func (s *settings) serve(ctx context.Context, log *slog.Logger) error {
 	}
 	go func() {
 		start := time.Now()
-		if err := a.Warm(ctx); err == nil {
-			log.LogAttrs(ctx, slog.LevelInfo, "ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
+		if err := a.Warm(ctx); err != nil {
+			return
+		}
+		log.LogAttrs(ctx, slog.LevelInfo, "ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
+		if err := a.WarmBlends(ctx); err == nil { // ready without them: a first request makes the one it needs
+			log.LogAttrs(ctx, slog.LevelInfo, "blends ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
 		}
 	}()
 	select {

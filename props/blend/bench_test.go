@@ -10,13 +10,13 @@ import (
 
 // The benchmarks come in families to be compared as ratios in one run: a blend against its components or a pure fluid.
 
-func pure(b *testing.B, designation string) *props.Refrigerant {
+func pure(b *testing.B, designation string) *props.Pure {
 	b.Helper()
 	c, err := props.NewCatalogue()
 	if err != nil {
 		b.Fatal(err)
 	}
-	r, err := c.Refrigerant(designation, props.DefaultDatum)
+	r, err := c.Pure(designation, props.DefaultDatum)
 	if err != nil {
 		b.Fatal(err)
 	}

@@ -12,13 +12,6 @@ import (
 // StandardAtmosphere is the pressure of normal bubble and dew points in Pa.
 const StandardAtmosphere = 101325.0
 
-// Point is a state point named by temperature, pressure and density.
-type Point struct {
-	T   float64 // K
-	P   float64 // Pa
-	Rho float64 // kg/m3
-}
-
 // Blend computes the states of one blend, with enthalpy and entropy counted from one datum. It is immutable, cheap to copy
 // and safe for concurrent use.
 type Blend struct {
@@ -68,7 +61,7 @@ func (b *Blend) solver() *solver {
 	s := b.solvers.Get().(*solver)
 	s.b, s.d, s.reach = b, b.d, b.limits
 	if b.extrapolate {
-		s.reach = b.limits.extrapolated()
+		s.reach = b.limits.Extrapolated()
 	}
 	return s
 }
@@ -145,7 +138,7 @@ func (b *Blend) Cricondentherm() Point { return b.point(b.d.topT) }
 // Cricondenbar returns the point of the envelope with the highest pressure.
 func (b *Blend) Cricondenbar() Point { return b.point(b.d.topP) }
 
-func (b *Blend) point(e edgePoint) Point { return Point{e.T, e.p, e.rho * b.whole.M} }
+func (b *Blend) point(e edgePoint) Point { return Point{T: e.T, P: e.p, Rho: e.rho * b.whole.M} }
 
 // Envelope returns saturated states along the whole phase envelope, in order from the cold end of the bubble line, closely
 // past the critical point, to the cold end of the dew line. It returns at least n states, and a [*ConvergenceError] when

@@ -1,34 +1,5 @@
 package blend
 
-import "slices"
-
-// Datum says where enthalpy and entropy of a blend are zero or have an agreed value.
-type Datum uint8
-
-// The datums. Each needs a bubble point of the blend itself at its reference point; see [Blend.Datums].
-const (
-	// DefaultDatum is IIR, or NBP for a blend that is no liquid at 0 °C.
-	DefaultDatum Datum = iota
-	IIR                // saturated liquid at 0 °C: h = 200 kJ/kg, s = 1 kJ/(kg K)
-	ASHRAE             // saturated liquid at -40 °C: h = 0, s = 0
-	NBP                // saturated liquid at 101.325 kPa: h = 0, s = 0
-)
-
-var datumNames = [...]string{"", "IIR", "ASHRAE", "NBP"}
-
-func (d Datum) String() string {
-	if int(d) >= len(datumNames) {
-		return "unknown"
-	}
-	return datumNames[d]
-}
-
-// ParseDatum returns the datum with that name and reports whether there is one.
-func ParseDatum(name string) (Datum, bool) {
-	i := slices.Index(datumNames[:], name)
-	return Datum(max(i, 0)), i > 0
-}
-
 // WithDatum returns the view of the blend that counts from d. It makes the phase envelope, and returns an [*EnvelopeError]
 // when there is none or a [*DatumError] when the blend is no saturated liquid at the reference point.
 func (m *mixture) WithDatum(d Datum) (*Blend, error) {

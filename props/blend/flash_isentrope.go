@@ -166,7 +166,7 @@ func (s *solver) isenthalp(enthalpy, energy float64) ([]result, error) {
 	// An isenthalp may leave the range of temperatures and come back. Walking it in a wider range leaves no gap.
 	strict := s.reach
 	defer func() { s.reach = strict }()
-	s.reach = strict.extrapolated()
+	s.reach = strict.Extrapolated()
 	s.reach.PressureMax = strict.PressureMax
 	lo, hi, err := s.walk(Enthalpy, enthalpy)
 	if err != nil {

@@ -124,7 +124,7 @@ func (s *solver) retrograde(ends [2]tie, given, wanted constraint) ([]result, er
 		}
 	})
 	if len(out) == 0 {
-		return nil, &NoSolutionError{Refrigerant: s.m.designation, Pair: [2]Given{{given.of, given.value}, {Quality, wanted.value}}}
+		return nil, &NoSolutionError{Refrigerant: s.m.designation, Pair: [2]Given{{Property: given.of, Value: given.value}, {Property: Quality, Value: wanted.value}}}
 	}
 	return out, nil
 }

@@ -18,7 +18,7 @@ func TestPureLimit(t *testing.T) {
 		t.Fatal(err)
 	}
 	for _, pair := range [][2]string{{"R32", "R125"}, {"R125", "R32"}, {"R1234yf", "R32"}, {"R290", "R600a"}, {"R134a", "R1234ze(E)"}, {"R1234ze(E)", "R227ea"}, {"R600a", "R744"}} {
-		pure, err := catalogue.Refrigerant(pair[0], props.DefaultDatum)
+		pure, err := catalogue.Pure(pair[0], props.DefaultDatum)
 		if err != nil {
 			t.Fatal(err)
 		}

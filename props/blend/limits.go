@@ -2,13 +2,6 @@ package blend
 
 import "math"
 
-// Limits is the range in which a blend is computed.
-type Limits struct {
-	TemperatureMin, TemperatureMax float64 // K
-	PressureMax                    float64 // Pa
-	DensityMax                     float64 // kg/m3
-}
-
 // What sets a limit, as [RangeError] names it.
 const (
 	LimitValidity   = "range of the mixture model, from the validity of its components"
@@ -25,9 +18,6 @@ const (
 	lowestReduced    = 0.45 // of the reducing temperature; colder, the vapour pressure is of no use any more
 	highestReduced   = 1.1  // of the reducing temperature, at least covered whatever the components say
 	pressureHeadroom = 1.2  // of the highest pressure on the envelope, likewise
-	extraTemperature = 1.5  // factors by which extrapolation exceeds the limits
-	extraPressure    = 2.0
-	extraDensity     = 1.15
 )
 
 // componentLimits returns the limits that follow from the components alone, with the density in mol/m3.
@@ -65,14 +55,6 @@ func (m *mixture) molarLimits(d *dome) Limits {
 	l.TemperatureMax = math.Max(l.TemperatureMax, 1.02*d.topT.T)
 	l.PressureMax = math.Max(l.PressureMax, pressureHeadroom*d.topP.p)
 	l.DensityMax = math.Max(l.DensityMax, d.min[dense].rho*(1+1e-9))
-	return l
-}
-
-// extrapolated returns the wider range of a view that extrapolates.
-func (l Limits) extrapolated() Limits {
-	l.TemperatureMax *= extraTemperature
-	l.PressureMax *= extraPressure
-	l.DensityMax *= extraDensity
 	return l
 }
 
@@ -142,6 +124,6 @@ func (s *solver) unattainable(p Property, value, lo, hi float64) error {
 
 // stuck reports a solver that found no answer.
 func (s *solver) stuck(a, b constraint) error {
-	given := func(c constraint) Given { return Given{c.of, s.b.outward(c.of, c.value)} }
+	given := func(c constraint) Given { return Given{Property: c.of, Value: s.b.outward(c.of, c.value)} }
 	return &ConvergenceError{Refrigerant: s.m.designation, Pair: [2]Given{given(a), given(b)}, T: s.bulk.T, Rho: s.bulk.rho * s.m.whole.M}
 }

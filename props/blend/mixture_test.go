@@ -223,12 +223,6 @@ func TestDatums(t *testing.T) {
 	} else if _, ok := errors.AsType[*blend.DatumError](err); !ok {
 		t.Errorf("a blend of water: %v", err)
 	}
-	if d, ok := blend.ParseDatum("ASHRAE"); !ok || d != blend.ASHRAE {
-		t.Error("ParseDatum does not know ASHRAE")
-	}
-	if _, ok := blend.ParseDatum("triple_point"); ok {
-		t.Error("ParseDatum knows triple_point")
-	}
 }
 
 // Questions without an answer name the property, the value and the limit; nothing panics.

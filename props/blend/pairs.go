@@ -62,50 +62,50 @@ func (b *Blend) linesSpan(of Property, l *line) (lo, hi float64) {
 
 // TemperatureDensity returns the state at T in K and rho in kg/m3.
 func (b *Blend) TemperatureDensity(T, rho float64) (State, error) {
-	return b.only(Given{Temperature, T}, Given{Density, rho})
+	return b.only(Given{Property: Temperature, Value: T}, Given{Property: Density, Value: rho})
 }
 
 // TemperaturePressure returns the state at T in K and p in Pa, which may be one of two phases. At an azeotrope, where the
 // pair does not tell liquid from vapour, it returns an [*AmbiguousError] with both.
 func (b *Blend) TemperaturePressure(T, p float64) (State, error) {
-	return b.only(Given{Temperature, T}, Given{Pressure, p})
+	return b.only(Given{Property: Temperature, Value: T}, Given{Property: Pressure, Value: p})
 }
 
 // TemperatureQuality returns the state inside the envelope at T in K and vapour quality q by mass, from 0 to 1. Between the
 // critical point and the cricondentherm there may be two, which it returns as an [*AmbiguousError].
 func (b *Blend) TemperatureQuality(T, q float64) (State, error) {
-	return b.only(Given{Temperature, T}, Given{Quality, q})
+	return b.only(Given{Property: Temperature, Value: T}, Given{Property: Quality, Value: q})
 }
 
 // PressureQuality returns the state inside the envelope at p in Pa and vapour quality q by mass, from 0 to 1. Between the
 // critical point and the cricondenbar there may be two, which it returns as an [*AmbiguousError].
 func (b *Blend) PressureQuality(p, q float64) (State, error) {
-	return b.only(Given{Pressure, p}, Given{Quality, q})
+	return b.only(Given{Property: Pressure, Value: p}, Given{Property: Quality, Value: q})
 }
 
 // PressureEnthalpy returns the state at p in Pa and h in J/kg. The pair has one solution at most.
 func (b *Blend) PressureEnthalpy(p, h float64) (State, error) {
-	return b.only(Given{Pressure, p}, Given{Enthalpy, h})
+	return b.only(Given{Property: Pressure, Value: p}, Given{Property: Enthalpy, Value: h})
 }
 
 // PressureEntropy returns the state at p in Pa and s in J/(kg K). The pair has one solution at most.
 func (b *Blend) PressureEntropy(p, s float64) (State, error) {
-	return b.only(Given{Pressure, p}, Given{Entropy, s})
+	return b.only(Given{Property: Pressure, Value: p}, Given{Property: Entropy, Value: s})
 }
 
 // PressureInternalEnergy returns the state at p in Pa and u in J/kg. The pair has one solution at most.
 func (b *Blend) PressureInternalEnergy(p, u float64) (State, error) {
-	return b.only(Given{Pressure, p}, Given{InternalEnergy, u})
+	return b.only(Given{Property: Pressure, Value: p}, Given{Property: InternalEnergy, Value: u})
 }
 
 // EnthalpyEntropy returns the state at h in J/kg and s in J/(kg K). The pair has one solution at most.
 func (b *Blend) EnthalpyEntropy(h, s float64) (State, error) {
-	return b.only(Given{Enthalpy, h}, Given{Entropy, s})
+	return b.only(Given{Property: Enthalpy, Value: h}, Given{Property: Entropy, Value: s})
 }
 
 // EntropyInternalEnergy returns the state at s in J/(kg K) and u in J/kg. The pair has one solution at most.
 func (b *Blend) EntropyInternalEnergy(s, u float64) (State, error) {
-	return b.only(Given{Entropy, s}, Given{InternalEnergy, u})
+	return b.only(Given{Property: Entropy, Value: s}, Given{Property: InternalEnergy, Value: u})
 }
 
 // only returns the one state that has both given properties.
@@ -117,8 +117,8 @@ func (b *Blend) only(x, y Given) (State, error) {
 	switch len(results) {
 	case 1:
 		st := b.state(&results[0])
-		echo(&st, x)
-		echo(&st, y)
+		st.Set(x)
+		st.Set(y)
 		return st, nil
 	case 0:
 		return State{}, &NoSolutionError{Refrigerant: b.designation, Pair: [2]Given{x, y}}
@@ -148,7 +148,7 @@ func (b *Blend) State(x, y Given, phase Phase) (State, error) {
 	}
 	match := all
 	if phase != AnyPhase {
-		match = slices.DeleteFunc(slices.Clone(all), func(s State) bool { return !s.is(phase) })
+		match = slices.DeleteFunc(slices.Clone(all), func(s State) bool { return !s.Is(phase) })
 	}
 	switch len(match) {
 	case 1:
@@ -159,40 +159,15 @@ func (b *Blend) State(x, y Given, phase Phase) (State, error) {
 	return State{}, &AmbiguousError{Refrigerant: b.designation, Pair: [2]Property{x.Property, y.Property}, Solutions: match}
 }
 
-// is reports whether the state is of that phase; saturated liquid and vapour count as two-phase too.
-func (s *State) is(phase Phase) bool {
-	return s.Phase == phase || phase == TwoPhase && (s.Quality == 0 || s.Quality == 1)
-}
-
 func (b *Blend) states(results []result, x, y Given) []State {
 	out := make([]State, len(results))
 	for i := range results {
 		out[i] = b.state(&results[i])
-		echo(&out[i], x)
-		echo(&out[i], y)
+		out[i].Set(x)
+		out[i].Set(y)
 	}
 	slices.SortFunc(out, func(s, t State) int { return cmp.Or(cmp.Compare(s.T, t.T), cmp.Compare(t.Rho, s.Rho)) })
 	return out
-}
-
-// echo puts the value that was given into the state, in place of the one that came back from the solver a rounding away.
-func echo(s *State, g Given) {
-	switch g.Property {
-	case Temperature:
-		s.T = g.Value
-	case Pressure:
-		s.P = g.Value
-	case Density:
-		s.Rho = g.Value
-	case Enthalpy:
-		s.H = g.Value
-	case Entropy:
-		s.S = g.Value
-	case InternalEnergy:
-		s.U = g.Value
-	case Quality:
-		s.Quality = g.Value
-	}
 }
 
 // solve returns every result that has both given properties.

@@ -32,7 +32,7 @@ func TestAirCheckPoint(t *testing.T) {
 // The psychrometric saturation pressures agree with the equation of state of water within the 0.02 % that their
 // verification states, plus its rounding.
 func TestVapourPressureAgainstWater(t *testing.T) {
-	r, err := catalogue().Refrigerant("R718", props.DefaultDatum)
+	r, err := catalogue().Pure("R718", props.DefaultDatum)
 	if err != nil {
 		t.Fatal(err)
 	}

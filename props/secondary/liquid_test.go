@@ -22,7 +22,7 @@ var catalogue = sync.OnceValue(func() *props.Catalogue {
 
 func water(t testing.TB) *Liquid {
 	t.Helper()
-	r, err := catalogue().Refrigerant("R718", props.DefaultDatum)
+	r, err := catalogue().Pure("R718", props.DefaultDatum)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -116,7 +116,7 @@ func TestWaterTable(t *testing.T) {
 // made from.
 func TestWaterFollowsItsEquation(t *testing.T) {
 	w := water(t)
-	r, err := catalogue().Refrigerant("R718", props.DefaultDatum)
+	r, err := catalogue().Pure("R718", props.DefaultDatum)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -14,7 +14,7 @@ const waterTerms = 20
 
 // NewWater returns liquid water from 0 °C to the boiling point at [WaterPressure], from R718's equation of
 // state and transport correlations. It returns an error of the property core when r cannot give them.
-func NewWater(r *props.Refrigerant) (*Liquid, error) {
+func NewWater(r *props.Pure) (*Liquid, error) {
 	low, _ := r.SaturationLimits() // 0.01 °C; the expansions go on to 0 °C
 	high, err := r.SaturationTemperature(WaterPressure)
 	if err != nil {

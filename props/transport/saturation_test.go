@@ -18,7 +18,7 @@ func Example() {
 	if err != nil {
 		log.Fatal(err)
 	}
-	propane, err := catalogue.Refrigerant("R290", props.DefaultDatum)
+	propane, err := catalogue.Pure("R290", props.DefaultDatum)
 	if err != nil {
 		log.Fatal(err)
 	}
@@ -70,7 +70,7 @@ func TestSaturationTable(t *testing.T) {
 			}
 			return v, 0.5 * math.Pow(10, -float64(digits))
 		}
-		r, err := catalogue.Refrigerant(row[0], props.DefaultDatum)
+		r, err := catalogue.Pure(row[0], props.DefaultDatum)
 		if err != nil {
 			t.Fatal(err)
 		}

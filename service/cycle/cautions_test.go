@@ -49,7 +49,7 @@ func TestCautions(t *testing.T) {
 		{"flash gas", func(r *cycle.Request) { r.LiquidLine.Pressure = 200e3 }, cycle.FlashBeforeValve, "", "5"},
 		{"vapour warmer than the source", func(r *cycle.Request) { r.Evaporation.Superheat = new(9.0) }, cycle.OutletAboveSource, "source_temperature", "7"},
 		{"beyond validity", func(r *cycle.Request) {
-			r.Refrigerant = r.Refrigerant.(*props.Refrigerant).Extrapolate()
+			r.Refrigerant = r.Refrigerant.(*props.Pure).Extrapolate()
 			r.Compressor.IsentropicEfficiency = new(0.06)
 		}, cycle.Extrapolated, "", "2"},
 	} {

@@ -25,7 +25,7 @@ func sometimes(rng *rand.Rand, probability, v float64) float64 {
 }
 
 // randomSingleStage returns a request with everything a single stage can have, its reservoirs such that heat flows down.
-func randomSingleStage(rng *rand.Rand, fluid *props.Refrigerant) *cycle.Request {
+func randomSingleStage(rng *rand.Rand, fluid *props.Pure) *cycle.Request {
 	Tc, limits := fluid.Critical().T, fluid.Limits()
 	cold, _ := fluid.SaturationLimits()
 	Te := between(rng, max(cold+1, 0.62*Tc), 0.85*Tc)
@@ -166,7 +166,7 @@ func TestSingleStageAccountsClose(t *testing.T) {
 		trials = 5
 	}
 	solved, refused := 0, 0
-	for _, name := range c.Designations() {
+	for _, name := range c.PureDesignations() {
 		fluid := refrigerant(t, name, props.DefaultDatum)
 		for range trials {
 			r := randomSingleStage(rng, fluid)
@@ -250,7 +250,7 @@ func TestCOPDoesNotDependOnDatum(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			fluid, err := c.Refrigerant(name, datum)
+			fluid, err := c.Pure(name, datum)
 			if _, impossible := errors.AsType[*props.DatumError](err); impossible {
 				continue
 			}

@@ -67,7 +67,7 @@ func (e example) request(t testing.TB) *cycle.Request {
 	return r
 }
 
-func boiling(t testing.TB, r *props.Refrigerant, p float64) float64 {
+func boiling(t testing.TB, r *props.Pure, p float64) float64 {
 	t.Helper()
 	T, err := r.SaturationTemperature(p)
 	if err != nil {
@@ -81,7 +81,7 @@ func boiling(t testing.TB, r *props.Refrigerant, p float64) float64 {
 func saturatedLiquid(t testing.TB, e example, r *cycle.Request, inlet float64) {
 	t.Helper()
 	r.Condensation = cycle.Condensation{Temperature: e.celsius(t, "T_liquid_C"), Subcooling: new(0.0)}
-	p, err := r.Refrigerant.(*props.Refrigerant).SaturationPressure(*r.Condensation.Temperature)
+	p, err := r.Refrigerant.(*props.Pure).SaturationPressure(*r.Condensation.Temperature)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -93,7 +93,7 @@ var special = map[string]func(t testing.TB, e example, r *cycle.Request){
 	// The suction line has a pressure drop and warms the gas; the compressor goes by its measured discharge temperature. The
 	// condensing pressure is the discharge pressure.
 	"BS-6-10": func(t testing.TB, e example, r *cycle.Request) {
-		fluid := r.Refrigerant.(*props.Refrigerant)
+		fluid := r.Refrigerant.(*props.Pure)
 		r.Evaporation.Superheat = new(0.0)
 		p, err := fluid.SaturationPressure(*r.Evaporation.Temperature)
 		if err != nil {
@@ -117,7 +117,7 @@ var special = map[string]func(t testing.TB, e example, r *cycle.Request){
 	},
 	// Pressure drops in suction line and condenser; sized by suction volume flow.
 	"CB-P11-0.3": func(t testing.TB, e example, r *cycle.Request) {
-		fluid := r.Refrigerant.(*props.Refrigerant)
+		fluid := r.Refrigerant.(*props.Pure)
 		r.Evaporation = cycle.Evaporation{Temperature: e.celsius(t, "T_evap_out_C"), Superheat: new(0.0)}
 		p, err := fluid.SaturationPressure(*r.Evaporation.Temperature)
 		if err != nil {
@@ -133,7 +133,7 @@ var special = map[string]func(t testing.TB, e example, r *cycle.Request){
 	},
 	// Wet compression that ends at saturated vapour: the suction quality is that of equal entropy.
 	"RAM-10-5": func(t testing.TB, _ example, r *cycle.Request) {
-		fluid := r.Refrigerant.(*props.Refrigerant)
+		fluid := r.Refrigerant.(*props.Pure)
 		dew, err := fluid.DewPoint(*r.Condensation.Temperature)
 		if err != nil {
 			t.Fatal(err)
@@ -218,7 +218,7 @@ var quantities = map[string]func(x *solvedExample) float64{
 type solvedExample struct {
 	*cycle.Solution
 	t      *testing.T
-	fluid  *props.Refrigerant
+	fluid  *props.Pure
 	single *cycle.Solution // the single stage beside another layout
 }
 
@@ -382,7 +382,7 @@ func TestPublishedExamples(t *testing.T) {
 			if change, is := special[id]; is {
 				change(t, e, r)
 			}
-			fluid := r.Refrigerant.(*props.Refrigerant)
+			fluid := r.Refrigerant.(*props.Pure)
 			single := solve(t, r)
 			x := &solvedExample{single, t, fluid, nil}
 			layout := x

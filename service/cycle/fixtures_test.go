@@ -15,13 +15,13 @@ import (
 var catalogue = sync.OnceValues(props.NewCatalogue)
 
 // refrigerant returns a refrigerant in the given datum.
-func refrigerant(t testing.TB, name string, datum props.Datum) *props.Refrigerant {
+func refrigerant(t testing.TB, name string, datum props.Datum) *props.Pure {
 	t.Helper()
 	c, err := catalogue()
 	if err != nil {
 		t.Fatal(err)
 	}
-	r, err := c.Refrigerant(name, datum)
+	r, err := c.Pure(name, datum)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -22,7 +22,7 @@ func FuzzSolve(f *testing.F) {
 	if err != nil {
 		f.Fatal(err)
 	}
-	names := c.Designations()
+	names := c.PureDesignations()
 	f.Fuzz(func(t *testing.T, layout, with, name byte, te, superheat, tk, subcooling, efficiency, loss, share, p, drop, source, sink float64) {
 		r := &cycle.Request{
 			Refrigerant: refrigerant(t, names[int(name)%len(names)], props.DefaultDatum),

@@ -23,7 +23,7 @@ func anyRefrigerant(t *testing.T, rng *rand.Rand) *cycle.Request {
 	if err != nil {
 		t.Fatal(err)
 	}
-	names := c.Designations()
+	names := c.PureDesignations()
 	return randomSingleStage(rng, refrigerant(t, names[rng.IntN(len(names))], props.DefaultDatum))
 }
 
@@ -44,7 +44,7 @@ func middle(rng *rand.Rand, r *cycle.Request, low, high float64) {
 
 // saturation returns the request's evaporating and condensing pressure.
 func saturation(r *cycle.Request) (low, high float64) {
-	fluid := r.Refrigerant.(*props.Refrigerant)
+	fluid := r.Refrigerant.(*props.Pure)
 	low, _ = fluid.SaturationPressure(*r.Evaporation.Temperature)
 	high, _ = fluid.SaturationPressure(*r.Condensation.Temperature)
 	return low, high

@@ -6,7 +6,7 @@ import (
 	"dewmark/props"
 )
 
-// Refrigerant is what a cycle asks of a property model. [*props.Refrigerant] is one. Implementations must be safe for
+// Refrigerant is what a cycle asks of a property model. [*props.Pure] is one. Implementations must be safe for
 // concurrent use and must count enthalpy and entropy from one datum.
 //
 // More abilities are used where a model has them: SaturationPressure and SaturationTemperature, which promise that bubble

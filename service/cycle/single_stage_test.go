@@ -14,7 +14,7 @@ func TestPressuresOfThePlaces(t *testing.T) {
 	r.Evaporator.Pressure, r.SuctionLine.Pressure = 11e3, 7e3
 	r.Condenser.Pressure, r.DischargeLine.Pressure, r.LiquidLine.Pressure = 13e3, 17e3, 19e3
 	s := solve(t, r)
-	fluid := r.Refrigerant.(*props.Refrigerant)
+	fluid := r.Refrigerant.(*props.Pure)
 	pe, _ := fluid.SaturationPressure(*r.Evaporation.Temperature)
 	pc, _ := fluid.SaturationPressure(*r.Condensation.Temperature)
 	for label, want := range map[string]float64{
@@ -38,7 +38,7 @@ func TestDropsOfSaturationTemperature(t *testing.T) {
 	r.Evaporator.TemperatureEquivalent, r.SuctionLine.TemperatureEquivalent = 1, 0.7
 	r.Condenser.TemperatureEquivalent, r.DischargeLine.TemperatureEquivalent, r.LiquidLine.TemperatureEquivalent = 0.5, 0.3, 0.2
 	s := solve(t, r)
-	fluid := r.Refrigerant.(*props.Refrigerant)
+	fluid := r.Refrigerant.(*props.Pure)
 	Te, Tk := *r.Evaporation.Temperature, *r.Condensation.Temperature
 	for label, want := range map[string]float64{"7": Te, "6": Te + 1, "1": Te - 0.7, "4": Tk, "3": Tk + 0.5, "2": Tk + 0.8, "5": Tk - 0.2} {
 		if got := boiling(t, fluid, at(t, s, label).P); !near(got, want, 0, 1e-9) {
@@ -89,7 +89,7 @@ func TestMeasuredDischargeTemperature(t *testing.T) {
 func TestPressuresInsteadOfTemperatures(t *testing.T) {
 	r := heatPump(t)
 	want := solve(t, r).Performance
-	fluid := r.Refrigerant.(*props.Refrigerant)
+	fluid := r.Refrigerant.(*props.Pure)
 	pe, _ := fluid.SaturationPressure(*r.Evaporation.Temperature)
 	pc, _ := fluid.SaturationPressure(*r.Condensation.Temperature)
 	r.Evaporation.Temperature, r.Evaporation.Pressure = nil, &pe
@@ -109,7 +109,7 @@ func TestMeanReference(t *testing.T) {
 	}
 	r.Evaporator.Pressure = 20e3
 	s := solve(t, r)
-	fluid := r.Refrigerant.(*props.Refrigerant)
+	fluid := r.Refrigerant.(*props.Pure)
 	mean := (at(t, s, "6").T + boiling(t, fluid, at(t, s, "7").P)) / 2
 	if !near(mean, *r.Evaporation.Temperature, 0, 1e-9) {
 		t.Errorf("mean evaporating temperature is %.12g K, want %g K", mean, *r.Evaporation.Temperature)

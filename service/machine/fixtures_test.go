@@ -16,7 +16,7 @@ var catalogue = sync.OnceValue(func() *props.Catalogue {
 	return c
 })
 
-func refrigerant(t testing.TB, name string) *props.Refrigerant {
+func refrigerant(t testing.TB, name string) props.Refrigerant {
 	t.Helper()
 	r, err := catalogue().Refrigerant(name, props.DefaultDatum)
 	if err != nil {
@@ -26,7 +26,7 @@ func refrigerant(t testing.TB, name string) *props.Refrigerant {
 }
 
 var water = sync.OnceValue(func() *secondary.Liquid {
-	r, err := catalogue().Refrigerant("R718", props.DefaultDatum)
+	r, err := catalogue().Pure("R718", props.DefaultDatum)
 	if err != nil {
 		panic(err)
 	}
@@ -36,3 +36,9 @@ var water = sync.OnceValue(func() *secondary.Liquid {
 	}
 	return l
 })
+
+// haveRefrigerant reports whether the catalogue has a refrigerant.
+func haveRefrigerant(name string) bool {
+	_, err := catalogue().Refrigerant(name, props.DefaultDatum)
+	return err == nil
+}

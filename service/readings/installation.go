@@ -5,7 +5,7 @@ import (
 	"dewmark/service/readings/uncertainty"
 )
 
-// Refrigerant is what readings ask of a property model. [*props.Refrigerant] is one. Models with SaturationTemperature,
+// Refrigerant is what readings ask of a property model. [*props.Pure] is one. Models with SaturationTemperature,
 // which promises that bubble and dew line are one, or with BubbleTemperature and DewTemperature, answer faster.
 type Refrigerant = cycle.Refrigerant
 

@@ -1,4 +1,8 @@
-package props
+// Package terms holds the vocabulary that pure refrigerants and blends share: properties, phases, states, datums, limits
+// and refusals. Package props repeats it under its own name; only the packages below it need this one.
+//
+// Units are SI and per mass: K, Pa, kg/m3, J/kg, J/(kg K), m/s.
+package terms
 
 import (
 	"math"
@@ -88,6 +92,11 @@ type State struct {
 	DPDRho float64 // (dp/d rho) at constant T, Pa m3/kg; NaN inside the dome
 	DPDT   float64 // (dp/dT) at constant density, Pa/K; inside the dome the slope of the saturation pressure
 	Z      float64 // compressibility factor p/(rho R T)
+
+	// LiquidComposition and VapourComposition are the mass fractions of both phases of a blend in the order of its
+	// components, of which one is the blend itself on the bubble and the dew line. They are nil for a pure refrigerant and
+	// outside the dome. The caller must not modify them.
+	LiquidComposition, VapourComposition []float64
 }
 
 // V returns the specific volume in m3/kg.
@@ -110,4 +119,49 @@ func (s State) Expansivity() float64 {
 		return math.NaN()
 	}
 	return s.DPDT / (s.Rho * s.DPDRho)
+}
+
+// Is reports whether the state is of that phase; saturated liquid and vapour count as two-phase too.
+func (s State) Is(phase Phase) bool {
+	return s.Phase == phase || phase == TwoPhase && (s.Quality == 0 || s.Quality == 1)
+}
+
+// Of returns the value of a property in state s.
+func (p Property) Of(s *State) float64 {
+	switch p {
+	case Temperature:
+		return s.T
+	case Pressure:
+		return s.P
+	case Density:
+		return s.Rho
+	case Enthalpy:
+		return s.H
+	case Entropy:
+		return s.S
+	case InternalEnergy:
+		return s.U
+	default:
+		return s.Quality
+	}
+}
+
+// Set puts a value that was given into the state, in place of the one that came back from a solver a rounding away.
+func (s *State) Set(g Given) {
+	switch g.Property {
+	case Temperature:
+		s.T = g.Value
+	case Pressure:
+		s.P = g.Value
+	case Density:
+		s.Rho = g.Value
+	case Enthalpy:
+		s.H = g.Value
+	case Entropy:
+		s.S = g.Value
+	case InternalEnergy:
+		s.U = g.Value
+	case Quality:
+		s.Quality = g.Value
+	}
 }
