@@ -6,10 +6,8 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"log/slog"
 	"net/http"
 	"net/http/httptest"
-	"os"
 	"strings"
 	"sync"
 	"testing"
@@ -18,17 +16,9 @@ import (
 	"github.com/getkin/kin-openapi/openapi3filter"
 	"github.com/getkin/kin-openapi/routers"
 	"github.com/getkin/kin-openapi/routers/gorillamux"
-	"github.com/gin-gonic/gin"
-	"github.com/prometheus/client_golang/prometheus"
 
 	"dewmark/openapi"
-	"dewmark/props"
 )
-
-func TestMain(m *testing.M) {
-	gin.SetMode(gin.ReleaseMode)
-	os.Exit(m.Run())
-}
 
 // contract is the description of the interface, ready to judge requests and responses.
 type contract struct {
@@ -86,28 +76,24 @@ func ask(t testing.TB, h http.Handler, r *http.Request) *httptest.ResponseRecord
 	return w
 }
 
-// testAPI is ready and logs nothing; tests that change an API make their own.
-var testAPI = sync.OnceValues(func() (*API, error) {
-	catalogue, err := props.NewCatalogue()
-	if err != nil {
-		return nil, err
-	}
-	a, err := New(Options{
-		Catalogue: catalogue, Registry: prometheus.NewPedanticRegistry(), Logger: slog.New(slog.DiscardHandler), Version: "devel",
+var (
+	shareAPI  sync.Once
+	sharedAPI *API
+)
+
+// testAPI is ready, logs nothing and is shared; tests that change an API make their own.
+func testAPI(t testing.TB) *API {
+	t.Helper()
+	shareAPI.Do(func() {
+		sharedAPI = newAPI(t, nil)
+		sharedAPI.setReady(true)
 	})
-	if err == nil {
-		a.setReady(true)
-	}
-	return a, err
-})
+	return sharedAPI
+}
 
 func testHandler(t testing.TB) http.Handler {
 	t.Helper()
-	a, err := testAPI()
-	if err != nil {
-		t.Fatal(err)
-	}
-	return a.Handler()
+	return testAPI(t).Handler()
 }
 
 // check reports where a response is not what the description says, and where a request was answered that the description

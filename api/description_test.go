@@ -28,13 +28,9 @@ func TestDescriptionIsValid(t *testing.T) {
 
 // The routes and the paths are the same set. HEAD goes with every GET and is not described by itself.
 func TestRoutesAreDescribed(t *testing.T) {
-	a, err := testAPI()
-	if err != nil {
-		t.Fatal(err)
-	}
 	var served, described []string
 	parameter := regexp.MustCompile(`:([a-z_]+)`)
-	for _, route := range a.engine.Routes() {
+	for _, route := range testAPI(t).engine.Routes() {
 		if route.Method != http.MethodHead {
 			served = append(served, route.Method+" "+parameter.ReplaceAllString(route.Path, "{$1}"))
 		}

@@ -81,10 +81,9 @@ func TestReadmeMetrics(t *testing.T) {
 		}
 	}
 	registered := map[string]bool{}
-	a := newAPI(t, func(*Options) {})
 	descriptions := make(chan *prometheus.Desc)
 	go func() {
-		a.registry.Describe(descriptions)
+		testAPI(t).registry.Describe(descriptions)
 		close(descriptions)
 	}()
 	for d := range descriptions {
