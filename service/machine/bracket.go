@@ -21,17 +21,19 @@ func bracketed(a, b float64, f func(float64) (float64, error)) (float64, error) 
 	if err != nil || fb == 0 {
 		return b, err
 	}
-	return narrowed(a, fa, b, fb, 0, f)
+	x, _, err := narrowed(a, fa, b, fb, 0, f)
+	return x, err
 }
 
-// narrowed is [bracketed] with known ends; it also stops where f is at most enough from zero.
-func narrowed(a, fa, b, fb, enough float64, f func(float64) (float64, error)) (float64, error) {
-	best := a
+// narrowed is [bracketed] with known ends; it also stops where f is at most enough from zero. The other end of the last
+// bracket comes along.
+func narrowed(a, fa, b, fb, enough float64, f func(float64) (float64, error)) (best, other float64, err error) {
+	best, other = a, b
 	if math.Abs(fb) < math.Abs(fa) {
-		best = b
+		best, other = b, a
 	}
 	if !(fa*fb < 0) {
-		return best, nil
+		return best, best, nil
 	}
 	var c, fc float64 // the end before the last, for the interpolation
 	t := 0.5
@@ -39,7 +41,7 @@ func narrowed(a, fa, b, fb, enough float64, f func(float64) (float64, error)) (f
 		x := a + t*(b-a)
 		fx, err := f(x)
 		if err != nil {
-			return x, err
+			return x, x, err
 		}
 		if (fx < 0) == (fa < 0) {
 			c, fc = a, fa
@@ -49,9 +51,9 @@ func narrowed(a, fa, b, fb, enough float64, f func(float64) (float64, error)) (f
 		}
 		a, fa = x, fx
 		least := fa
-		best = a
+		best, other = a, b
 		if math.Abs(fb) < math.Abs(fa) {
-			best, least = b, fb
+			best, other, least = b, a, fb
 		}
 		limit := bracketWidth * math.Abs(best) / math.Abs(b-a)
 		if limit > 0.5 || math.Abs(least) <= enough {
@@ -65,5 +67,5 @@ func narrowed(a, fa, b, fb, enough float64, f func(float64) (float64, error)) (f
 		}
 		t = min(1-limit, max(limit, t))
 	}
-	return best, nil
+	return best, other, nil
 }

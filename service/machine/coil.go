@@ -31,15 +31,18 @@ func moistCapacity(W float64) float64 { return secondary.Air{W: W}.HeatCapacity(
 // middle is the refrigerant's mean temperature, which drives condensation.
 func (s *strip) middle() float64 { return (s.T1 + s.T2) / 2 }
 
-// dry returns the conductance that the heat takes without condensation.
-func (s *strip) dry(a Arrangement) float64 {
-	C, most := s.capacity(), s.air.T-s.T1
-	if glide := s.T2 - s.T1; glide > noGlide {
-		own := s.heat / glide
-		least, largest := math.Min(own, C), math.Max(own, C)
-		return least * transferUnits(a, s.heat/(least*most), least/largest, C >= own)
+// dry returns the conductance that the heat takes without condensation, or infinity. The gap is the difference at the air's
+// inlet in counterflow.
+func (s *strip) dry(a Arrangement, gap float64) float64 {
+	left := s.air.T - s.heat/s.capacity() // temperature of the air behind the strip
+	d1, d2 := left-s.T1, gap
+	if a == ParallelFlow {
+		d1, d2 = s.air.T-s.T1, left-s.T2
 	}
-	return C * transferUnits(a, s.heat/(C*most), 0, true)
+	if m := logMean(d1, d2); m > 0 {
+		return s.heat / m
+	}
+	return math.Inf(1)
 }
 
 // wet returns the conductance, as of a dry coil, that the heat takes on a wet surface, and the mean temperature of that
@@ -192,26 +195,24 @@ func (w *work) coilMismatch(ua, share float64) float64 {
 		return 1/w.coilShares(ua, share) - 1
 	}
 	needed, short := w.coilSeries(share, nil)
-	if math.IsInf(needed, 1) {
-		return short/crossReach - 1
-	}
 	w.needed = needed
-	return ua/needed - 1
+	return w.surplus(ua, needed, short)
 }
 
 // coilShares adds up the shares of a coil's zones that lie side by side.
 func (w *work) coilShares(ua, share float64) float64 {
 	var area float64
 	for i := range w.segments {
-		area += w.coilShare(&w.segments[i], ua, share)
+		area += w.coilShare(i, ua, share)
 	}
 	return area
 }
 
 // coilShare returns the share of area and air that a segment takes. A wet strip's heat grows with both alike, so the share is
 // its heat over that of the whole coil.
-func (w *work) coilShare(s *segment, ua, share float64) float64 {
-	dry := w.crossShare(s, ua)
+func (w *work) coilShare(i int, ua, share float64) float64 {
+	s := &w.segments[i]
+	dry := w.crossShare(i, ua)
 	if !w.canBeWet(s) {
 		return dry
 	}
@@ -228,12 +229,17 @@ func (w *work) coilSeries(share float64, tell visit) (needed, short float64) {
 	air := w.entering()
 	n := len(w.segments)
 	for j := range n {
-		s := &w.segments[j]
+		i := j
 		if w.arrangement == Counterflow {
-			s = &w.segments[n-1-j]
+			i = n - 1 - j
 		}
+		s := &w.segments[i]
 		k := w.strip(s, air, w.stream.flow, share)
-		ua, wet, surface := k.dry(w.arrangement), false, math.NaN()
+		gap := air.T - s.T2
+		if i == n-1 && w.arrangement == Counterflow {
+			gap = w.gap
+		}
+		ua, wet, surface := k.dry(w.arrangement, gap), false, math.NaN()
 		left := air.T - k.heat/k.capacity() - k.coldEnd(w.arrangement)
 		if w.canBeWet(s) {
 			if u, T := k.wet(); u < ua {

@@ -129,7 +129,7 @@ func (t *trial) forDemand() (settled, *Caution, error) {
 		if capacity(&s) >= t.demand {
 			start := s.x
 			var last settled
-			speed, err := narrowed(n, capacity(&now)/t.demand-1, next, capacity(&s)/t.demand-1, demandWidth, func(n float64) (float64, error) {
+			speed, _, err := narrowed(n, capacity(&now)/t.demand-1, next, capacity(&s)/t.demand-1, demandWidth, func(n float64) (float64, error) {
 				var err error
 				if last, err = t.atSpeed(n, &start); err != nil {
 					return 0, err

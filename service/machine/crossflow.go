@@ -14,7 +14,7 @@ func (w *work) beginAside() {
 	}
 	for i := range w.segments {
 		s := &w.segments[i]
-		d := w.stream.sign * (s.T2 - w.stream.inT)
+		d := w.ahead(i)
 		w.reach = math.Min(w.reach, d)
 		if !w.stream.known {
 			continue
@@ -33,20 +33,36 @@ func (w *work) crossMismatch(ua float64) float64 {
 	}
 	var area float64 // shares of all zones together
 	for i := range w.segments {
-		area += w.crossShare(&w.segments[i], ua)
+		area += w.crossShare(i, ua)
 	}
 	return 1/area - 1
 }
 
+// ahead returns by how much the refrigerant, where it leaves a segment, is on its proper side of the stream's inlet.
+func (w *work) ahead(i int) float64 {
+	if i == len(w.segments)-1 {
+		return w.gap
+	}
+	return w.stream.sign * (w.segments[i].T2 - w.stream.inT)
+}
+
 // crossShare returns the share of area and stream that a dry segment takes in crossflow at the conductance ua of the whole.
-func (w *work) crossShare(s *segment, ua float64) float64 {
+func (w *work) crossShare(i int, ua float64) float64 {
+	s := &w.segments[i]
 	C := w.stream.capacity
 	heat := w.duty * (s.to - s.from)
 	most := math.Abs(s.T1 - w.stream.inT)
 	if glide := math.Abs(s.T1 - s.T2); glide > noGlide {
-		own := heat / glide // W/K, capacity flow of the refrigerant
+		own := heat / glide       // W/K, capacity flow of the refrigerant
+		left := w.ahead(i) / most // share of the largest difference that the refrigerant leaves unused
 		miss := func(share float64) float64 {
-			return heatAside(w.arrangement, ua*s.ratio*share, own, share*C, most)/heat - 1
+			other := share * C
+			least, largest := math.Min(own, other), math.Max(own, other)
+			rest := shortfall(w.arrangement, ua*s.ratio*share/least, least/largest, other >= own)
+			if other >= own { // both small where the refrigerant comes close to the stream
+				return math.Log(left / rest)
+			}
+			return math.Log((1 - rest) * least * most / heat)
 		}
 		low, high := 0.0, 1.0
 		for miss(high) < 0 {
@@ -67,16 +83,6 @@ func (w *work) crossShare(s *segment, ua float64) float64 {
 
 // mostShare bounds the search for a share of area; an exchanger that is so much too small has no point anyway.
 const mostShare = 1e6
-
-// heatAside returns the heat of a segment whose refrigerant has capacity flow own and whose stream has other, W/K, at the
-// largest difference of temperatures.
-func heatAside(a Arrangement, ua, own, other, most float64) float64 {
-	least, largest := own, other
-	if other < own {
-		least, largest = other, own
-	}
-	return effectiveness(a, ua/least, least/largest, other >= own) * least * most
-}
 
 // neededAside returns the conductance at which the zones' shares add up to the whole.
 func (w *work) neededAside(shares func(ua float64) float64) float64 {

@@ -44,6 +44,17 @@ func effectiveness(a Arrangement, ntu, ratio float64, streamIsMax bool) float64 
 	return (1 - x) / (1 - ratio*x)
 }
 
+// shortfall returns 1 less the effectiveness, to full precision where that is close to 1 in the arrangements that reach it.
+func shortfall(a Arrangement, ntu, ratio float64, streamIsMax bool) float64 {
+	switch {
+	case ratio < tinyRatio:
+		return math.Exp(-ntu)
+	case a == CrossflowUnmixed:
+		return math.Exp(math.Pow(ntu, 0.22) / ratio * math.Expm1(-ratio*math.Pow(ntu, 0.78)))
+	}
+	return 1 - effectiveness(a, ntu, ratio, streamIsMax)
+}
+
 // tinyRatio is where a ratio of capacity flows counts as 0 or as 1: the formulas lose their digits there.
 const tinyRatio = 1e-9
 

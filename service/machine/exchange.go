@@ -44,6 +44,7 @@ type work struct {
 	pinch   float64 // K; negative where the streams cross
 	pinchAt float64 // share of the duty from the refrigerant's liquid end
 	reach   float64 // K by which the closest ends of a crossing miss each other, negative
+	gap     float64 // K, between the refrigerant's outlet and the stream's inlet
 }
 
 // conductance returns the available UA at the stream's flow and the share of its resistance on the stream's side.
@@ -74,7 +75,7 @@ func (w *work) begin() {
 	}
 	for i := range w.segments {
 		s := &w.segments[i]
-		d1, d2 := w.difference(s.T1, s.from), w.difference(s.T2, s.to)
+		d1, d2 := w.differences(i)
 		w.note(d1, s.from)
 		w.note(d2, s.to)
 		if m := logMean(d1, d2); m > 0 {
@@ -84,6 +85,16 @@ func (w *work) begin() {
 		}
 	}
 	w.reach = math.Min(0, w.pinch)
+}
+
+// differences returns those at both ends of a segment.
+func (w *work) differences(i int) (d1, d2 float64) {
+	s := &w.segments[i]
+	d1, d2 = w.difference(s.T1, s.from), w.difference(s.T2, s.to)
+	if i == len(w.segments)-1 && w.arrangement != ParallelFlow {
+		d2 = w.gap
+	}
+	return d1, d2
 }
 
 // difference returns by how much the refrigerant at T, at share q of the duty, is on its proper side of the stream.
@@ -110,8 +121,9 @@ func (x *exchange) series() bool {
 	return x.arrangement == Counterflow || x.arrangement == ParallelFlow
 }
 
-// mismatch compares what the exchanger can do with what it has to, as a share of the duty: above 0 it could do more, below 0
-// it falls short. The temperature of evaporation, or of condensation or the gas cooler's outlet, is what moves it.
+// mismatch compares what the exchanger would pass with the duty, as a share of it: above 0 it could do more, below 0 it falls
+// short. It rises with the difference of temperatures between the refrigerant and the stream. For an approach or a pinch it
+// is the difference to what was asked for, in K.
 func (w *work) mismatch(level levels) float64 {
 	switch {
 	case !math.IsNaN(w.ua):
@@ -121,14 +133,30 @@ func (w *work) mismatch(level levels) float64 {
 			return w.coilMismatch(ua, share)
 		case !w.series():
 			return w.crossMismatch(ua)
-		case math.IsInf(w.needed, 1):
-			return w.reach/crossReach - 1
 		}
-		return ua/w.needed - 1
+		return w.surplus(ua, w.needed, w.reach)
 	case !math.IsNaN(w.exchange.pinch):
 		return w.pinch - w.exchange.pinch
 	}
 	return w.approachAt(level, w.approachOf) - w.approach
+}
+
+// surplus compares two conductances by the heat that they pass. Condensing and evaporating refrigerant is of even temperature:
+// it passes 1 - exp(-UA/C) of what is possible, and where the duty comes close to that, the conductance that it takes grows
+// beyond all bounds, but not the heat that is left over. The streams of a gas cooler change alike, so that heat and
+// conductance do too.
+func (w *work) surplus(ua, needed, reach float64) float64 {
+	C := w.stream.capacity
+	passes := -math.Expm1(-ua / C)
+	switch {
+	case w.gasCooler && math.IsInf(needed, 1):
+		return reach/crossReach - 1
+	case w.gasCooler:
+		return ua/needed - 1
+	case math.IsInf(needed, 1):
+		return passes - 1 + reach/crossReach
+	}
+	return passes/-math.Expm1(-needed/C) - 1
 }
 
 // coil reports whether water can condense on the exchanger.
@@ -155,8 +183,9 @@ func (w *work) approachAt(level levels, kind ApproachKind) float64 {
 	return w.stream.sign * (T - w.stream.inT)
 }
 
-// profileOf cuts the refrigerant's way and lets the stream pass.
-func (x *exchange) workAt(fluid cycle.Refrigerant, in, out *cycle.StateAt, s *side, buffer []segment) (work, error) {
+// workAt cuts the refrigerant's way and lets the stream pass. The gap between the refrigerant's outlet and the stream's inlet
+// is NaN where the temperatures tell it.
+func (x *exchange) workAt(fluid cycle.Refrigerant, in, out *cycle.StateAt, s *side, gap float64, buffer []segment) (work, error) {
 	p := profile{
 		fluid: fluid, in: in.State, out: out.State, slices: x.slices, always: x.always,
 		dropping: in.State.P != out.State.P, segments: buffer[:0],
@@ -174,7 +203,10 @@ func (x *exchange) workAt(fluid cycle.Refrigerant, in, out *cycle.StateAt, s *si
 		return work{}, err
 	}
 	duty := math.Abs(in.MassFlow * (out.State.H - in.State.H))
-	w := work{exchange: x, segments: p.segments, stream: s.pass(duty), duty: duty}
+	w := work{exchange: x, segments: p.segments, stream: s.pass(duty), duty: duty, gap: gap}
+	if math.IsNaN(gap) {
+		w.gap = s.sign * (out.State.T - w.stream.inT)
+	}
 	if w.coil() || !w.series() {
 		w.beginAside()
 	} else {

@@ -37,13 +37,9 @@ func (t *trial) check(s *settled, p *OperatingPoint) error {
 				temperature(p.SuctionDewTemperature), t.dischargeNumber(p), difference(-v.Margin))
 		}
 	}
-	for _, e := range []*ExchangerResult{&p.Evaporator, &p.Condenser} {
-		if e.Pinch <= 0 {
-			x := &t.evaporator
-			if e == &p.Condenser {
-				x = &t.condenser
-			}
-			return refused(TemperatureCross, x.field, nil, "with this approach the streams would cross inside the exchanger by %s", difference(-e.Pinch))
+	for _, w := range []*work{&s.evaporator, &s.condenser} {
+		if math.IsNaN(w.ua) && w.pinch <= 0 {
+			return refused(TemperatureCross, w.field, nil, "with this approach the streams would cross inside the exchanger by %s", difference(-w.pinch))
 		}
 	}
 	if q := &p.Evaporator.Secondary; q.OutletTemperature <= q.FreezingPoint {
@@ -100,7 +96,7 @@ func (p *OperatingPoint) breach(k *limit, v float64, text string) {
 
 // reserve collects the cautions.
 func (t *trial) reserve(s *settled, p *OperatingPoint, clamped *Caution) {
-	p.Cautions = append(append(p.Cautions, t.unit.cautions...), t.checker.cautions...)
+	p.Cautions = append(append(p.Cautions, t.unit.cautions...), t.cautions...)
 	add := func(code CautionCode, field, text string, numbers ...cycle.Number) {
 		p.Cautions = append(p.Cautions, Caution{Code: code, Field: field, Message: message(text, numbers...)})
 	}

@@ -8,7 +8,7 @@ import (
 // wall is where a search for a level ended without an answer.
 type wall struct {
 	above bool    // at the upper end of where the machine can be put together
-	x     float64 // K, the last level that could be tried
+	x     float64 // the last point of the axis that could be tried
 	miss  float64 // the function there; NaN when no level could be tried
 	cause error   // what stood behind x; nil at a bound
 }
@@ -18,77 +18,71 @@ func (w *wall) Error() string { return "no level makes compressor and exchanger 
 func (w *wall) Unwrap() error { return w.cause }
 
 const (
-	firstStride = 1.0  // K
-	wallWidth   = 1e-7 // K, how close a search goes to where the machine can no longer be put together
-	scanPoints  = 24   // levels that are tried for one to begin with
+	firstStride = 0.5  // on an axis
+	wallWidth   = 1e-7 // on an axis, how close a search goes to where the machine can no longer be put together
+	scanPoints  = 24   // points of an axis that are tried for one to begin with
 )
 
-// hunt returns where a rising function passes zero, from a start within bounds. Where f fails, it goes as close as it can;
-// without a change of sign it returns a [*wall].
-func hunt(start, low, high float64, f func(float64) (float64, error)) (float64, error) {
-	start = math.Max(low, math.Min(start, high))
-	at, err := f(start)
-	for i := 0; err != nil; i++ {
-		if i == 2*scanPoints || interrupted(err) {
-			return start, orWall(err, start)
-		}
-		// Nearest levels first, on both sides.
-		step := (high - low) / scanPoints * float64(i/2+1)
-		if i%2 == 1 {
-			step = -step
-		}
-		x := start + step
-		if x <= low || x >= high {
-			continue
-		}
-		var e error
-		if at, e = f(x); e == nil {
-			start, err = x, nil
-		} else if interrupted(e) {
-			return x, e
-		}
+// hunt returns where a rising function passes zero, from a start within bounds, and the other end of the last bracket. Where f
+// fails, it goes as close as it can; without a change of sign it returns a [*wall].
+func hunt(start, low, high float64, f func(float64) (float64, error)) (root, other float64, err error) {
+	x, fx, err := begin(math.Max(low, math.Min(start, high)), low, high, f)
+	if err != nil || fx == 0 {
+		return x, x, err
 	}
-	if at == 0 {
-		return start, nil
-	}
-	x, fx := start, at
 	end, stride := high, firstStride
-	if at > 0 {
+	if fx > 0 {
 		end, stride = low, -firstStride
 	}
 	var cause error
-	wallAt := end
+	barrier := end // what is known not to work, or the bound
 	for x != end {
 		next := x + stride
-		if (next-wallAt)*stride >= 0 { // at or beyond the bound, or what is known not to work
+		if (next-barrier)*stride >= 0 {
 			if next = end; cause != nil {
-				next = (x + wallAt) / 2
+				next = (x + barrier) / 2
 			}
 		}
 		fn, err := f(next)
 		switch {
 		case interrupted(err):
-			return next, err
+			return next, next, err
 		case err != nil:
-			cause, wallAt = err, next
-			if math.Abs(wallAt-x) < wallWidth {
-				return x, &wall{stride > 0, x, fx, cause}
-			}
-			continue
+			cause, barrier = err, next
 		case fn == 0 || (fn > 0) != (fx > 0):
-			root, err := narrowed(x, fx, next, fn, settledMismatch, f)
-			if err != nil {
-				return root, orWall(err, root)
+			if root, other, err = narrowed(x, fx, next, fn, settledMismatch, f); err != nil {
+				err = orWall(err, root)
 			}
-			return root, nil
+			return root, other, err
+		default:
+			x, fx = next, fn
+			stride *= 2
 		}
-		x, fx = next, fn
-		stride *= 2
-		if cause != nil && math.Abs(wallAt-x) < wallWidth {
-			return x, &wall{stride > 0, x, fx, cause}
+		if cause != nil && math.Abs(barrier-x) < wallWidth {
+			break
 		}
 	}
-	return x, &wall{stride > 0, x, fx, cause}
+	return x, x, &wall{stride > 0, x, fx, cause}
+}
+
+// begin returns a point where f can be evaluated: the start, or the nearest of some others.
+func begin(start, low, high float64, f func(float64) (float64, error)) (x, fx float64, err error) {
+	if fx, err = f(start); err == nil || interrupted(err) {
+		return start, fx, err
+	}
+	for i := range 2 * scanPoints {
+		step := (high - low) / scanPoints * float64(i/2+1)
+		if i%2 == 1 {
+			step = -step
+		}
+		if x = start + step; x <= low || x >= high {
+			continue
+		}
+		if fx, e := f(x); e == nil || interrupted(e) {
+			return x, fx, e
+		}
+	}
+	return start, 0, orWall(err, start)
 }
 
 // orWall keeps what ends a search at once and makes a wall of the rest.
@@ -111,40 +105,64 @@ type stopped struct{ cause error }
 func (s *stopped) Error() string { return s.cause.Error() }
 func (s *stopped) Unwrap() error { return s.cause }
 
-// nested looks for the condensation at each evaporation, and for the evaporation at which the evaporator agrees too. Both
-// mismatches are monotone, so that it finds the levels wherever they exist, if slowly.
-func (t *trial) nested(start unknowns, b box) (settled, error) {
-	condensation := start[high]
-	inner := func(te float64) (settled, error) {
-		var last settled
-		x, err := hunt(condensation, b.min[high], b.max[high], func(tc float64) (float64, error) {
-			var err error
-			last, err = t.at(unknowns{te, tc})
-			return last.mismatch[high], err
+// nested looks for the level of the condenser at each level of the evaporator, and for that of the evaporator at which it
+// agrees too. Both mismatches are monotone, so that it finds the levels wherever they exist, if slowly.
+func (t *trial) nested(start unknowns, b *axes) (settled, error) {
+	from := start[high]
+	var beside unknowns // the other ends of the last brackets
+	inner := func(y float64) (settled, error) {
+		z, other, err := hunt(from, b[high].min, b[high].max, func(z float64) (float64, error) {
+			s, err := t.tryAt(b, unknowns{y, z})
+			return s.mismatch[high], err
 		})
-		if err != nil {
-			return last, err
+		if z, err = b[high].end(z, err); err != nil {
+			return settled{}, err
 		}
-		condensation = x
-		if last.x[high] != x {
-			last, err = t.at(unknowns{te, x})
-		}
-		return last, err
+		from, beside[high] = z, other
+		return t.tryAt(b, unknowns{y, z})
 	}
-	// The evaporator's mismatch falls with the evaporation, so the search runs downwards.
-	te, err := hunt(-start[low], -b.max[low], -b.min[low], func(negative float64) (float64, error) {
-		s, err := inner(-negative)
+	y, other, err := hunt(start[low], b[low].min, b[low].max, func(y float64) (float64, error) {
+		s, err := inner(y)
 		return s.mismatch[low], err
 	})
-	if err != nil {
-		if w, ok := err.(*wall); ok { //nolint:errorlint // the outermost wall is meant
-			w.x, w.above = -w.x, !w.above
-		}
+	if y, err = b[low].end(y, err); err != nil {
 		return settled{}, err
 	}
-	s, err := inner(-te)
-	if err == nil && s.worst() > acceptedMismatch*10 {
-		return s, &wall{x: -te, miss: s.worst()}
+	s, err := inner(y)
+	if err != nil || s.worst() <= acceptedMismatch {
+		return s, err
 	}
-	return s, err
+	beside[low] = other
+	return t.pin(s, b, beside)
+}
+
+// pin looks at mismatches that jump between neighbouring levels: where streams come as close as rounding, the smallest change
+// of a level closes or opens the exchanger. What the duty changes across the jump is what is left uncertain of it.
+func (t *trial) pin(s settled, b *axes, beside unknowns) (settled, error) {
+	for i := range s.mismatch {
+		if s.capped[i] || math.Abs(s.mismatch[i]) <= acceptedMismatch {
+			continue
+		}
+		y := s.y
+		y[i] = beside[i]
+		across, err := t.tryAt(b, y)
+		if err != nil {
+			return s, err
+		}
+		s.uncertain = math.Max(s.uncertain, math.Abs(across.evaporator.duty/s.evaporator.duty-1))
+		s.uncertain = math.Max(s.uncertain, math.Abs(across.condenser.duty/s.condenser.duty-1))
+		if s.pinned[i] = across.mismatch[i]*s.mismatch[i] < 0; !s.pinned[i] || s.uncertain > acceptedMismatch {
+			return s, &wall{x: y[low], miss: s.worst()}
+		}
+	}
+	return s, nil
+}
+
+// end accepts the wall at the end of a bent axis: the exchanger could do more, but the refrigerant cannot leave any closer to
+// the stream.
+func (a *axis) end(y float64, err error) (float64, error) {
+	if w, ok := err.(*wall); ok && w.cause == nil && !w.above && w.miss > 0 && a.atEnd(y) { //nolint:errorlint // the outermost wall is meant
+		return y, nil
+	}
+	return y, err
 }

@@ -7,24 +7,19 @@ const (
 	settledMismatch = 1e-11
 	// acceptedMismatch is what a search may end with when it gets no closer.
 	acceptedMismatch = 1e-9
-	newtonSteps      = 40
-	newtonHalvings   = 6
-	differenceStep   = 2e-3 // K, for slopes: large against rounding, small against their change
-	longestStep      = 12.0 // K
-	// nearBound is how much of the way to a bound one step may go.
+	newtonSteps      = 20
+	newtonCuts       = 6
+	// nearBound is how much of the way to a bound one step may go, apart from the end of a bent axis.
 	nearBound = 0.9
 )
 
-// box holds the bounds of the levels, K.
-type box struct{ min, max unknowns }
-
-// newton looks for the levels from a start, by Newton's method with slopes from differences that Broyden's formula keeps
-// up to date. It reports whether it arrived; where it did not, the nested search takes over.
-func (t *trial) newton(start unknowns, b box) (settled, bool) {
+// newton looks for the levels from a start, by Newton's method with slopes from differences that Broyden's formula keeps up
+// to date. It reports whether it arrived; where it did not, the nested search takes over.
+func (t *trial) newton(start unknowns, b *axes) (settled, bool) {
 	for i := range start {
-		start[i] = math.Max(b.min[i]+differenceStep, math.Min(start[i], b.max[i]-differenceStep))
+		start[i] = math.Max(b[i].min, math.Min(start[i], b[i].max))
 	}
-	now, err := t.at(start)
+	now, err := t.tryAt(b, start)
 	if err != nil {
 		return now, false
 	}
@@ -35,12 +30,12 @@ func (t *trial) newton(start unknowns, b box) (settled, bool) {
 			return now, true
 		}
 		if stale {
-			if slopes, err = t.slopes(&now); err != nil {
+			if slopes, err = t.slopes(&now, b); err != nil {
 				return now, false
 			}
 			stale, exact = false, true
 		}
-		next, ok := t.advance(&now, newtonStep(slopes, now.mismatch), b)
+		next, ok := t.advance(&now, newtonStep(slopes, &now), b)
 		switch {
 		case ok:
 			slopes = broyden(slopes, &now, &next)
@@ -56,24 +51,31 @@ func (t *trial) newton(start unknowns, b box) (settled, bool) {
 	return now, now.worst() <= acceptedMismatch
 }
 
-// slopes differences the mismatches away from where streams cross: evaporation down, condensation up.
-func (t *trial) slopes(now *settled) (J [2]unknowns, err error) {
-	for j, d := range [2]float64{-differenceStep, differenceStep} {
-		x := now.x
-		x[j] += d
-		side, err := t.at(x)
+// slopes differences the mismatches away from where streams cross.
+func (t *trial) slopes(now *settled, b *axes) (J [2]unknowns, err error) {
+	for j := range b {
+		y := now.y
+		y[j] += differenceStep
+		beside, err := t.tryAt(b, y)
 		if err != nil {
 			return J, err
 		}
 		for i := range J {
-			J[i][j] = (side.mismatch[i] - now.mismatch[i]) / d
+			J[i][j] = (beside.mismatch[i] - now.mismatch[i]) / differenceStep
 		}
 	}
 	return J, nil
 }
 
-// newtonStep solves J dx = -f.
-func newtonStep(J [2]unknowns, f unknowns) unknowns {
+// newtonStep solves J dy = -f. A capped mismatch leaves its level where it is.
+func newtonStep(J [2]unknowns, s *settled) unknowns {
+	f := s.mismatch
+	for i, capped := range s.capped {
+		if capped {
+			J[i], f[i] = unknowns{}, 0
+			J[i][i] = 1
+		}
+	}
 	det := J[0][0]*J[1][1] - J[0][1]*J[1][0]
 	return unknowns{
 		(J[0][1]*f[1] - J[1][1]*f[0]) / det,
@@ -82,27 +84,29 @@ func newtonStep(J [2]unknowns, f unknowns) unknowns {
 }
 
 // advance goes along a step, shortened until the mismatch falls.
-func (t *trial) advance(now *settled, dx unknowns, b box) (settled, bool) {
+func (t *trial) advance(now *settled, dy unknowns, b *axes) (settled, bool) {
 	part := 1.0
-	for i, d := range dx {
+	for i, d := range dy {
 		if math.IsNaN(d) || math.IsInf(d, 0) {
 			return *now, false
 		}
-		room := b.max[i] - now.x[i]
-		if d < 0 {
-			room = now.x[i] - b.min[i]
+		longest := longestStep
+		if room := b[i].max - now.y[i]; d > 0 {
+			longest = math.Min(longest, nearBound*room)
+		} else if !b[i].bent {
+			longest = math.Min(longest, nearBound*(now.y[i]-b[i].min))
 		}
-		part = math.Min(part, math.Min(longestStep, nearBound*room)/math.Max(math.Abs(d), 1e-300))
+		part = math.Min(part, longest/math.Max(math.Abs(d), 1e-300))
 	}
-	for range newtonHalvings {
-		x := now.x
-		for i := range x {
-			x[i] += part * dx[i]
+	for range newtonCuts {
+		y := now.y
+		for i := range y {
+			y[i] = math.Max(b[i].min, y[i]+part*dy[i])
 		}
-		if x == now.x {
+		if y == now.y {
 			return *now, false
 		}
-		next, err := t.at(x)
+		next, err := t.tryAt(b, y)
 		if err == nil && next.worst() < now.worst() {
 			return next, true
 		}
@@ -113,12 +117,12 @@ func (t *trial) advance(now *settled, dx unknowns, b box) (settled, bool) {
 
 // broyden corrects slopes by what a step has shown.
 func broyden(J [2]unknowns, from, to *settled) [2]unknowns {
-	dx := unknowns{to.x[0] - from.x[0], to.x[1] - from.x[1]}
-	square := dx[0]*dx[0] + dx[1]*dx[1]
+	dy := unknowns{to.y[0] - from.y[0], to.y[1] - from.y[1]}
+	square := dy[0]*dy[0] + dy[1]*dy[1]
 	for i := range J {
-		miss := (to.mismatch[i] - from.mismatch[i] - J[i][0]*dx[0] - J[i][1]*dx[1]) / square
-		J[i][0] += miss * dx[0]
-		J[i][1] += miss * dx[1]
+		miss := (to.mismatch[i] - from.mismatch[i] - J[i][0]*dy[0] - J[i][1]*dy[1]) / square
+		J[i][0] += miss * dy[0]
+		J[i][1] += miss * dy[1]
 	}
 	return J
 }

@@ -16,10 +16,11 @@ func (t *trial) report(s *settled, clamped *Caution) (*OperatingPoint, error) {
 	// The means are those of the secondary streams, so that entropy generation counts the exchangers' own.
 	t.sourceMean, t.sinkMean = s.evaporator.stream.entropyMean(), s.condenser.stream.entropyMean()
 	t.request.SourceTemperature, t.request.SinkTemperature = &t.sourceMean, &t.sinkMean
-	final, err := t.at(s.x)
+	final, err := t.tryAt(t.on, s.y)
 	if err != nil {
 		return nil, t.impossible(err)
 	}
+	final.pinned, final.uncertain = s.pinned, s.uncertain
 	if err := t.readFlanges(final.solution, &final.flanges); err != nil {
 		return nil, t.impossible(err)
 	}
@@ -29,7 +30,7 @@ func (t *trial) report(s *settled, clamped *Caution) (*OperatingPoint, error) {
 		SuctionDewTemperature: final.flanges.suctionDew, DischargeDewTemperature: final.flanges.dischargeDew,
 		DischargePressure: final.flanges.dischargePressure,
 		SourceTemperature: t.sourceMean, SinkTemperature: t.sinkMean,
-		ResidualFraction: final.worst(), Evaluations: t.evaluations,
+		ResidualFraction: math.Max(final.worst(), final.uncertain), Evaluations: t.evaluations,
 	}
 	if t.gasCooled {
 		p.CondensationTemperature = nan
@@ -113,6 +114,7 @@ func (r *ExchangerResult) finish() {
 
 // seriesResult tells the zones of counterflow and parallel flow.
 func (w *work) seriesResult(r *ExchangerResult) {
+	var needed float64
 	for i := range w.segments {
 		s := &w.segments[i]
 		z := r.zone(s)
@@ -124,9 +126,11 @@ func (w *work) seriesResult(r *ExchangerResult) {
 			first, last = s.from, s.to
 		}
 		if w.stream.known {
-			ua := heat / logMean(w.difference(s.T1, s.from), w.difference(s.T2, s.to))
+			d1, d2 := w.differences(i)
+			ua := heat / logMean(math.Max(d1, leastDifference), math.Max(d2, leastDifference))
 			z.UA += ua
-			z.Share += ua / s.ratio / w.needed
+			z.Share += ua / s.ratio
+			needed += ua / s.ratio
 		} else {
 			z.UA, z.Share = nan, nan
 		}
@@ -142,6 +146,12 @@ func (w *work) seriesResult(r *ExchangerResult) {
 			z.SecondaryInlet = w.stream.at(last)
 		}
 	}
+	if w.stream.known {
+		for i := range r.Zones {
+			r.Zones[i].Share /= needed
+		}
+		r.UA, r.Pinch = needed, math.Max(0, w.pinch)
+	}
 	r.finish()
 }
 
@@ -151,7 +161,7 @@ func (w *work) asideResult(r *ExchangerResult, ua float64) {
 		ua = w.neededAside(func(ua float64) float64 {
 			var area float64
 			for i := range w.segments {
-				area += w.crossShare(&w.segments[i], ua)
+				area += w.crossShare(i, ua)
 			}
 			return area
 		})
@@ -161,7 +171,7 @@ func (w *work) asideResult(r *ExchangerResult, ua float64) {
 		s := &w.segments[i]
 		z := r.zone(s)
 		heat := w.duty * (s.to - s.from)
-		share := w.crossShare(s, ua)
+		share := w.crossShare(i, ua)
 		z.Duty += heat
 		z.Slices++
 		z.UA += ua * s.ratio * share
@@ -224,6 +234,19 @@ func (w *work) coilResult(r *ExchangerResult, ua, share float64) {
 		q.SurfaceTemperature, q.ApparatusDewPoint = surface/wetHeat, apparatus/wetHeat
 	}
 	w.leaving(q, W)
+	r.Pinch, r.PinchAt = w.coilPinch()
+}
+
+// coilPinch returns the smallest difference between refrigerant and air, with what condensation left of the air's change.
+func (w *work) coilPinch() (pinch, at float64) {
+	pinch, at = w.gap, 1
+	for i := range w.segments {
+		s := &w.segments[i]
+		if d := w.stream.outT - s.T2; s.zone == Evaporating && d < pinch {
+			pinch, at = d, s.to
+		}
+	}
+	return pinch, at
 }
 
 // tellSeries goes through a coil whose zones the air passes one after another, in the direction of the refrigerant. It
@@ -256,10 +279,10 @@ func (w *work) tellAside(r *ExchangerResult, ua, share float64, tell visit) (W f
 	var area float64
 	for i := range w.segments {
 		s := &w.segments[i]
-		part := w.coilShare(s, ua, share)
+		part := w.coilShare(i, ua, share)
 		k := w.strip(s, w.entering(), w.stream.flow*part, share)
 		own := ua * s.ratio * part
-		wet, surface := part < w.crossShare(s, ua), nan
+		wet, surface := part < w.crossShare(i, ua), nan
 		if wet {
 			_, surface = k.wet()
 		}

@@ -1,6 +1,7 @@
 package machine
 
 import (
+	"context"
 	"errors"
 	"math"
 
@@ -21,53 +22,44 @@ const (
 	guessAir    = 9.0
 )
 
-// settle finds the levels at the speed and the high-side pressure in force.
+// settle finds the levels at the speed and the high-side pressure in force. The axes that it found them on are in the trial.
 func (t *trial) settle(start *unknowns) (settled, error) {
 	t.held = false
-	s, err := t.levelsFrom(start)
-	if err != nil || !(s.x[low] > t.limits.evaporation) {
-		return s, err
-	}
-	// The valve holds the evaporation: with more superheat the evaporator passes less.
-	t.held = true
-	b := box{min: unknowns{t.superheat, 0}, max: unknowns{t.warmest() - t.limits.evaporation - offBound, 0}}
-	whole, err := t.bounds()
-	if err != nil {
-		return s, err
-	}
-	b.min[high], b.max[high] = whole.min[high], whole.max[high]
-	if !(b.min[low] < b.max[low]) {
-		return s, refused(Impossible, "machine.limits.evaporation_max", nil,
-			"the source, at %s, is not warm enough above it for the superheat", temperature(t.warmest()))
-	}
-	held, ok := t.newton(unknowns{t.superheat + 2, s.x[high]}, b)
-	if ok {
-		return held, nil
-	}
-	if held, err = t.nested(unknowns{t.superheat + 2, s.x[high]}, b); err != nil {
-		return held, t.explain(err)
-	}
-	return held, nil
-}
-
-func (t *trial) levelsFrom(start *unknowns) (settled, error) {
-	b, err := t.bounds()
+	b, err := t.newAxes()
 	if err != nil {
 		return settled{}, err
 	}
+	t.on = b
 	first := t.guess()
 	if start != nil {
 		first = *start
 	}
-	if s, ok := t.newton(first, b); ok {
-		return s, nil
-	} else if t.ctx.Err() != nil {
-		_, err := t.at(first)
+	s, err := t.search(first, b)
+	if err != nil || !(s.x[low]-t.superheat > t.limits.evaporation) {
 		return s, err
 	}
-	s, err := t.nested(first, b)
+	// The valve holds the evaporation: with more superheat the evaporator passes less.
+	t.held = true
+	if b[low].max = b[low].at(t.limits.evaporation + t.superheat); !(b[low].min < b[low].max) {
+		return s, refused(Impossible, "machine.limits.evaporation_max", nil,
+			"the source, at %s, is not warm enough above it for the superheat", temperature(t.warmest()))
+	}
+	return t.search(s.x, b)
+}
+
+// search finds the levels by Newton's method, or else by the nested search.
+func (t *trial) search(first unknowns, b *axes) (settled, error) {
+	y := unknowns{b[low].at(first[low]), b[high].at(first[high])}
+	s, ok := t.newton(y, b)
+	if ok {
+		return s, nil
+	}
+	if t.ctx.Err() != nil {
+		return s, &stopped{context.Cause(t.ctx)}
+	}
+	s, err := t.nested(y, b)
 	if err != nil {
-		return s, t.explain(err)
+		return s, t.explain(err, b)
 	}
 	return s, nil
 }
@@ -94,39 +86,50 @@ func (t *trial) coldest() float64 {
 	return t.sink.outlet - deepest
 }
 
-// bounds returns where levels can lie at all.
-func (t *trial) bounds() (box, error) {
-	var b box
+// newAxes returns what a search moves on.
+func (t *trial) newAxes() (*axes, error) {
 	critical := t.fluid.Critical()
 	hottest, err := t.fluid.DewPointAtPressure(criticalShare * critical.P)
 	if err != nil {
-		return b, refused(NoState, "machine.refrigerant", err, "the refrigerant has no dew point near its critical point")
+		return nil, refused(NoState, "machine.refrigerant", err, "the refrigerant has no dew point near its critical point")
 	}
-	b.max[low] = math.Min(t.warmest()-offBound, hottest.T-offBound)
-	b.min[low] = b.max[low] - deepest
-	if _, err := t.fluid.DewPoint(b.min[low]); err != nil {
-		if e, ok := errors.AsType[*props.RangeError](err); ok && e.Property == props.Temperature && e.Min > b.min[low] {
-			b.min[low] = e.Min + offBound
+	lowest := t.warmest() - deepest
+	if _, err := t.fluid.DewPoint(lowest); err != nil {
+		if e, ok := errors.AsType[*props.RangeError](err); ok && e.Property == props.Temperature && e.Min > lowest {
+			lowest = e.Min + offBound
 		}
 	}
-	b.min[high] = t.coldest() + offBound
-	b.max[high] = hottest.T
+	if !(lowest+t.superheat < t.warmest()-offBound) {
+		return nil, refused(NoState, "condition.source", nil,
+			"the refrigerant evaporates from %s up, which leaves no room for the superheat below the source, %s", temperature(lowest), temperature(t.warmest()))
+	}
+	warm := math.Min(t.warmest(), hottest.T+t.superheat-offBound)
+	cold, hot := t.coldest(), hottest.T-t.subcooling
 	if t.gasCooled {
-		b.max[high] = b.min[high] + highest
+		hot = cold + highest
 	}
-	if !(b.min[low] < b.max[low]) {
-		return b, refused(NoState, "condition.source.inlet_temperature", nil,
-			"the refrigerant evaporates from %s up, warmer than the source, %s", temperature(b.min[low]), temperature(t.warmest()))
+	if !(cold+offBound < hot) {
+		return nil, refused(NoState, "condition.sink", nil,
+			"the refrigerant condenses up to %s, too cold for the sink, %s; above it a transcritical layout has a gas cooler", temperature(hottest.T), temperature(cold))
 	}
-	if !(b.min[high] < b.max[high]) {
-		return b, refused(NoState, "condition.sink.inlet_temperature", nil,
-			"the refrigerant condenses up to %s, colder than the sink, %s; above it a transcritical layout has a gas cooler",
-			temperature(hottest.T), temperature(t.coldest()))
-	}
-	return b, nil
+	return &axes{
+		newAxis(-1, t.limitOf(&t.evaporator, &t.source), lowest+t.superheat, warm),
+		newAxis(+1, t.limitOf(&t.condenser, &t.sink), cold, hot),
+	}, nil
 }
 
-// guess returns where levels usually lie.
+// limitOf returns the stream's inlet temperature where the refrigerant can come close to it, or NaN.
+func (t *trial) limitOf(x *exchange, s *side) float64 {
+	if math.IsNaN(x.ua) {
+		return nan // an approach may ask for any temperature
+	}
+	if math.IsNaN(s.inlet) && !math.IsNaN(s.change) {
+		return s.outlet - s.sign*s.change
+	}
+	return s.inlet
+}
+
+// guess returns what levels usually are.
 func (t *trial) guess() unknowns {
 	difference := func(s *side) float64 {
 		if s.liquid == nil {
@@ -145,18 +148,25 @@ func (t *trial) guess() unknowns {
 		}
 		return s.inlet + s.sign*guessLiquid
 	}
-	x := unknowns{far(&t.source) - difference(&t.source), far(&t.sink) + difference(&t.sink)}
-	if t.gasCooled {
+	te, tc := far(&t.source)-difference(&t.source), far(&t.sink)+difference(&t.sink)
+	if e := &t.evaporator; e.byInlet() {
+		te = t.source.inlet - e.approach
+	}
+	if k := &t.condenser; k.byInlet() {
+		tc = t.sink.inlet + k.approach
+	}
+	x := unknowns{te + t.superheat, tc - t.subcooling}
+	if t.gasCooled && !t.condenser.byInlet() {
 		x[high] = t.coldest() + difference(&t.sink)
 		if math.IsNaN(t.sink.inlet) && math.IsNaN(t.sink.change) {
 			x[high] = t.sink.outlet - guessAir
 		}
 	}
-	if e := &t.evaporator; e.byInlet() {
-		x[low] = t.source.inlet - e.approach
+	if limit := t.limitOf(&t.evaporator, &t.source); x[low] >= limit {
+		x[low] = limit - 1
 	}
-	if k := &t.condenser; k.byInlet() {
-		x[high] = t.sink.inlet + k.approach
+	if limit := t.limitOf(&t.condenser, &t.sink); x[high] <= limit {
+		x[high] = limit + 1
 	}
 	return x
 }
@@ -167,7 +177,7 @@ func refused(code Code, field string, cause error, text string, numbers ...cycle
 }
 
 // explain turns the end of a search into the reason why there is no operating point.
-func (t *trial) explain(err error) error {
+func (t *trial) explain(err error, b *axes) error {
 	if interrupted(err) {
 		return err
 	}
@@ -178,22 +188,22 @@ func (t *trial) explain(err error) error {
 	inner, nested := errors.AsType[*wall](outer.cause)
 	switch {
 	case nested && inner.cause != nil && !math.IsNaN(inner.miss) && !inner.above:
-		return t.tooFlat(inner)
+		return t.tooFlat(inner, b)
 	case nested && inner.cause == nil && inner.above:
-		return t.tooSmall(&t.condenser, inner)
+		return t.tooSmall(&t.condenser, inner, b)
 	case nested && inner.cause != nil:
 		return t.impossible(inner.cause)
 	case nested:
-		return t.tooFlat(inner)
-	case outer.cause != nil && (outer.above || math.IsNaN(outer.miss)):
+		return t.tooFlat(inner, b)
+	case outer.cause != nil:
 		return t.impossible(outer.cause)
-	case !outer.above:
-		return t.tooSmall(&t.evaporator, outer)
+	case outer.above:
+		return t.tooSmall(&t.evaporator, outer, b)
 	}
-	return refused(NoConvergence, "", nil, "the search ended with compressor and exchangers %s of the duty apart, evaporation at %s", plain(outer.miss), temperature(outer.x))
+	return refused(NoConvergence, "", nil, "the search ended with compressor and exchangers %s of the duty apart, the refrigerant leaving the evaporator at %s", plain(outer.miss), temperature(b[low].temperature(outer.x)))
 }
 
-func (t *trial) tooSmall(x *exchange, w *wall) error {
+func (t *trial) tooSmall(x *exchange, w *wall, b *axes) error {
 	field, what := x.field+".ua", "conductance"
 	switch {
 	case !math.IsNaN(x.pinch):
@@ -202,14 +212,17 @@ func (t *trial) tooSmall(x *exchange, w *wall) error {
 		field, what = x.field+".approach", "approach"
 	}
 	if x.evaporator {
-		return refused(ExchangerTooSmall, field, w.cause, "with this "+what+" the evaporator passes what the compressor takes at no evaporation down to %s", temperature(w.x))
+		return refused(ExchangerTooSmall, field, w.cause, "with this "+what+" the evaporator passes what the compressor takes at no evaporation down to %s",
+			temperature(b[low].temperature(w.x)-t.superheat))
 	}
-	return refused(ExchangerTooSmall, field, w.cause, "with this "+what+" the condenser or gas cooler passes what the compressor delivers at no level up to %s", temperature(w.x))
+	return refused(ExchangerTooSmall, field, w.cause, "with this "+what+" the condenser or gas cooler passes what the compressor delivers at no outlet temperature of the refrigerant up to %s",
+		temperature(b[high].temperature(w.x)))
 }
 
-func (t *trial) tooFlat(w *wall) error {
+func (t *trial) tooFlat(w *wall, b *axes) error {
 	return refused(LiftTooSmall, "condition.sink", w.cause,
-		"the sink is so cold, or the condenser so large, that condensation would fall to evaporation: the search ended at %s; a machine holds it up by throttling the sink", temperature(w.x))
+		"the sink is so cold, or the condenser so large, that condensation would fall to evaporation: the search ended with the refrigerant leaving the condenser at %s; a machine holds it up by throttling the sink",
+		temperature(b[high].temperature(w.x)))
 }
 
 // impossible passes on what the cycle or the property model says.

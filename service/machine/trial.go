@@ -7,8 +7,9 @@ import (
 	"dewmark/service/cycle"
 )
 
-// unknowns are what a machine settles at: the evaporation, or the superheat where a valve holds the evaporation, and the
-// condensation, or the outlet temperature of a gas cooler. All in K.
+// unknowns are what a machine settles at: the temperatures at which the refrigerant leaves the evaporator and the condenser
+// or gas cooler, K. With superheat and subcooling they fix evaporation and condensation; where a valve holds the evaporation
+// the first fixes the superheat.
 type unknowns [2]float64
 
 // The indexes of unknowns and of their mismatches.
@@ -27,7 +28,9 @@ type trial struct {
 	evaluations  int
 
 	request              cycle.Request
-	te, sh, tc           float64
+	te, sh               float64 // K, dew point and superheat at the evaporator outlet
+	t4                   float64 // K, condenser or gas cooler outlet
+	pc, bubble, tc       float64 // Pa and K, pressure, bubble and dew point at the condenser outlet
 	isentropic           float64
 	volumetric           float64
 	isentropic2          float64
@@ -39,6 +42,8 @@ type trial struct {
 	clamped              *law // a law left what an efficiency can be
 	clampedField         string
 	sourceMean, sinkMean float64
+	gaps                 [2]float64 // K, between the refrigerants' outlets and the streams' inlets; NaN where the temperatures tell
+	on                   *axes
 	buffers              [2][]segment
 }
 
@@ -48,13 +53,13 @@ func newTrial(ctx context.Context, p *plan) *trial {
 	r.Evaporation = cycle.Evaporation{Temperature: &t.te, Superheat: &t.sh}
 	if p.gasCooled {
 		t.highPressure = p.highSide.pressure
-		t.gasCooler = cycle.GasCooler{OutletTemperature: &t.tc, Correlation: p.highSide.correlation}
+		t.gasCooler = cycle.GasCooler{OutletTemperature: &t.t4, Correlation: p.highSide.correlation}
 		if p.highSide.correlation == cycle.NoCorrelation {
 			t.gasCooler.Pressure = &t.highPressure
 		}
 		r.GasCooler = &t.gasCooler
 	} else {
-		r.Condensation = cycle.Condensation{Temperature: &t.tc, Subcooling: &p.subcooling}
+		r.Condensation = cycle.Condensation{Pressure: &t.pc, Subcooling: &p.subcooling}
 	}
 	loss := p.compressor.loss
 	r.Compressor = cycle.Compressor{IsentropicEfficiency: &t.isentropic, VolumetricEfficiency: &t.volumetric, HeatLossFraction: loss}
@@ -71,6 +76,10 @@ func newTrial(ctx context.Context, p *plan) *trial {
 
 // settled is a machine at levels on trial.
 type settled struct {
+	y          unknowns // where x lies on the axes of a search
+	capped     [2]bool  // the exchanger could do more although the refrigerant leaves as the stream enters
+	pinned     [2]bool  // the mismatch jumps across zero between neighbouring levels
+	uncertain  float64  // share by which duties differ across such a jump
 	x          unknowns
 	mismatch   unknowns // of the exchangers, as shares of the duty; in K for an approach or a pinch
 	solution   *cycle.Solution
@@ -80,9 +89,14 @@ type settled struct {
 	flanges    flanges
 }
 
-// worst returns the larger mismatch.
-func (s *settled) worst() float64 {
-	return math.Max(math.Abs(s.mismatch[low]), math.Abs(s.mismatch[high]))
+// worst returns the larger mismatch. One that no level can close does not count.
+func (s *settled) worst() (worst float64) {
+	for i, m := range s.mismatch {
+		if !s.capped[i] && !s.pinned[i] {
+			worst = math.Max(worst, math.Abs(m))
+		}
+	}
+	return worst
 }
 
 // at puts the machine together at x.
@@ -92,16 +106,13 @@ func (t *trial) at(x unknowns) (settled, error) {
 	}
 	t.evaluations++
 	s := settled{x: x}
-	if t.held {
-		t.te, t.sh = t.limits.evaporation, x[low]
-	} else {
-		t.te = x[low]
+	err := t.place(x)
+	if err != nil {
+		return s, err
 	}
-	t.tc = x[high]
 	if err := t.compress(&s); err != nil {
 		return s, err
 	}
-	var err error
 	if s.solution, err = cycle.Solve(&t.request); err != nil {
 		return s, err
 	}
@@ -110,6 +121,25 @@ func (t *trial) at(x unknowns) (settled, error) {
 	}
 	s.mismatch = unknowns{s.evaporator.mismatch(s.levels[low]), s.condenser.mismatch(s.levels[high])}
 	return s, nil
+}
+
+// place finds evaporation and condensation.
+func (t *trial) place(x unknowns) error {
+	t.te, t.sh = x[low]-t.superheat, t.superheat
+	if t.held {
+		t.te, t.sh = t.limits.evaporation, x[low]-t.limits.evaporation
+	}
+	t.t4 = x[high]
+	if t.gasCooled {
+		return nil
+	}
+	bubble, err := t.fluid.BubblePoint(t.t4 + t.subcooling)
+	if err != nil {
+		return err
+	}
+	dew, err := t.fluid.DewPointAtPressure(bubble.P)
+	t.bubble, t.pc, t.tc = bubble.T, bubble.P, dew.T
+	return err
 }
 
 // exchange looks at both exchangers.
@@ -121,21 +151,13 @@ func (t *trial) exchange(s *settled) error {
 	if s.condenser, err = t.passing(s, &t.condenser, "3", "4", &t.sink, high); err != nil {
 		return err
 	}
-	in, out := stateAt(s.solution, "6"), stateAt(s.solution, "4")
-	s.levels[low] = levels{dew: t.te, mean: (in.State.T + t.te) / 2}
-	s.levels[high] = levels{dew: t.tc, mean: t.tc, outlet: out.State.T}
-	if t.condenser.mean && !t.gasCooled {
-		bubble, err := t.fluid.BubblePointAtPressure(out.State.P)
-		if err != nil {
-			return err
-		}
-		s.levels[high].mean = (bubble.T + t.tc) / 2
-	}
+	s.levels[low] = levels{dew: t.te, mean: (stateAt(s.solution, "6").State.T + t.te) / 2}
+	s.levels[high] = levels{dew: t.tc, mean: (t.bubble + t.tc) / 2, outlet: t.t4}
 	return nil
 }
 
 func (t *trial) passing(s *settled, x *exchange, in, out string, stream *side, which int) (work, error) {
-	w, err := x.workAt(t.fluid, stateAt(s.solution, in), stateAt(s.solution, out), stream, t.buffers[which])
+	w, err := x.workAt(t.fluid, stateAt(s.solution, in), stateAt(s.solution, out), stream, t.gaps[which], t.buffers[which])
 	t.buffers[which] = w.segments
 	return w, err
 }
@@ -211,11 +233,7 @@ func (t *trial) simpleFlanges(f *flanges) error {
 	f.suctionDew, f.suctionPressure = t.te, dew.P
 	f.dischargePressure, f.dischargeDew = t.highPressure, math.NaN()
 	if !t.gasCooled {
-		hot, err := t.fluid.DewPoint(t.tc)
-		if err != nil {
-			return err
-		}
-		f.dischargePressure, f.dischargeDew = hot.P, t.tc
+		f.dischargePressure, f.dischargeDew = t.pc, t.tc
 	}
 	if len(t.compressor.ratings) == 0 {
 		return nil

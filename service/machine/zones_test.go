@@ -44,7 +44,7 @@ func plainExchange(a Arrangement, ua float64) exchange {
 func TestWorkedZones(t *testing.T) {
 	in, out, s := workedCondenser(t)
 	x := plainExchange(Counterflow, 1000)
-	w, err := x.workAt(refrigerant(t, "R134a"), in, out, s, nil)
+	w, err := x.workAt(refrigerant(t, "R134a"), in, out, s, nan, nil)
 	if err != nil {
 		t.Fatal(err)
 	}
