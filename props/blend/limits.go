@@ -98,10 +98,29 @@ func (s *solver) checkQuality(q float64) error {
 	return nil
 }
 
+// slack is the relative rounding within which a limit counts as reached, whether a solver or a caller rounded it.
+const slack = 1e-10
+
+// snap moves a given value onto the limit that it overshoots by rounding, so that a limit read from a printed page can be
+// asked for.
+func (s *solver) snap(of Property, value float64) float64 {
+	lo, hi := s.reach.TemperatureMin, s.reach.TemperatureMax
+	switch of {
+	case Temperature:
+	case Pressure:
+		lo, hi = 0, s.reach.PressureMax
+	default:
+		return value
+	}
+	if clamped := min(max(value, lo), hi); math.Abs(value-clamped) <= slack*clamped { // false for NaN too
+		return clamped
+	}
+	return value
+}
+
 // check returns a RangeError unless a single phase that a solver found lies in the range. Limits count as reached within
 // rounding.
 func (s *solver) check(q *point) error {
-	const slack = 1e-10
 	l := s.reach
 	T := q.T
 	if T < l.TemperatureMin && T > l.TemperatureMin*(1-slack) || T > l.TemperatureMax && T < l.TemperatureMax*(1+slack) {

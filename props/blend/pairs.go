@@ -41,7 +41,7 @@ func (b *Blend) ordinary(of Property, value, quality float64) (State, error) {
 	}
 	s := b.solver()
 	defer b.release(s)
-	all, err := s.quality(of, value, quality)
+	all, err := s.quality(of, s.snap(of, value), quality)
 	if err != nil {
 		return State{}, err
 	}
@@ -180,7 +180,7 @@ func (b *Blend) solve(x, y Given) ([]result, error) {
 	}
 	s := b.solver()
 	defer b.release(s)
-	u, v := b.inward(x.Property, x.Value), b.inward(y.Property, y.Value)
+	u, v := b.inward(x.Property, s.snap(x.Property, x.Value)), b.inward(y.Property, s.snap(y.Property, y.Value))
 	one := func(r result, err error) ([]result, error) {
 		if err != nil {
 			return nil, err
