@@ -25,6 +25,7 @@ type Caution struct {
 	Field   string // path of the reading or field it speaks of, or ""
 	Label   string // place in the circuit, or ""
 	Message Message
+	Cause   error // of a property model or of the machine's, or nil
 }
 
 // safety goes with every result.

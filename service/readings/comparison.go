@@ -1,11 +1,15 @@
 package readings
 
-import "dewmark/service/cycle"
+import (
+	"context"
+
+	"dewmark/service/cycle"
+)
 
 // Machine is what an installed machine is compared with. [Expected] makes one from a [machine.Machine].
 type Machine interface {
 	// Expect returns how the healthy machine would run with this source, sink and speed.
-	Expect(c *Conditions) (*Expectation, error)
+	Expect(ctx context.Context, c *Conditions) (*Expectation, error)
 	// Flow returns the mass flow in kg/s that the compressor should move, by its map or its efficiencies, with the relative
 	// standard uncertainty of that. It returns an error where it cannot tell.
 	Flow(suctionPressure, suctionTemperature, dischargePressure, speed float64) (flow, relative float64, err error)
@@ -32,43 +36,46 @@ type StreamConditions struct {
 // Feature names a number by which faults show.
 type Feature uint8
 
-// The features. Approaches are those of the leaving streams.
+// The features. Approaches are those of the leaving streams to evaporation and condensation.
 const (
-	FeatureEvaporation      Feature = iota // K
-	FeatureLowPressure                     // Pa
-	FeatureSuperheat                       // K, at the compressor suction
-	FeatureCondensation                    // K
-	FeatureHighPressure                    // Pa
-	FeatureSubcooling                      // K
-	FeatureDischarge                       // K
-	FeaturePressureRatio                   //
-	FeatureCondenserChange                 // K, of the stream
-	FeatureEvaporatorChange                // K, of the stream
-	FeatureCondenserPinch                  // K, approach
-	FeatureEvaporatorPinch                 // K, approach
-	FeatureCapacity                        // W, that of the machine's purpose
-	FeaturePower                           // W
+	FeatureEvaporation        Feature = iota // K
+	FeatureLowPressure                       // Pa, at the evaporator outlet
+	FeatureSuperheat                         // K, at the compressor suction
+	FeatureCondensation                      // K
+	FeatureHighPressure                      // Pa, at the condenser outlet
+	FeatureSubcooling                        // K
+	FeatureDischarge                         // K
+	FeaturePressureRatio                     // of the compressor
+	FeatureCondenserChange                   // K, of the sink
+	FeatureEvaporatorChange                  // K, of the source
+	FeatureCondenserApproach                 // K
+	FeatureEvaporatorApproach                // K
+	FeatureCapacity                          // W, of cooling
+	FeaturePower                             // W, of the compressor
 	FeatureCount
 )
 
-var featureTable = [FeatureCount]struct {
+type featureRow struct {
 	name     string
 	quantity cycle.Quantity
-}{
-	{"t_evap", cycle.Temperature},
-	{"p_evap", cycle.Pressure},
-	{"superheat", cycle.TemperatureDifference},
-	{"t_cond", cycle.Temperature},
-	{"p_cond", cycle.Pressure},
-	{"subcooling", cycle.TemperatureDifference},
-	{"t_discharge", cycle.Temperature},
-	{"pressure_ratio", cycle.Dimensionless},
-	{"dt_condenser_fluid", cycle.TemperatureDifference},
-	{"dt_evaporator_fluid", cycle.TemperatureDifference},
-	{"approach_condenser", cycle.TemperatureDifference},
-	{"approach_evaporator", cycle.TemperatureDifference},
-	{"capacity", cycle.HeatFlow},
-	{"power", cycle.Power},
+	basic    bool // not a function of other features
+}
+
+var featureTable = [FeatureCount]featureRow{
+	{"t_evap", cycle.Temperature, true},
+	{"p_evap", cycle.Pressure, false},
+	{"superheat", cycle.TemperatureDifference, true},
+	{"t_cond", cycle.Temperature, true},
+	{"p_cond", cycle.Pressure, false},
+	{"subcooling", cycle.TemperatureDifference, true},
+	{"t_discharge", cycle.Temperature, true},
+	{"pressure_ratio", cycle.Dimensionless, false},
+	{"dt_condenser_fluid", cycle.TemperatureDifference, true},
+	{"dt_evaporator_fluid", cycle.TemperatureDifference, true},
+	{"approach_condenser", cycle.TemperatureDifference, false},
+	{"approach_evaporator", cycle.TemperatureDifference, false},
+	{"capacity", cycle.HeatFlow, true},
+	{"power", cycle.Power, true},
 }
 
 func (f Feature) String() string {
@@ -96,6 +103,7 @@ type Comparison struct {
 	// less than 1 of 20 cases.
 	ChiSquared, Limit float64
 	Degrees           int
+	Cautions          []Caution // of the expected values
 }
 
 // Deviates reports whether the residuals show more than chance.

@@ -36,7 +36,10 @@ func (s *Sample) Set(r Reading, value float64) {
 }
 
 // Unset takes a reading away.
-func (s *Sample) Unset(r Reading) { s.given &^= 1 << r }
+func (s *Sample) Unset(r Reading) {
+	s.given &^= 1 << r
+	s.values[r] = 0
+}
 
 // Value returns a reading and reports whether it is given.
 func (s *Sample) Value(r Reading) (float64, bool) { return s.values[r], s.has(r) }

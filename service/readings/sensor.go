@@ -46,12 +46,12 @@ const (
 // sensorRule is how the standard uncertainty of a class follows from the reading: limit or standard = absolute + relative
 // times the reading, or times the span.
 type sensorRule struct {
-	kinds     []kind
-	absolute  float64
-	relative  float64 // of the reading; of |t| in °C for thermometers
-	ofSpan    float64
-	isLimit   bool // the numbers are limits of a rectangular distribution
-	thermoAbs bool // relative counts from 0 °C
+	kinds    []kind
+	absolute float64
+	relative float64 // of the reading; of |t| in °C for thermometers
+	ofSpan   float64
+	isLimit  bool // the numbers are limits of a rectangular distribution
+	celsius  bool // relative counts from 0 °C
 }
 
 var (
@@ -63,8 +63,8 @@ var (
 		InsulatedStrapOn: {kinds: temperatures, absolute: 0.5},
 		BareClamp:        {kinds: temperatures, absolute: 1},
 		MatchedPair:      {kinds: []kind{streamChange}, absolute: 0.05},
-		Pt100ClassA:      {kinds: temperatures, absolute: 0.15, relative: 0.002, isLimit: true, thermoAbs: true},
-		Pt100ClassB:      {kinds: temperatures, absolute: 0.30, relative: 0.005, isLimit: true, thermoAbs: true},
+		Pt100ClassA:      {kinds: temperatures, absolute: 0.15, relative: 0.002, isLimit: true, celsius: true},
+		Pt100ClassB:      {kinds: temperatures, absolute: 0.30, relative: 0.005, isLimit: true, celsius: true},
 		ThermocoupleT1:   {kinds: temperatures, absolute: 0.5, isLimit: true},
 		AirStream:        {kinds: []kind{streamTemperature, ambientKind}, absolute: 0.3},
 		FlowMeter:        {kinds: []kind{flowKind}, relative: 0.01},

@@ -185,3 +185,31 @@ func (in *Inputs) Disagreements(c *Calculus, estimates []Linear) []Disagreement 
 	slices.SortStableFunc(out, func(x, y Disagreement) int { return cmp.Compare(y.Ratio, x.Ratio) })
 	return out
 }
+
+// ChiSquared returns the sum of squares of deviations from zero in units of their joint uncertainty, and how many
+// independent ones there are. Each has a standard uncertainty of its own beside what the inputs give it.
+func (in *Inputs) ChiSquared(deviations []Linear, own []float64) (chi float64, degrees int) {
+	var f factor
+	var kept []int
+	for i, d := range deviations {
+		if f.add(in, deviations, kept, i, in.Covariance(d, d)+own[i]*own[i]) {
+			kept = append(kept, i)
+		}
+	}
+	off := make([]float64, len(kept))
+	for j, i := range kept {
+		off[j] = deviations[i].Value
+	}
+	for j, v := range f.solve(off) {
+		chi += off[j] * v
+	}
+	return chi, len(kept)
+}
+
+// ChiSquaredLimit returns what chance exceeds with a probability.
+func ChiSquaredLimit(degrees int, probability float64) float64 {
+	if degrees == 0 {
+		return 0
+	}
+	return distuv.ChiSquared{K: float64(degrees)}.Quantile(1 - probability)
+}
