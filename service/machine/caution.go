@@ -14,6 +14,7 @@ const (
 	SpeedClamped        CautionCode = "speed_clamped"        // the demand lies outside the range of speeds
 	FreezingRisk        CautionCode = "freezing_risk"        // surface close to or below the freezing point
 	Frost               CautionCode = "frost"                // frost forms on the surface
+	Oversized           CautionCode = "exchanger_oversized"  // it could do more at any level
 	SmallPinch          CautionCode = "small_pinch"          // below what exchangers are built for
 	EvaporationHeld     CautionCode = "evaporation_held"     // the valve holds the evaporation, the superheat rises
 	StreamExtrapolated  CautionCode = "stream_extrapolated"  // a secondary fluid outside the range of its properties

@@ -151,6 +151,9 @@ func (t *trial) reserveExchangers(s *settled, p *OperatingPoint, add adder) {
 		if x.single {
 			add(SingleCoefficient, x.field, "one heat transfer coefficient is taken for all zones; common practice: desuperheating 0.2 to 0.4, subcooling 0.3 to 0.5, superheating 0.1 to 0.3 of that of the two-phase zone")
 		}
+		if s.capped[i] {
+			add(Oversized, x.field, "the exchanger could pass more than the duty: the refrigerant already leaves at the temperature at which the stream enters, so that superheat or subcooling decides the level")
+		}
 		if e.Pinch < usualPinch {
 			add(SmallPinch, x.field, "the smallest difference between the streams is %s; exchangers are rarely built for less than %s", difference(e.Pinch), difference(usualPinch))
 		}

@@ -1,7 +1,12 @@
 package machine
 
 import (
+	"fmt"
+	"math"
 	"math/rand/v2"
+	"slices"
+	"sync"
+	"sync/atomic"
 	"testing"
 
 	"dewmark/props/secondary"
@@ -72,37 +77,135 @@ func scenes(t testing.TB) []scene {
 func TestSweep(t *testing.T) {
 	draws := 20000
 	if testing.Short() {
-		draws = 400
+		draws = 300
 	}
-	r := rand.New(rand.NewPCG(1, 2))
 	all := scenes(t)
-	evaluations, inside, worst, most := 0, 0, 0.0, 0
-	for i := range draws {
-		s := all[i%len(all)]
-		k := s.draw(r)
-		p, err := Solve(t.Context(), demo(t, s.name), &k)
-		if err != nil {
-			t.Errorf("%s, draw %d: %v", s.name, i, err)
-			continue
+	machines := make([]*Machine, len(all))
+	for i := range all {
+		machines[i] = demo(t, all[i].name)
+	}
+	var next, evaluations, inside, most atomic.Int64
+	var worst [2]float64
+	var wg sync.WaitGroup
+	for worker := range worst {
+		wg.Go(func() {
+			for {
+				i := int(next.Add(1)) - 1
+				if i >= draws {
+					return
+				}
+				s := &all[i%len(all)]
+				k := s.draw(rand.New(rand.NewPCG(1, uint64(i))))
+				p, err := Solve(t.Context(), machines[i%len(all)], &k)
+				if err != nil {
+					t.Errorf("%s, draw %d: %v", s.name, i, err)
+					continue
+				}
+				if fault := unsound(p); fault != "" {
+					t.Errorf("%s, draw %d: %s", s.name, i, fault)
+				}
+				if p.Envelope.Verdict == InsideEnvelope {
+					inside.Add(1)
+				}
+				evaluations.Add(int64(p.Evaluations))
+				most.Store(max(most.Load(), int64(p.Evaluations)))
+				worst[worker] = max(worst[worker], p.ResidualFraction)
+			}
+		})
+	}
+	wg.Wait()
+	t.Logf("%d points, %d inside the envelope, worst residual %.1e, %.1f evaluations a point, at most about %d",
+		draws, inside.Load(), max(worst[0], worst[1]), float64(evaluations.Load())/float64(draws), most.Load())
+}
+
+// unsound says what is wrong with any operating point that is.
+func unsound(p *OperatingPoint) string {
+	c := &p.Cycle.Closure
+	perf := &p.Cycle.Performance
+	switch {
+	case !(p.ResidualFraction <= 1e-8):
+		return fmt.Sprintf("residual %g of the duty", p.ResidualFraction)
+	case !(c.EnergyResidualFraction <= 1e-9):
+		return fmt.Sprintf("energy residual %g", c.EnergyResidualFraction)
+	case !(c.SmallestEntropyGeneration >= 0):
+		return fmt.Sprintf("entropy generation %g W/K of the %s", c.SmallestEntropyGeneration, c.SmallestComponent)
+	case !(math.Abs(c.ExergyResidualFraction) <= 1e-9):
+		return fmt.Sprintf("exergy residual %g", c.ExergyResidualFraction)
+	case !(math.Abs(p.Evaporator.Duty/perf.CoolingCapacity-1) <= 1e-12 && math.Abs(p.Condenser.Duty/perf.HeatingCapacity-1) <= 1e-12):
+		return "the exchangers' duties are not the capacities"
+	case !(perf.IsentropicEfficiency > 0 && perf.IsentropicEfficiency < 1):
+		return fmt.Sprintf("isentropic efficiency %g", perf.IsentropicEfficiency)
+	}
+	for i, e := range []*ExchangerResult{&p.Evaporator, &p.Condenser} {
+		oversized := slices.ContainsFunc(p.Cautions, func(c Caution) bool {
+			return c.Code == Oversized && c.Field == [2]string{"machine.evaporator", "machine.condenser"}[i]
+		})
+		if fault := e.unsound(oversized); fault != "" {
+			return fault
 		}
-		if !(p.ResidualFraction <= 1e-8) {
-			t.Errorf("%s, draw %d: residual %g of the duty", s.name, i, p.ResidualFraction)
+	}
+	return ""
+}
+
+func (e *ExchangerResult) unsound(oversized bool) string {
+	var duty, share float64
+	for _, z := range e.Zones {
+		duty += z.Duty
+		share += z.Share
+		if !(z.Duty > 0 && z.UA > 0 && z.LMTD > 0 && z.Share > 0) {
+			return fmt.Sprintf("zone %+v", z)
 		}
-		if c := p.Cycle.Closure; !(c.EnergyResidualFraction <= 1e-9) || !(c.SmallestEntropyGeneration >= 0) {
-			t.Errorf("%s, draw %d: closure %+v", s.name, i, c)
+	}
+	q := &e.Secondary
+	switch {
+	case !(math.Abs(duty/e.Duty-1) <= 1e-9):
+		return fmt.Sprintf("the zones' duties add up to %g of %g W", duty, e.Duty)
+	case !(share <= 1+1e-6 && (share >= 1-1e-6 || oversized)):
+		return fmt.Sprintf("the zones' shares add up to %g", share)
+	case !(e.Pinch >= 0):
+		return fmt.Sprintf("pinch %g K", e.Pinch)
+	case !(q.MassFlow > 0 && q.VolumeFlow > 0):
+		return fmt.Sprintf("secondary flow %g kg/s", q.MassFlow)
+	case q.Fluid == "moist_air" && !(q.OutletHumidity > 0 && q.OutletHumidity <= 1 && q.SensibleRatio > 0 && q.SensibleRatio <= 1+1e-9):
+		return fmt.Sprintf("air leaves as %+v", q)
+	}
+	return ""
+}
+
+// Capacity rises with the source's temperature and the heating COP falls with the sink's, over all machines.
+func TestMonotone(t *testing.T) {
+	for _, s := range scenes(t) {
+		m := demo(t, s.name)
+		draws := 40
+		if testing.Short() {
+			draws = 4
 		}
-		for _, e := range []*ExchangerResult{&p.Evaporator, &p.Condenser} {
-			if !(e.Pinch >= 0) {
-				t.Errorf("%s, draw %d: pinch %g K", s.name, i, e.Pinch)
+		for i := range draws {
+			k := s.draw(rand.New(rand.NewPCG(2, uint64(i))))
+			p, err := Solve(t.Context(), m, &k)
+			if err != nil {
+				t.Fatal(err)
+			}
+			warmer, hotter := k, k
+			warmer.Source.InletTemperature = new(*k.Source.InletTemperature + 1)
+			hotter.Sink.OutletTemperature = new(*k.Sink.OutletTemperature + 1)
+			w, err := Solve(t.Context(), m, &warmer)
+			if err != nil {
+				t.Fatal(err)
+			}
+			h, err := Solve(t.Context(), m, &hotter)
+			if err != nil {
+				t.Fatal(err)
+			}
+			a, b, c := &p.Cycle.Performance, &w.Cycle.Performance, &h.Cycle.Performance
+			if !(b.HeatingCapacity > a.HeatingCapacity && b.CoolingCapacity > a.CoolingCapacity) {
+				t.Errorf("%s, draw %d: heating capacity %g W, with a source warmer by 1 K %g W", s.name, i, a.HeatingCapacity, b.HeatingCapacity)
+			}
+			if !(c.COPHeating < a.COPHeating) {
+				t.Errorf("%s, draw %d: heating COP %g, with a sink hotter by 1 K %g", s.name, i, a.COPHeating, c.COPHeating)
 			}
 		}
-		if p.Envelope.Verdict == InsideEnvelope {
-			inside++
-		}
-		evaluations += p.Evaluations
-		worst, most = max(worst, p.ResidualFraction), max(most, p.Evaluations)
 	}
-	t.Logf("%d points, %d inside the envelope, worst residual %.1e, %.1f evaluations a point, at most %d", draws, inside, worst, float64(evaluations)/float64(draws), most)
 }
 
 // typical returns a condition in the middle of what a scene draws.
