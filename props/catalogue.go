@@ -106,9 +106,18 @@ func (c *Catalogue) Refrigerant(name string, datum Datum) (Refrigerant, error) {
 func (c *Catalogue) Pure(name string, datum Datum) (*Pure, error) {
 	f, ok := c.byName[foldName(name)]
 	if !ok {
-		return nil, &UnknownRefrigerantError{Name: name, Suggestions: c.near(name)}
+		return nil, &UnknownRefrigerantError{Name: name, Suggestions: c.near(name, true)}
 	}
 	return f.withDatum(datum)
+}
+
+// Component returns the designation of the pure refrigerant called name, spelt as in [Catalogue.Refrigerant]. It returns an
+// [*UnknownRefrigerantError] that suggests nothing but what a mixture can be made of.
+func (c *Catalogue) Component(name string) (string, error) {
+	if f, ok := c.byName[foldName(name)]; ok {
+		return f.rec.ID, nil
+	}
+	return "", &UnknownRefrigerantError{Name: name, Suggestions: c.near(name, false)}
 }
 
 // Mixture returns a mixture of refrigerants by mass or mole fractions; the names of the components may be spelt as in
@@ -119,11 +128,11 @@ func (c *Catalogue) Pure(name string, datum Datum) (*Pure, error) {
 func (c *Catalogue) Mixture(composition blend.Composition, datum Datum, acceptUnverified bool) (*Blend, error) {
 	shares := slices.Clone(composition.Shares)
 	for i := range shares {
-		f, ok := c.byName[foldName(shares[i].Designation)]
-		if !ok {
-			return nil, &UnknownRefrigerantError{Name: shares[i].Designation, Suggestions: c.near(shares[i].Designation)}
+		id, err := c.Component(shares[i].Designation)
+		if err != nil {
+			return nil, err
 		}
-		shares[i].Designation = f.rec.ID
+		shares[i].Designation = id
 	}
 	composition.Shares = shares
 	b, err := c.library.Mixture(composition, datum, acceptUnverified)
@@ -177,8 +186,9 @@ func foldName(name string) string {
 	}, name)
 }
 
-// near returns up to three designations whose name or alias is closest to name by edit distance.
-func (c *Catalogue) near(name string) []string {
+// near returns up to three designations, those of blends among them or not, whose name or alias is closest to name by edit
+// distance.
+func (c *Catalogue) near(name string, blends bool) []string {
 	key := foldName(name)
 	if len(key) > 40 { // longer than any name; the distance would only cost time
 		return nil
@@ -188,7 +198,9 @@ func (c *Catalogue) near(name string) []string {
 	for name, f := range c.byName {
 		known[name] = f.rec.ID
 	}
-	maps.Copy(known, c.blends)
+	if blends {
+		maps.Copy(known, c.blends)
+	}
 	for known, id := range known {
 		d := editDistance(key, known)
 		if len(key) >= 3 && strings.HasPrefix(known, key) {

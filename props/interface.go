@@ -70,10 +70,12 @@ const (
 	KindBlend Kind = "blend"
 )
 
-// Share is the mass fraction that a component has in a refrigerant.
+// Share is the part that a component has in a refrigerant.
 type Share struct {
 	Designation  string
 	MassFraction float64
+	MoleFraction float64
+	Source       string // of the component's equation
 }
 
 // Identity is what is known of a refrigerant besides its states. Empty or nil means not known or not applicable.
@@ -97,7 +99,7 @@ type Identity struct {
 func (f *fluid) Identity() Identity {
 	r := &f.rec
 	return Identity{
-		Designation: r.ID, Name: r.Name, Kind: KindPure, Composition: []Share{{r.ID, 1}},
+		Designation: r.ID, Name: r.Name, Kind: KindPure, Composition: []Share{{r.ID, 1, 1, r.Source}},
 		Formula: r.Formula, CAS: r.CAS, Aliases: r.Aliases, TripleTemperature: r.TripleTemperature, Acentric: r.Acentric,
 		Classification: r.Classification, Model: "equation of state explicit in the Helmholtz energy",
 		Source: r.Source, Notes: r.Notes, Verification: r.Verification,

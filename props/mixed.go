@@ -13,8 +13,9 @@ import (
 // concurrent use.
 type Blend struct {
 	*blend.Blend
-	flow   *transport.Mixture
-	curves []transport.Saturation // of the components
+	flow    *transport.Mixture
+	curves  []transport.Saturation // of the components
+	sources []string               // of the components' equations
 }
 
 // newBlend completes a blend with the transport models of its components.
@@ -25,11 +26,23 @@ func (c *Catalogue) newBlend(b *blend.Blend) (*Blend, error) {
 		f := c.byName[foldName(id)]
 		curve := f.saturation()
 		models = append(models, f.flow)
+		out.sources = append(out.sources, f.rec.Source)
 		out.curves = append(out.curves, transport.Saturation{TMin: curve.TMin, TCritical: curve.TCritical, At: curve.At})
 	}
 	var err error
 	out.flow, err = transport.NewMixture(models...)
 	return out, err
+}
+
+// WithDatum returns a view that counts from d. It returns a [*DatumError] when the blend cannot.
+func (b *Blend) WithDatum(d Datum) (*Blend, error) {
+	inner, err := b.Blend.WithDatum(d)
+	if err != nil {
+		return nil, err
+	}
+	view := *b
+	view.Blend = inner
+	return &view, nil
 }
 
 // Extrapolate returns a view that also answers above the limits, like [Pure.Extrapolate].
@@ -52,9 +65,9 @@ func (b *Blend) Identity() Identity {
 		Classification: b.Classification(), Acentric: math.NaN(),
 		Model: "multi-fluid mixture model explicit in the Helmholtz energy", Pairs: b.Pairs(),
 	}
-	w := b.MassFractions()
+	w, x := b.MassFractions(), b.MoleFractions()
 	for i, component := range b.Components() {
-		id.Composition = append(id.Composition, Share{component, w[i]})
+		id.Composition = append(id.Composition, Share{component, w[i], x[i], b.sources[i]})
 	}
 	if listed := b.Listed(); listed != nil {
 		id.Source, id.Notes = listed.Source, listed.Note
@@ -139,6 +152,7 @@ func (b *Blend) surfaceTension(s State) (transport.Value, error) {
 		transport.Phase{Rho: liquid.Rho, X: liquid.X}, transport.Phase{Rho: vapour.Rho, X: vapour.X}, b.curves)
 }
 
-// TransportRecords returns the records of the components that the mixture form combines. The caller must not modify
-// them.
-func (b *Blend) TransportRecords(transport.Property) []*transport.Record { return nil }
+// TransportRecords returns what the mixture form of a property is and rests on. The caller must not modify it.
+func (b *Blend) TransportRecords(p transport.Property) []*transport.Record {
+	return []*transport.Record{b.flow.Record(p)}
+}

@@ -80,6 +80,10 @@ func NewMixture(components ...*Model) (*Mixture, error) {
 	return m, nil
 }
 
+// Record returns what the model of a property is, with the sources of the components and the range that they share. The
+// caller must not modify it.
+func (m *Mixture) Record(p Property) *Record { return &m.records[p] }
+
 // mixtureRecord returns the record that stands for m in a mixture.
 func (m *Model) mixtureRecord(p Property) *Record {
 	switch p {
