@@ -121,10 +121,10 @@ type intercooler struct {
 
 // cascade describes what lies above the lower circuit, whose refrigerant is the request's own.
 type cascade struct {
-	Upper      []string `json:"upper" validate:"max=8"` // refrigerants; one
-	Approach   *float64 `json:"approach"`
-	Superheat  *float64 `json:"superheat"`
-	Subcooling *float64 `json:"subcooling"`
+	Upper      []substance `json:"upper" validate:"max=8"` // one
+	Approach   *float64    `json:"approach"`
+	Superheat  *float64    `json:"superheat"`
+	Subcooling *float64    `json:"subcooling"`
 }
 
 type ejector struct {
@@ -193,16 +193,19 @@ func (r *cycleRequest) si(j *job, upper []*job) (*cycle.Request, error) {
 		Compressor:         r.Compressor.si(u),
 		Evaporator:         cycle.Exchanger{Drop: r.Evaporator.si(u)},
 		Condenser:          cycle.Exchanger{Drop: r.Condenser.si(u)},
-		SuctionLine:        cycle.SuctionLine{Drop: r.Suction.si(u), TemperatureRise: u.in(kindTemperatureDifference, r.Suction.TemperatureRise)},
-		DischargeLine:      cycle.DischargeLine{Drop: r.Discharge.si(u), TemperatureDrop: u.in(kindTemperatureDifference, r.Discharge.TemperatureDrop)},
-		LiquidLine:         cycle.LiquidLine{Drop: r.Liquid.si(u), TemperatureChange: u.in(kindTemperatureDifference, r.Liquid.TemperatureChange)},
+		SuctionLine:        r.Suction.si(u),
+		DischargeLine:      r.Discharge.si(u),
+		LiquidLine:         r.Liquid.si(u),
+		InternalExchanger:  r.Exchanger.si(u),
+		Intermediate:       r.Intermediate.si(u, &c, "#/intermediate"),
+		Economiser:         r.Economiser.si(u),
+		Intercooler:        r.Intercooler.si(u, &c, "#/intercooler"),
+		Ejector:            r.Ejector.si(u),
 		SourceTemperature:  u.optional(kindTemperature, r.SourceTemperature),
 		SinkTemperature:    u.optional(kindTemperature, r.SinkTemperature),
 		AmbientTemperature: u.optional(kindTemperature, r.AmbientTemperature),
 	}
-	for i, name := range r.With {
-		q.With = append(q.With, choose(&c, place{"#/with", i}.String(), name, cycle.SingleStage, cycle.ParseLayout, cycle.Layouts()))
-	}
+	q.With = combined(&c, "#/with", r.With)
 	if g := r.GasCooler; g != nil {
 		q.GasCooler = &cycle.GasCooler{
 			OutletTemperature: u.optional(kindTemperature, g.OutletTemperature), Approach: u.optional(kindTemperatureDifference, g.Approach),
@@ -215,27 +218,6 @@ func (r *cycleRequest) si(j *job, upper []*job) (*cycle.Request, error) {
 	if r.Second != nil {
 		q.SecondCompressor = new(r.Second.si(u))
 	}
-	if x := r.Exchanger; x != nil {
-		q.InternalExchanger = &cycle.InternalExchanger{Effectiveness: x.Effectiveness, Liquid: x.Liquid.si(u), Vapour: x.Vapour.si(u)}
-	}
-	if m := r.Intermediate; m != nil {
-		q.Intermediate = &cycle.Intermediate{
-			Pressure: u.optional(kindPressure, m.Pressure), Temperature: u.optional(kindTemperature, m.Temperature),
-			Optimise: choose(&c, "#/intermediate/optimise", m.Optimise, cycle.NoObjective, cycle.ParseObjective, objectives),
-		}
-	}
-	if e := r.Economiser; e != nil {
-		q.Economiser = &cycle.Economiser{
-			Approach: u.optional(kindTemperatureDifference, e.Approach), InjectionSuperheat: u.optional(kindTemperatureDifference, e.InjectionSuperheat),
-			InjectionRatio: e.InjectionRatio,
-		}
-	}
-	if i := r.Intercooler; i != nil {
-		q.Intercooler = &cycle.Intercooler{
-			Kind:     choose(&c, "#/intercooler/kind", i.Kind, cycle.DefaultIntercooler, cycle.ParseIntercooler, wordsOf(cycle.OpenIntercooler)),
-			Approach: u.optional(kindTemperatureDifference, i.Approach), Temperature: u.optional(kindTemperature, i.Temperature),
-		}
-	}
 	if k := r.Cascade; k != nil {
 		q.Cascade = &cycle.CascadeCircuit{
 			Approach:  u.optional(kindTemperatureDifference, k.Approach),
@@ -243,12 +225,6 @@ func (r *cycleRequest) si(j *job, upper []*job) (*cycle.Request, error) {
 		}
 		for _, above := range upper {
 			q.Cascade.Upper = append(q.Cascade.Upper, above.r)
-		}
-	}
-	if e := r.Ejector; e != nil {
-		q.Ejector = &cycle.EjectorGeometry{
-			MotiveEfficiency: e.MotiveEfficiency, SuctionEfficiency: e.SuctionEfficiency, DiffuserEfficiency: e.DiffuserEfficiency,
-			SuctionPressureDrop: u.optional(kindPressureDifference, e.SuctionPressureDrop),
 		}
 	}
 	if s := r.Size; s != nil {
@@ -275,4 +251,73 @@ func (d *drop) si(u *units) cycle.Drop {
 		Pressure:              u.in(kindPressureDifference, d.PressureDrop),
 		TemperatureEquivalent: u.in(kindTemperatureDifference, d.TemperatureDropEquivalent),
 	}
+}
+
+func (l *suctionLine) si(u *units) cycle.SuctionLine {
+	return cycle.SuctionLine{Drop: l.drop.si(u), TemperatureRise: u.in(kindTemperatureDifference, l.TemperatureRise)}
+}
+
+func (l *dischargeLine) si(u *units) cycle.DischargeLine {
+	return cycle.DischargeLine{Drop: l.drop.si(u), TemperatureDrop: u.in(kindTemperatureDifference, l.TemperatureDrop)}
+}
+
+func (l *liquidLine) si(u *units) cycle.LiquidLine {
+	return cycle.LiquidLine{Drop: l.drop.si(u), TemperatureChange: u.in(kindTemperatureDifference, l.TemperatureChange)}
+}
+
+func (x *exchanger) si(u *units) *cycle.InternalExchanger {
+	if x == nil {
+		return nil
+	}
+	return &cycle.InternalExchanger{Effectiveness: x.Effectiveness, Liquid: x.Liquid.si(u), Vapour: x.Vapour.si(u)}
+}
+
+// si takes the pointer to the member for what is wrong with it; so do others below.
+func (m *intermediate) si(u *units, c *choices, at string) *cycle.Intermediate {
+	if m == nil {
+		return nil
+	}
+	return &cycle.Intermediate{
+		Pressure: u.optional(kindPressure, m.Pressure), Temperature: u.optional(kindTemperature, m.Temperature),
+		Optimise: choose(c, at+"/optimise", m.Optimise, cycle.NoObjective, cycle.ParseObjective, wordsOf(cycle.OptimiseCOP)),
+	}
+}
+
+func (e *economiser) si(u *units) *cycle.Economiser {
+	if e == nil {
+		return nil
+	}
+	return &cycle.Economiser{
+		Approach: u.optional(kindTemperatureDifference, e.Approach), InjectionSuperheat: u.optional(kindTemperatureDifference, e.InjectionSuperheat),
+		InjectionRatio: e.InjectionRatio,
+	}
+}
+
+func (i *intercooler) si(u *units, c *choices, at string) *cycle.Intercooler {
+	if i == nil {
+		return nil
+	}
+	return &cycle.Intercooler{
+		Kind:     choose(c, at+"/kind", i.Kind, cycle.DefaultIntercooler, cycle.ParseIntercooler, wordsOf(cycle.OpenIntercooler)),
+		Approach: u.optional(kindTemperatureDifference, i.Approach), Temperature: u.optional(kindTemperature, i.Temperature),
+	}
+}
+
+func (e *ejector) si(u *units) *cycle.EjectorGeometry {
+	if e == nil {
+		return nil
+	}
+	return &cycle.EjectorGeometry{
+		MotiveEfficiency: e.MotiveEfficiency, SuctionEfficiency: e.SuctionEfficiency, DiffuserEfficiency: e.DiffuserEfficiency,
+		SuctionPressureDrop: u.optional(kindPressureDifference, e.SuctionPressureDrop),
+	}
+}
+
+// combined returns the layouts that one is combined with.
+func combined(c *choices, at string, names []string) []cycle.Layout {
+	var layouts []cycle.Layout
+	for i, name := range names {
+		layouts = append(layouts, choose(c, place{at, i}.String(), name, cycle.SingleStage, cycle.ParseLayout, cycle.Layouts()))
+	}
+	return layouts
 }

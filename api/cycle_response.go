@@ -49,20 +49,7 @@ func (r *cycleResponse) encode(b []byte) ([]byte, error) {
 		return nil, err
 	}
 	o.name("states")
-	o.b = append(o.b, '[')
-	for i := range r.states {
-		if i > 0 {
-			o.b = append(o.b, ',')
-		}
-		s, item := &r.states[i], begin(o.b)
-		item.text("label", s.label)
-		item.text("place", s.place)
-		item.text("refrigerant", s.refrigerant)
-		item.number("mass_flow", s.massFlow)
-		s.state.write(&item)
-		o.b = item.end()
-	}
-	o.b = append(o.b, ']')
+	o.b = appendStates(o.b, r.states)
 	if err := o.members(&r.cycleAccounts); err != nil {
 		return nil, err
 	}
@@ -159,41 +146,9 @@ var cycleKinds = []kind{kindMassFlow, kindVolumeFlow, kindHeatFlow, kindPower, k
 
 // cycleResponse turns a solution into the caller's units. Upper is the upper circuit of a cascade.
 func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
-	u := j.units
-	resp := &cycleResponse{job: j, cycleHead: cycleHead{Layout: s.Layout.String(), Purpose: s.Purpose.String()}, cycleAccounts: cycleAccounts{
-		Performance: performanceOf(&s.Performance, u), Figures: figuresOf(&s.Figures, u),
-		Closure: closure{
-			EnergyResidualFraction:    s.Closure.EnergyResidualFraction,
-			SmallestEntropyGeneration: u.known(kindEntropyFlow, s.Closure.SmallestEntropyGeneration),
-			ExergyDestruction:         u.known(kindPower, s.Closure.ExergyDestruction),
-			ExergyDelivered:           u.known(kindPower, s.Closure.ExergyDelivered),
-			ExergyReceived:            u.known(kindPower, s.Closure.ExergyReceived),
-			ExergyResidualFraction:    u.known(kindNone, s.Closure.ExergyResidualFraction),
-		},
-		Ambient: u.out(kindTemperature, s.Ambient),
-	}}
-	for _, l := range s.With {
-		resp.With = append(resp.With, l.String())
-	}
-	for i := range s.Components {
-		resp.Components = append(resp.Components, componentOf(&s.Components[i], u))
-	}
-	for i := range s.Compressors {
-		resp.Compressors = append(resp.Compressors, compressorOf(&s.Compressors[i], u))
-	}
-	for i := range s.Optima {
-		resp.Optima = append(resp.Optima, optimumOf(&s.Optima[i], u))
-	}
+	resp := &cycleResponse{job: j, cycleHead: headOf(s), cycleAccounts: accountsOf(s, j.units)}
 	var all account
-	for _, at := range s.States {
-		of := j
-		if len(upper) > 0 && at.Refrigerant == cycle.Refrigerant(upper[0].r) {
-			of = upper[0]
-		}
-		v := of.view(at.State, everything, &all)
-		all.count(nil, v.extrapolated)
-		resp.states = append(resp.states, cycleState{at.Label, at.Place, of.basis.Refrigerant, u.out(kindMassFlow, at.MassFlow), v})
-	}
+	resp.states = j.cycleStates(s, upper, &all)
 	j.conclude(&all, everything)
 	if len(upper) > 0 {
 		upper[0].basis.Extrapolated = j.basis.Extrapolated
@@ -204,6 +159,72 @@ func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
 	j.repeat(s.Cautions, all.outside > 0)
 	j.caution("calculation_aid", handling(j.r, upper))
 	return resp
+}
+
+func headOf(s *cycle.Solution) cycleHead {
+	h := cycleHead{Layout: s.Layout.String(), Purpose: s.Purpose.String()}
+	for _, l := range s.With {
+		h.With = append(h.With, l.String())
+	}
+	return h
+}
+
+func accountsOf(s *cycle.Solution, u *units) cycleAccounts {
+	a := cycleAccounts{
+		Performance: performanceOf(&s.Performance, u), Figures: figuresOf(&s.Figures, u),
+		Closure: closure{
+			EnergyResidualFraction:    s.Closure.EnergyResidualFraction,
+			SmallestEntropyGeneration: u.known(kindEntropyFlow, s.Closure.SmallestEntropyGeneration),
+			ExergyDestruction:         u.known(kindPower, s.Closure.ExergyDestruction),
+			ExergyDelivered:           u.known(kindPower, s.Closure.ExergyDelivered),
+			ExergyReceived:            u.known(kindPower, s.Closure.ExergyReceived),
+			ExergyResidualFraction:    u.known(kindNone, s.Closure.ExergyResidualFraction),
+		},
+		Ambient: u.out(kindTemperature, s.Ambient),
+	}
+	for i := range s.Components {
+		a.Components = append(a.Components, componentOf(&s.Components[i], u))
+	}
+	for i := range s.Compressors {
+		a.Compressors = append(a.Compressors, compressorOf(&s.Compressors[i], u))
+	}
+	for i := range s.Optima {
+		a.Optima = append(a.Optima, optimumOf(&s.Optima[i], u))
+	}
+	return a
+}
+
+// cycleStates returns the states around the circuit and enters what is to be said of them.
+func (j *job) cycleStates(s *cycle.Solution, upper []*job, into *account) []cycleState {
+	var states []cycleState
+	for _, at := range s.States {
+		of := j
+		if len(upper) > 0 && at.Refrigerant == cycle.Refrigerant(upper[0].r) {
+			of = upper[0]
+		}
+		v := of.view(at.State, everything, into)
+		into.count(nil, v.extrapolated)
+		states = append(states, cycleState{at.Label, at.Place, of.basis.Refrigerant, j.units.out(kindMassFlow, at.MassFlow), v})
+	}
+	return states
+}
+
+// appendStates adds states as an array.
+func appendStates(b []byte, states []cycleState) []byte {
+	b = append(b, '[')
+	for i := range states {
+		if i > 0 {
+			b = append(b, ',')
+		}
+		s, item := &states[i], begin(b)
+		item.text("label", s.label)
+		item.text("place", s.place)
+		item.text("refrigerant", s.refrigerant)
+		item.number("mass_flow", s.massFlow)
+		s.state.write(&item)
+		b = item.end()
+	}
+	return append(b, ']')
 }
 
 // repeat passes on the cautions of the solver, but for what is said already.
