@@ -58,7 +58,7 @@ func NewCatalogue() (*Catalogue, error) {
 	for _, b := range c.library.Listed() {
 		c.blends[foldName(b.Designation)] = b.Designation
 	}
-	slices.SortFunc(c.fluids, func(a, b *fluid) int { return compareDesignations(a.rec.ID, b.rec.ID) })
+	slices.SortFunc(c.fluids, func(a, b *fluid) int { return CompareDesignations(a.rec.ID, b.rec.ID) })
 	return c, nil
 }
 
@@ -71,7 +71,7 @@ func (c *Catalogue) Designations() []string {
 	for _, b := range c.library.Listed() {
 		names = append(names, b.Designation)
 	}
-	slices.SortFunc(names, compareDesignations)
+	slices.SortFunc(names, CompareDesignations)
 	return names
 }
 
@@ -218,7 +218,7 @@ func (c *Catalogue) near(name string, blends bool) []string {
 		ids = append(ids, id)
 	}
 	slices.SortFunc(ids, func(a, b string) int {
-		return cmp.Or(cmp.Compare(best[a], best[b]), compareDesignations(a, b))
+		return cmp.Or(cmp.Compare(best[a], best[b]), CompareDesignations(a, b))
 	})
 	return ids[:min(3, len(ids))]
 }
@@ -244,8 +244,8 @@ func editDistance(a, b string) int {
 	return row[len(b)]
 }
 
-// compareDesignations orders designations by the number in them, then as text.
-func compareDesignations(a, b string) int {
+// CompareDesignations orders designations by the number in them, then as text, for [slices.SortFunc].
+func CompareDesignations(a, b string) int {
 	return cmp.Or(cmp.Compare(designationNumber(a), designationNumber(b)), cmp.Compare(a, b))
 }
 

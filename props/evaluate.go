@@ -15,14 +15,14 @@ type fluidState struct {
 
 // evaluate returns the state of a single phase at density rho in kg/m3 on an isotherm.
 func (r *Pure) evaluate(iso *helmholtz.Isotherm, rho float64) fluidState {
-	res := iso.Residual(rho / r.M)
+	res := iso.Residual(rho * r.perM)
 	id := &iso.Ideal
 	RT := r.Rs * iso.T
 	e := id.T + res.T
 	f := fluidState{
 		T: iso.T, rho: rho,
 		p:    rho * RT * (1 + res.D),
-		s:    r.Rs*(e-id.A-res.A-math.Log(rho/(r.M*r.eq.RhoRed))) + r.s0,
+		s:    r.Rs*(e-id.A-res.A-math.Log(rho*r.perRho)) + r.s0,
 		u:    RT*e + r.h0,
 		cv:   -r.Rs * (id.TT + res.TT),
 		pRho: RT * (1 + 2*res.D + res.DD),
@@ -49,18 +49,19 @@ func (f *fluidState) value(y Property) (v, dT, dRho float64) {
 // state completes a single-phase state. Pressure p is the one that is known exactly, from which the equation's own
 // differs by rounding that matters in a cold liquid.
 func (r *Pure) state(f fluidState, p float64) State {
-	q := f.T * f.pT / f.rho
+	v := 1 / f.rho
+	q := f.T * f.pT * f.pT * v * v
 	s := State{
 		Phase: r.phase(f.T, p, f.rho),
 		T:     f.T, P: p, Rho: f.rho, S: f.s, U: f.u,
-		H:       f.u + p/f.rho,
+		H:       f.u + p*v,
 		Quality: math.NaN(),
 		Cv:      f.cv,
-		Cp:      f.cv + q*f.pT/(f.rho*f.pRho),
-		W:       math.Sqrt(f.pRho + q*f.pT/(f.rho*f.cv)),
+		Cp:      f.cv + q/f.pRho,
+		W:       math.Sqrt(f.pRho + q/f.cv),
 		DPDRho:  f.pRho,
 		DPDT:    f.pT,
-		Z:       p / (f.rho * r.Rs * f.T),
+		Z:       p * v / (r.Rs * f.T),
 	}
 	return s
 }

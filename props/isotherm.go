@@ -14,16 +14,13 @@ func (r *Pure) TemperatureDensity(T, rho float64) (State, error) {
 	if err := r.checkDensity(rho); err != nil {
 		return State{}, err
 	}
-	if T < r.curve.TCritical {
+	if T < r.curve.TCritical && r.inDome(T, rho) {
 		p, liquid, vapour := r.curve.At(T)
-		liquid, vapour = liquid*r.M, vapour*r.M
-		if vapour*(1-1e-12) <= rho && rho <= liquid*(1+1e-12) {
-			d := r.domeOf(T, p, liquid, vapour)
-			x := math.Min(1, math.Max(0, d.quality(Density, rho)))
-			s := r.domeState(&d, x)
-			s.Rho = rho
-			return s, nil
-		}
+		d := r.domeOf(T, p, liquid*r.M, vapour*r.M)
+		x := math.Min(1, math.Max(0, d.quality(Density, rho)))
+		s := r.domeState(&d, x)
+		s.Rho = rho
+		return s, nil
 	}
 	var iso helmholtz.Isotherm
 	iso.Set(r.eq, T)
@@ -35,6 +32,14 @@ func (r *Pure) TemperatureDensity(T, rho float64) (State, error) {
 		return State{}, err
 	}
 	return r.state(f, f.p), nil
+}
+
+// inDome reports whether a density at a temperature below the critical one lies in the dome, its edge included to rounding.
+func (r *Pure) inDome(T, rho float64) bool {
+	if rho > r.curve.RhoCritical*r.M {
+		return rho <= r.curve.Density(T, true)*r.M*(1+1e-12)
+	}
+	return rho >= r.curve.Density(T, false)*r.M*(1-1e-12)
 }
 
 // TemperatureQuality returns the state inside the dome at T in K and quality x from 0 to 1.

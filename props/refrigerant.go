@@ -26,14 +26,15 @@ type Pure struct {
 
 // fluid is what all views of a refrigerant share.
 type fluid struct {
-	rec    data.Record
-	eq     *helmholtz.Equation
-	M      float64 // kg/mol
-	Rs     float64 // J/(kg K)
-	flow   *transport.Model
-	build  sync.Once
-	made   *saturation.Curve
-	starts starts // above the critical pressure
+	rec          data.Record
+	eq           *helmholtz.Equation
+	M            float64 // kg/mol
+	Rs           float64 // J/(kg K)
+	perM, perRho float64 // reciprocals of the molar mass and of the reducing density, mol/kg and m3/kg
+	flow         *transport.Model
+	build        sync.Once
+	made         *saturation.Curve
+	starts       starts // above the critical pressure
 }
 
 func newFluid(rec data.Record) (*fluid, error) {
@@ -44,7 +45,10 @@ func newFluid(rec data.Record) (*fluid, error) {
 	if err != nil {
 		return nil, err
 	}
-	return &fluid{rec: rec, eq: eq, M: rec.MolarMass, Rs: rec.GasConstant / rec.MolarMass}, nil
+	return &fluid{
+		rec: rec, eq: eq, M: rec.MolarMass, Rs: rec.GasConstant / rec.MolarMass,
+		perM: 1 / rec.MolarMass, perRho: 1 / (rec.MolarMass * rec.Reducing.Density),
+	}, nil
 }
 
 // saturation returns the saturation curve, which is made on first use. The coefficient files are embedded and a test

@@ -103,12 +103,10 @@ func (b *builder) finish() error {
 		exponents = append(exponents, r[1])
 	}
 	e.powers = planPowers(exponents)
-	if len(e.powers) > maxPowers {
-		return fmt.Errorf("helmholtz: %d powers of tau, at most %d are supported", len(e.powers), maxPowers)
+	if n := len(e.powers.t); n > maxPowers {
+		return fmt.Errorf("helmholtz: %d powers of tau, at most %d are supported", n, maxPowers)
 	}
-	at := func(t float64) int {
-		return slices.IndexFunc(e.powers, func(p tauPower) bool { return p.t == t })
-	}
+	at := func(t float64) int { return slices.Index(e.powers.t, t) }
 	expand := func(n, t float64, shape int) plainTerm {
 		return plainTerm{power: at(t), shape: shape, n: n, nt: n * t, ntt: n * t * (t - 1)}
 	}
@@ -125,8 +123,6 @@ func (b *builder) finish() error {
 	for _, r := range e.ideal.TauPowers {
 		e.ideal.powers = append(e.ideal.powers, expand(r[0], r[1], 0))
 	}
-	// Terms of one shape in a row keep its coefficient in registers.
-	slices.SortStableFunc(e.plain, func(a, b plainTerm) int { return cmp.Compare(a.shape, b.shape) })
 	return nil
 }
 
@@ -181,59 +177,56 @@ func (b *builder) powerIndex(d float64) int {
 	return maxPower + 1 + i
 }
 
-// planPowers returns a table that holds tau to every exponent. Exponents that are multiples of one quarter are made by
-// products from tau itself and its roots, the others by one exponential each, or as the product of two others.
-func planPowers(exponents []float64) []tauPower {
+// planPowers returns a table that holds tau to every exponent. Positive multiples of one half are made by products from
+// tau and its root, the others by one exponential each, or as the product of two others.
+func planPowers(exponents []float64) powerTable {
+	exponents = slices.Clone(exponents)
 	slices.SortFunc(exponents, func(x, y float64) int {
 		return cmp.Or(cmp.Compare(math.Abs(x), math.Abs(y)), cmp.Compare(y, x))
 	})
 	exponents = slices.Compact(exponents)
-	table := []tauPower{{t: 0, how: powerExp}, {t: 1, how: powerExp}}
+	p := powerTable{t: []float64{0, 1}}
 	at := map[float64]int{0: 0, 1: 1}
-	put := func(p tauPower) int {
-		if i, ok := at[p.t]; ok {
-			return i
-		}
-		at[p.t] = len(table)
-		table = append(table, p)
-		return len(table) - 1
+	put := func(t float64) int {
+		at[t] = len(p.t)
+		p.t = append(p.t, t)
+		return at[t]
 	}
 	var need func(t float64) int
 	need = func(t float64) int {
 		if i, ok := at[t]; ok {
 			return i
 		}
-		if t*4 != math.Trunc(t*4) || math.Abs(t) > 64 {
-			for i, p := range table { // an exact sum of two others
-				if j, ok := at[t-p.t]; ok && p.t+(t-p.t) == t {
-					return put(tauPower{t: t, how: powerProduct, a: i, b: j})
-				}
+		halves := t*2 == math.Trunc(t*2) && 0 < t && t <= 64
+		for _, u := range p.t { // the product of two that are there
+			j, ok := at[t-u]
+			if ok && (halves && 0 < u && u < t || !halves && u+(t-u) == t) {
+				a := at[u]
+				i := put(t)
+				p.products = append(p.products, powerStep{i, a, j})
+				return i
 			}
-			return put(tauPower{t: t, how: powerExp})
 		}
 		switch {
-		case t < 0:
-			return put(tauPower{t: t, how: powerInverse, a: need(-t)})
-		case t == 0.5 || t == 0.25:
-			return put(tauPower{t: t, how: powerRoot, a: need(2 * t)})
-		}
-		for i, p := range table {
-			if j, ok := at[t-p.t]; ok && p.t > 0 && t-p.t > 0 {
-				return put(tauPower{t: t, how: powerProduct, a: i, b: j})
-			}
+		case t == 0.5:
+			p.root = put(t)
+			return p.root
+		case !halves:
+			i := put(t)
+			p.exps = append(p.exps, i)
+			return i
 		}
 		part := math.Trunc(t / 2)
-		switch whole := math.Trunc(t); {
-		case t < 1: // three quarters
-			part = 0.5
-		case whole != t:
+		if whole := math.Trunc(t); whole != t {
 			part = whole
 		}
-		a := need(part)
-		return put(tauPower{t: t, how: powerProduct, a: a, b: need(t - part)})
+		a, b := need(part), need(t-part)
+		i := put(t)
+		p.products = append(p.products, powerStep{i, a, b})
+		return i
 	}
 	for _, t := range exponents {
 		need(t)
 	}
-	return table
+	return p
 }

@@ -76,8 +76,9 @@ type Equation struct {
 	TRed   float64 // K
 	RhoRed float64 // mol/m3
 
+	perRho   float64 // 1/RhoRed
 	ideal    ideal
-	powers   []tauPower // table of powers of tau; each is made from earlier ones where it can be
+	powers   powerTable
 	plain    []plainTerm
 	special  []specialTerm
 	shapes   []shape   // distinct factors in delta, grouped by exponential
@@ -88,21 +89,17 @@ type Equation struct {
 	fraction []float64 // fractional exponents of delta
 }
 
-// tauPower says how an entry of the table of powers of tau is made.
-type tauPower struct {
-	t    float64
-	how  powerRule
-	a, b int // entries to multiply
+// powerTable plans a table of powers of tau: the numbers one and tau, the root of tau, the powers that cost an exponential,
+// then products of two earlier entries.
+type powerTable struct {
+	t        []float64 // the exponents
+	root     int       // entry of the square root; 0 when there is none
+	exps     []int     // entries
+	products []powerStep
 }
 
-type powerRule uint8
-
-const (
-	powerExp     powerRule = iota // exp(t ln tau)
-	powerProduct                  // product of two earlier entries
-	powerRoot                     // square root of an earlier entry
-	powerInverse                  // reciprocal of an earlier entry
-)
+// powerStep makes the entry at as the product of the entries a and b.
+type powerStep struct{ at, a, b int }
 
 // plainTerm is one term n tau^t times the factor in delta of its shape, with the factors of its derivatives.
 type plainTerm struct {
@@ -167,7 +164,7 @@ func New(c Coefficients) (*Equation, error) {
 	if err := c.Ideal.check(); err != nil {
 		return nil, err
 	}
-	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, ideal: ideal{Ideal: c.Ideal}}
+	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, perRho: 1 / c.ReducingDensity, ideal: ideal{Ideal: c.Ideal}}
 	b := builder{eq: e, shapeAt: map[shapeKey]int{}}
 	r := c.Residual
 	for _, form := range []struct {

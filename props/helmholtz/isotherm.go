@@ -10,7 +10,8 @@ type Isotherm struct {
 	Tau      float64
 	Ideal    Alpha // ideal part without ln(delta): A, T and TT are set
 	weights  [maxShapes]weight
-	peakTau1 float64 // tau - 1
+	powers   [maxPowers]float64 // scratch of Set
+	peakTau1 float64            // tau - 1
 }
 
 // weight is the coefficient of a shape and its reduced derivatives in tau.
@@ -20,47 +21,40 @@ type weight struct{ c, ct, ctt float64 }
 func (s *Isotherm) Set(e *Equation, T float64) {
 	s.eq, s.T = e, T
 	tau := e.TRed / T
-	s.Tau, s.peakTau1 = tau, (e.TRed-T)/T
+	s.Tau = tau
+	if len(e.peaks) > 0 {
+		s.peakTau1 = (e.TRed - T) / T
+	}
 	lnTau := log(tau)
 
-	var pw [maxPowers]float64
+	pw := &s.powers
 	pw[0], pw[1] = 1, tau
-	for i := 2; i < len(e.powers); i++ {
-		p := &e.powers[i]
-		switch p.how {
-		case powerProduct:
-			pw[i&(maxPowers-1)] = pw[p.a&(maxPowers-1)] * pw[p.b&(maxPowers-1)]
-		case powerExp:
-			pw[i&(maxPowers-1)] = exp(p.t * lnTau)
-		case powerRoot:
-			pw[i&(maxPowers-1)] = math.Sqrt(pw[p.a&(maxPowers-1)])
-		case powerInverse:
-			pw[i&(maxPowers-1)] = 1 / pw[p.a&(maxPowers-1)]
-		}
+	const mask = maxPowers - 1 // an index within the table needs no bounds check
+	if i := e.powers.root; i > 0 {
+		pw[i&mask] = math.Sqrt(tau)
+	}
+	for _, i := range e.powers.exps {
+		pw[i&mask] = exp(e.powers.t[i] * lnTau)
+	}
+	for _, k := range e.powers.products {
+		pw[k.at&mask] = pw[k.a&mask] * pw[k.b&mask]
 	}
 
-	for i := range e.shapes {
-		s.weights[i] = weight{}
-	}
-	for i := 0; i < len(e.plain); {
-		at := e.plain[i].shape
-		var w weight
-		for ; i < len(e.plain) && e.plain[i].shape == at; i++ {
-			k := &e.plain[i]
-			z := pw[k.power&(maxPowers-1)]
-			w.c += k.n * z
-			w.ct += k.nt * z
-			w.ctt += k.ntt * z
-		}
-		s.weights[at] = w
+	clear(s.weights[:len(e.shapes)])
+	for i := range e.plain {
+		k := &e.plain[i]
+		w, z := &s.weights[k.shape], pw[k.power&mask]
+		w.c += k.n * z
+		w.ct += k.nt * z
+		w.ctt += k.ntt * z
 	}
 	for i := range e.special {
 		k := &e.special[i]
 		w := &s.weights[k.shape]
-		c, a := k.n*pw[k.power&(maxPowers-1)], k.t
+		c, a := k.n*pw[k.power&mask], k.t
 		switch k.kind {
 		case tauExp:
-			u := pw[k.mPower&(maxPowers-1)]
+			u := pw[k.mPower&mask]
 			v := k.beta * u
 			c *= exp(-u)
 			a -= v
@@ -89,7 +83,7 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 		TT: -p.LnTau + p.TauLnTau*tau,
 	}
 	for _, k := range p.powers {
-		z := pw[k.power&(maxPowers-1)]
+		z := pw[k.power&mask]
 		s.Ideal.A += k.n * z
 		s.Ideal.T += k.nt * z
 		s.Ideal.TT += k.ntt * z
@@ -113,8 +107,9 @@ func (s *Isotherm) Density(rho float64) (d, dd float64) {
 		r := s.Residual(rho)
 		return r.D, r.DD
 	}
-	delta := rho / e.RhoRed
-	pow := e.deltaTable(delta)
+	delta := rho * e.perRho
+	var pow [deltaPowers]float64
+	e.fillPowers(&pow, delta)
 	for i := range e.groups {
 		g := &e.groups[i]
 		var a0, a1, a2 float64
@@ -149,23 +144,25 @@ func (s *Isotherm) Density(rho float64) (d, dd float64) {
 	return d, dd
 }
 
-// deltaTable returns the powers of delta that the shapes use.
-func (e *Equation) deltaTable(delta float64) (pow [deltaPowers]float64) {
-	pow[0] = 1
-	for i := 1; i <= e.maxDelta; i++ {
-		pow[i&(deltaPowers-1)] = pow[(i-1)&(deltaPowers-1)] * delta
+// fillPowers sets the powers of delta that the shapes use, even and odd ones in turn so that they do not wait for each
+// other.
+func (e *Equation) fillPowers(pow *[deltaPowers]float64, delta float64) {
+	square := delta * delta
+	pow[0], pow[1] = 1, delta
+	for i := 2; i <= e.maxDelta; i++ {
+		pow[i&(deltaPowers-1)] = pow[(i-2)&(deltaPowers-1)] * square
 	}
 	for i, d := range e.fraction {
 		pow[(maxPower+1+i)&(deltaPowers-1)] = math.Pow(delta, d)
 	}
-	return pow
 }
 
 // Residual returns the residual part and its derivatives at density rho in mol/m3, which must be positive.
 func (s *Isotherm) Residual(rho float64) Alpha {
 	e := s.eq
-	delta := rho / e.RhoRed
-	pow := e.deltaTable(delta)
+	delta := rho * e.perRho
+	var pow [deltaPowers]float64
+	e.fillPowers(&pow, delta)
 	var out Alpha
 	for i := range e.groups {
 		g := &e.groups[i]

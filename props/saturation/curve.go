@@ -122,6 +122,24 @@ func (c *Curve) Pressure(T float64) float64 {
 	return math.Exp(k.lnP.at((s-k.lo)*k.scale - 1))
 }
 
+// Density returns the density of saturated liquid or vapour alone in mol/m3 at T in K: half the price of [Curve.At].
+func (c *Curve) Density(T float64, liquid bool) float64 {
+	s := math.Sqrt(math.Max(0, (c.TCritical-T)/c.TCritical))
+	if s < c.critical.hi {
+		_, l, v := c.critical.at(c, s)
+		if liquid {
+			return l
+		}
+		return v
+	}
+	k := c.find(s)
+	x := (s-k.lo)*k.scale - 1
+	if liquid {
+		return k.liquid.at(x)
+	}
+	return math.Exp(k.lnVapour.at(x))
+}
+
 // Temperature returns the boiling temperature in K at pressure p in Pa, which must lie between PMin and PCritical.
 func (c *Curve) Temperature(p float64) float64 {
 	y := math.Log(p)
