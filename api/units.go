@@ -40,6 +40,9 @@ const (
 	kindVolumetricCapacity
 	kindMolarMass
 	kindLength
+	kindVolume            // swept by one revolution
+	kindConductance       // of a heat exchanger
+	kindThermalResistance // the reciprocal
 	kindCount
 	kindNone kind = math.MaxUint8 // a pure number
 )
@@ -211,6 +214,22 @@ var quantities = [kindCount]quantity{
 	}},
 	kindMolarMass: {"molar_mass", "g/mol", "g/mol", []unit{{code: "g/mol", scale: 1e-3}, {code: "kg/mol", scale: 1}, {code: "kg/kmol", scale: 1e-3}}},
 	kindLength:    {"length", "m", "[ft_i]", []unit{{code: "m", scale: 1}, {code: "km", scale: 1e3}, {code: "[ft_i]", scale: foot}}},
+	kindVolume: {"volume", "m3", "[in_i]3", []unit{
+		{code: "m3", scale: 1}, {code: "L", scale: 1e-3}, {code: "cm3", scale: 1e-6}, {code: "[ft_i]3", scale: foot * foot * foot}, {code: "[in_i]3", scale: inch * inch * inch},
+	}},
+	kindConductance: {"conductance", "W/K", "[Btu_IT]/(h.[degR])", []unit{
+		{code: "W/K", scale: 1},
+		{code: "kW/K", scale: 1e3},
+		{code: "kcal_IT/(h.K)", scale: kcal / hour},
+		{code: "[Btu_IT]/(h.[degR])", scale: btu / (hour * rankine)},
+		{code: "[Btu_IT]/(h.[degF])", scale: btu / (hour * rankine)},
+	}},
+	kindThermalResistance: {"thermal_resistance", "K/W", "h.[degR]/[Btu_IT]", []unit{
+		{code: "K/W", scale: 1},
+		{code: "K/kW", scale: 1e-3},
+		{code: "h.[degR]/[Btu_IT]", scale: hour * rankine / btu},
+		{code: "h.[degF]/[Btu_IT]", scale: hour * rankine / btu},
+	}},
 }
 
 // absoluteUnits serve pressures and their differences.

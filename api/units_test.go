@@ -43,7 +43,7 @@ var kindsOf = map[string][]kind{
 	"temperature": {kindTemperature}, "temperature_difference": {kindTemperatureDifference},
 	"pressure": {kindPressure, kindPressureDifference}, "power": {kindPower, kindHeatFlow}, "mass_flow": {kindMassFlow},
 	"volume_flow": {kindVolumeFlow}, "specific_energy": {kindEnthalpy}, "specific_entropy": {kindEntropy}, "density": {kindDensity},
-	"ua": {kindEntropyFlow}, "length": {kindLength}, "velocity": {kindVelocity}, "viscosity": {kindViscosity},
+	"ua": {kindEntropyFlow, kindConductance}, "length": {kindLength}, "velocity": {kindVelocity}, "viscosity": {kindViscosity},
 	"conductivity": {kindThermalConductivity}, "surface_tension": {kindSurfaceTension},
 }
 
@@ -150,9 +150,11 @@ func TestConversions(t *testing.T) {
 		{"20 °F of superheat", kindTemperatureDifference, "[degF]", 20, 100. / 9},
 		{"20 °R of superheat", kindTemperatureDifference, "[degR]", 20, 100. / 9},
 		{"a difference in Celsius has no zero", kindTemperatureDifference, "Cel", 5, 5},
-		{"one Btu a pound", kindEnthalpy, "[Btu_IT]/[lb_av]", 1, 2326},                      // exact, NIST SP 811
-		{"one Btu a pound and degree", kindEntropy, "[Btu_IT]/([lb_av].[degR])", 1, 4186.8}, // exact, NIST SP 811
-		{"a ton of refrigeration", kindHeatFlow, "12000.[Btu_IT]/h", 1, 3516.8528420667},    // 12 000 Btu/h
+		{"one Btu a pound", kindEnthalpy, "[Btu_IT]/[lb_av]", 1, 2326},                                            // exact, NIST SP 811
+		{"one Btu a pound and degree", kindEntropy, "[Btu_IT]/([lb_av].[degR])", 1, 4186.8},                       // exact, NIST SP 811
+		{"a ton of refrigeration", kindHeatFlow, "12000.[Btu_IT]/h", 1, 3516.8528420667},                          // 12 000 Btu/h
+		{"a cubic inch", kindVolume, "[in_i]3", 1, 16.387064e-6},                                                  // exact, NIST SP 811
+		{"a Btu an hour and degree, upside down", kindThermalResistance, "h.[degF]/[Btu_IT]", 1, 1.8956342406266}, // NIST SP 811, 1.895634 K/W
 		{"one psi a degree", kindJouleThomson, "[degR]/[psi]", 1, 5. / 9 / 6894.757293168},
 	} {
 		u := inCode(t, tt.kind, tt.code)
