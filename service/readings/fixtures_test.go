@@ -69,3 +69,30 @@ func evaluate(t testing.TB, e *readings.Evaluator, s *readings.Sample) *readings
 	}
 	return r
 }
+
+// heatPump is a sample of a heat pump with R290 or another refrigerant, at about 0 °C and 45 °C, with sensors wherever a
+// supervised installation has some.
+func heatPump(t testing.TB, fluid props.Refrigerant) *readings.Sample {
+	t.Helper()
+	low, err := fluid.DewPoint(273.15)
+	if err != nil {
+		t.Fatal(err)
+	}
+	high := props.State{P: 9.5e6} // of a gas cooler
+	if fluid.Critical().T > 330 {
+		if high, err = fluid.BubblePoint(318.15); err != nil {
+			t.Fatal(err)
+		}
+	}
+	var s readings.Sample
+	for r, v := range map[readings.Reading]float64{
+		readings.SuctionPressure: low.P, readings.SuctionTemperature: 281.15,
+		readings.DischargePressure: high.P, readings.DischargeTemperature: 343.15,
+		readings.LiquidTemperature: 313.15, readings.CompressorPower: 2500, readings.HeatLossFraction: 0.05,
+		readings.SinkInletTemperature: 308.15, readings.SinkOutletTemperature: 313.15, readings.SinkVolumeFlow: 0.5e-3,
+	} {
+		s.Set(r, v)
+	}
+	s.Sink.Liquid = water(t)
+	return &s
+}

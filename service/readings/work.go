@@ -317,11 +317,13 @@ func (w *work) streamMean(of side) uncertainty.Linear {
 	if !in.Known() || !out.Known() {
 		return uncertainty.Unknown
 	}
-	mean := (in.Value + out.Value) / 2
-	if d := (out.Value - in.Value) / mean; math.Abs(d) > 1e-6 {
-		mean = (out.Value - in.Value) / math.Log(out.Value/in.Value) // entropy mean at constant heat capacity
+	// The entropy mean at constant heat capacity; where both are nearly the same its formula runs out of digits.
+	ln := math.Log(out.Value / in.Value)
+	if math.Abs(ln) < 1e-5 {
+		return w.calculus.OfTwo((in.Value+out.Value)/2, in, 0.5, out, 0.5)
 	}
-	return w.calculus.OfTwo(mean, in, 0.5, out, 0.5)
+	mean := (out.Value - in.Value) / ln
+	return w.calculus.OfTwo(mean, in, (mean/in.Value-1)/ln, out, (1-mean/out.Value)/ln)
 }
 
 // closure returns by how much the energy balance of the whole machine misses, over the heat given off, where all of it is

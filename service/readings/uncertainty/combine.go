@@ -22,76 +22,153 @@ func (k *Combination) Consistent() bool {
 	return k.Degrees == 0 || k.ChiSquared <= distuv.ChiSquared{K: float64(k.Degrees)}.Quantile(0.95)
 }
 
-// dependent is the part of its variance that an estimate must have for itself, beside better ones, to count as another.
+// dependent is the part of its variance that an estimate must have for itself, beside others, to count as another.
 const dependent = 1e-9
 
 // Combine returns the weights of least variance that are not negative and add up to 1. For independent estimates they are
 // those by inverse variance; estimates that share inputs are weighted by the inverse of their covariance matrix (A. C.
-// Aitken, Proc. R. Soc. Edinb. 55 (1936) 42), and one that would get a negative weight is left out. Estimates that are not
-// known count nothing.
+// Aitken, Proc. R. Soc. Edinb. 55 (1936) 42), as far as that leaves no weight negative. Estimates that are not known count
+// nothing.
 func (in *Inputs) Combine(estimates []Linear) Combination {
 	k := Combination{Weights: make([]float64, len(estimates))}
-	var order []int
-	variance := make([]float64, len(estimates))
+	v := in.covariances(estimates)
+	best := -1
 	for i, y := range estimates {
-		if y.Known() {
-			order = append(order, i)
-			variance[i] = in.Covariance(y, y)
+		if y.Known() && (best < 0 || v[i][i] < v[best][best]) {
+			best = i
 		}
 	}
-	if len(order) == 0 {
+	if best < 0 {
 		return k
 	}
-	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(variance[a], variance[b]) })
-	if len(order) == 1 || !(variance[order[0]] > 0) {
-		k.Weights[order[0]] = 1
+	k.Weights[best] = 1
+	kept := []int{best}
+	if !(v[best][best] > 0) {
 		return k
 	}
-	for {
-		var f factor
-		kept := order[:0:0]
-		for _, i := range order {
-			if f.add(in, estimates, kept, i, variance[i]) {
-				kept = append(kept, i)
-			}
+	// An active set method for a quadratic with bounds, as C. L. Lawson and R. J. Hanson, Solving Least Squares Problems
+	// (1974), chapter 23: take in the estimate that promises most, and leave out those whose weight falls to zero.
+	for range 4 * len(estimates) {
+		next := promising(estimates, v, k.Weights, kept)
+		if next < 0 {
+			break
 		}
-		w, chi := f.weights(estimates, kept)
-		worst := -1
-		for j := range kept {
-			if w[j] < 0 && (worst < 0 || w[j] < w[worst]) {
-				worst = j
+		kept = append(kept, next)
+		for {
+			var f factor
+			if !f.build(v, kept) {
+				kept = kept[:len(kept)-1] // the new one depends on the others
+				break
 			}
-		}
-		if worst < 0 {
+			target := f.weights()
+			step, out := 1.0, -1
 			for j, i := range kept {
-				k.Weights[i] = w[j]
+				if w := k.Weights[i]; target[j] <= 0 && w/(w-target[j]) < step {
+					step, out = w/(w-target[j]), j
+				}
 			}
-			k.ChiSquared, k.Degrees = chi, len(kept)-1
-			return k
+			for j, i := range kept {
+				k.Weights[i] += step * (target[j] - k.Weights[i])
+			}
+			if out < 0 {
+				break
+			}
+			k.Weights[kept[out]] = 0
+			kept = slices.Delete(kept, out, out+1)
 		}
-		order = slices.Delete(kept, worst, worst+1)
 	}
+	k.agree(estimates, v, kept)
+	return k
 }
 
-// factor is the Cholesky factor of the covariance matrix of the estimates that were added.
+// covariances returns the covariance matrix of the estimates that are known.
+func (in *Inputs) covariances(estimates []Linear) [][]float64 {
+	v := make([][]float64, len(estimates))
+	room := make([]float64, len(estimates)*len(estimates))
+	for i := range v {
+		v[i] = room[i*len(v) : (i+1)*len(v)]
+		for j := range i + 1 {
+			if estimates[i].Known() && estimates[j].Known() {
+				v[i][j] = in.Covariance(estimates[i], estimates[j])
+				v[j][i] = v[i][j]
+			}
+		}
+	}
+	return v
+}
+
+// promising returns the estimate outside those kept that lowers the variance fastest, or -1.
+func promising(estimates []Linear, v [][]float64, w []float64, kept []int) int {
+	lean := func(i int) (sum float64) { // covariance of estimate i with the mean
+		for _, j := range kept {
+			sum += v[i][j] * w[j]
+		}
+		return sum
+	}
+	var variance float64
+	for _, i := range kept {
+		variance += w[i] * lean(i)
+	}
+	next, least := -1, variance*(1-dependent)
+	for i, y := range estimates {
+		if y.Known() && !slices.Contains(kept, i) {
+			if l := lean(i); l < least {
+				next, least = i, l
+			}
+		}
+	}
+	return next
+}
+
+// agree finds how well the estimates that have a weight agree.
+func (k *Combination) agree(estimates []Linear, v [][]float64, kept []int) {
+	var f factor
+	if !f.build(v, kept) {
+		return
+	}
+	var mean float64
+	for _, i := range kept {
+		mean += k.Weights[i] * estimates[i].Value
+	}
+	off := make([]float64, len(kept))
+	for j, i := range kept {
+		off[j] = estimates[i].Value - mean
+	}
+	for j, x := range f.solve(off) {
+		k.ChiSquared += off[j] * x
+	}
+	k.Degrees = len(kept) - 1
+}
+
+// factor is the Cholesky factor of a covariance matrix.
 type factor [][]float64
 
-// add appends estimate i to those kept and reports whether it has a part of its own.
-func (f *factor) add(in *Inputs, estimates []Linear, kept []int, i int, variance float64) bool {
-	row := make([]float64, len(kept)+1)
-	own := variance
-	for j, other := range kept {
-		v := in.Covariance(estimates[i], estimates[other])
-		for m := range j {
-			v -= row[m] * (*f)[j][m]
+// build factors the rows and columns of v that are kept, and reports whether each has a part of its own.
+func (f *factor) build(v [][]float64, kept []int) bool {
+	for n, i := range kept {
+		if !f.add(func(j int) float64 { return v[i][kept[j]] }, n) {
+			return false
 		}
-		row[j] = v / (*f)[j][j]
+	}
+	return true
+}
+
+// add appends row n of a matrix and reports whether it is independent of those before.
+func (f *factor) add(at func(j int) float64, n int) bool {
+	row := make([]float64, n+1)
+	own := at(n)
+	for j := range n {
+		x := at(j)
+		for m := range j {
+			x -= row[m] * (*f)[j][m]
+		}
+		row[j] = x / (*f)[j][j]
 		own -= row[j] * row[j]
 	}
-	if !(own > dependent*variance) {
+	if !(own > dependent*at(n)) {
 		return false
 	}
-	row[len(kept)] = math.Sqrt(own)
+	row[n] = math.Sqrt(own)
 	*f = append(*f, row)
 	return true
 }
@@ -114,30 +191,21 @@ func (f factor) solve(b []float64) []float64 {
 	return x
 }
 
-// weights returns the weights of least variance and how well the estimates agree.
-func (f factor) weights(estimates []Linear, kept []int) (w []float64, chi float64) {
-	ones := make([]float64, len(kept))
-	for j := range ones {
-		ones[j] = 1
+// weights returns the weights of least variance, whatever their sign.
+func (f factor) weights() []float64 {
+	w := make([]float64, len(f))
+	for j := range w {
+		w[j] = 1
 	}
-	w = f.solve(ones)
+	w = f.solve(w)
 	var sum float64
-	for _, v := range w {
-		sum += v
+	for _, x := range w {
+		sum += x
 	}
-	var mean float64
-	for j, i := range kept {
+	for j := range w {
 		w[j] /= sum
-		mean += w[j] * estimates[i].Value
 	}
-	off := make([]float64, len(kept))
-	for j, i := range kept {
-		off[j] = estimates[i].Value - mean
-	}
-	for j, v := range f.solve(off) {
-		chi += off[j] * v
-	}
-	return w, chi
+	return w
 }
 
 // Weighted returns the weighted sum of estimates.
@@ -189,19 +257,21 @@ func (in *Inputs) Disagreements(c *Calculus, estimates []Linear) []Disagreement 
 // ChiSquared returns the sum of squares of deviations from zero in units of their joint uncertainty, and how many
 // independent ones there are. Each has a standard uncertainty of its own beside what the inputs give it.
 func (in *Inputs) ChiSquared(deviations []Linear, own []float64) (chi float64, degrees int) {
+	v := in.covariances(deviations)
 	var f factor
 	var kept []int
+	var off []float64
 	for i, d := range deviations {
-		if f.add(in, deviations, kept, i, in.Covariance(d, d)+own[i]*own[i]) {
-			kept = append(kept, i)
+		v[i][i] += own[i] * own[i]
+		kept = append(kept, i)
+		if f.add(func(j int) float64 { return v[i][kept[j]] }, len(kept)-1) {
+			off = append(off, d.Value)
+		} else {
+			kept = kept[:len(kept)-1]
 		}
 	}
-	off := make([]float64, len(kept))
-	for j, i := range kept {
-		off[j] = deviations[i].Value
-	}
-	for j, v := range f.solve(off) {
-		chi += off[j] * v
+	for j, x := range f.solve(off) {
+		chi += off[j] * x
 	}
 	return chi, len(kept)
 }

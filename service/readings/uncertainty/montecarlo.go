@@ -136,11 +136,7 @@ func (in *Inputs) sampler(seed uint64) (func(x []float64), error) {
 	return func(x []float64) {
 		// Inputs that are correlated are jointly normal (JCGM 101, 6.4.8); the others keep their own distribution.
 		for i := range list {
-			if linked[i] {
-				z.SetVec(i, rng.NormFloat64())
-			} else {
-				z.SetVec(i, 0)
-			}
+			z.SetVec(i, rng.NormFloat64())
 		}
 		w.MulVec(g, z)
 		for i := range list {
@@ -240,6 +236,9 @@ func (t *tally) closeBatch() {
 // stable reports whether twice the numerical uncertainty of every figure is below the tolerance that the digits of its
 // standard uncertainty leave (JCGM 101, 7.9.4).
 func (t *tally) stable(digits int) bool {
+	if t.batches == 0 {
+		return false
+	}
 	for i := range t.values {
 		if t.values[i] == nil {
 			continue
