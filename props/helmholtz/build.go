@@ -177,8 +177,9 @@ func (b *builder) powerIndex(d float64) int {
 	return maxPower + 1 + i
 }
 
-// planPowers returns a table that holds tau to every exponent. Positive multiples of one half are made by products from
-// tau and its root, the others by one exponential each, or as the product of two others.
+// planPowers returns a table that holds tau to every exponent. Multiples of one quarter are made by products from tau, its
+// roots and their reciprocals, each to half a unit in the last place; the others cost one exponential, or are the product
+// of two that are there. Equations whose terms cancel, such as that of R22, need every digit.
 func planPowers(exponents []float64) powerTable {
 	exponents = slices.Clone(exponents)
 	slices.SortFunc(exponents, func(x, y float64) int {
@@ -197,27 +198,38 @@ func planPowers(exponents []float64) powerTable {
 		if i, ok := at[t]; ok {
 			return i
 		}
-		halves := t*2 == math.Trunc(t*2) && 0 < t && t <= 64
+		quarters := t*4 == math.Trunc(t*4) && math.Abs(t) <= 64
+		switch {
+		case t == 0.5 || t == 0.25:
+			a := need(2 * t)
+			i := put(t)
+			p.roots = append(p.roots, powerStep{i, a, 0})
+			return i
+		case t == -0.25 || t == -0.5 || t == -1:
+			a := need(-t)
+			i := put(t)
+			p.inverses = append(p.inverses, powerStep{i, a, 0})
+			return i
+		}
 		for _, u := range p.t { // the product of two that are there
 			j, ok := at[t-u]
-			if ok && (halves && 0 < u && u < t || !halves && u+(t-u) == t) {
+			if ok && (quarters && u*t > 0 && (t-u)*t > 0 || !quarters && u+(t-u) == t) {
 				a := at[u]
 				i := put(t)
 				p.products = append(p.products, powerStep{i, a, j})
 				return i
 			}
 		}
-		switch {
-		case t == 0.5:
-			p.root = put(t)
-			return p.root
-		case !halves:
+		if !quarters {
 			i := put(t)
 			p.exps = append(p.exps, i)
 			return i
 		}
 		part := math.Trunc(t / 2)
-		if whole := math.Trunc(t); whole != t {
+		switch whole := math.Trunc(t); {
+		case math.Abs(t) < 1: // three quarters
+			part = math.Copysign(0.5, t)
+		case whole != t:
 			part = whole
 		}
 		a, b := need(part), need(t-part)

@@ -1,6 +1,9 @@
 package helmholtz
 
-import "math"
+import (
+	"math"
+	"math/big"
+)
 
 // The exponentials and logarithms are more than half the cost of an equation, so they are made here by tables: twice as
 // fast as the standard library's, whose care for the last bit and for special values the terms of an equation do not
@@ -15,9 +18,19 @@ const (
 	round = 0x1.8p52 // adding it leaves the nearest whole number in the low bits
 )
 
-var exp2Table = func() (t [tableSize]float64) {
+// exp2Table holds 2^(i/128) as a rounded number and what rounding took away.
+var exp2Table = func() (t [tableSize]struct{ high, low float64 }) {
+	const digits = 120 // bits
+	two := new(big.Float).SetPrec(digits).SetInt64(2)
+	root := two
+	for range tableBits {
+		root = new(big.Float).SetPrec(digits).Sqrt(root)
+	}
+	x := new(big.Float).SetPrec(digits).SetInt64(1)
 	for i := range t {
-		t[i] = math.Exp2(float64(i) / tableSize)
+		t[i].high, _ = x.Float64()
+		t[i].low, _ = new(big.Float).SetPrec(digits).Sub(x, big.NewFloat(t[i].high)).Float64()
+		x.Mul(x, root)
 	}
 	return t
 }()
@@ -36,9 +49,9 @@ func exp(x float64) float64 {
 	r := x - n*(ln2Hi/tableSize) - n*(ln2Lo/tableSize)
 	q := r * r
 	p := r + q*(0.5+r*(1.0/6)) + q*q*(1.0/24+r*(1.0/120))
-	t := exp2Table[k&(tableSize-1)]
+	t := &exp2Table[k&(tableSize-1)]
 	scale := math.Float64frombits(k>>tableBits<<52 + 0x3ff<<52)
-	return scale * (t + t*p)
+	return scale * (t.high + (t.low + t.high*p))
 }
 
 // logEntry holds 1/c and ln(c) of a number c near the middle of a table interval of [1, 2), 1/c rounded to few bits so

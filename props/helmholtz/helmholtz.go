@@ -76,7 +76,6 @@ type Equation struct {
 	TRed   float64 // K
 	RhoRed float64 // mol/m3
 
-	perRho   float64 // 1/RhoRed
 	ideal    ideal
 	powers   powerTable
 	plain    []plainTerm
@@ -89,16 +88,17 @@ type Equation struct {
 	fraction []float64 // fractional exponents of delta
 }
 
-// powerTable plans a table of powers of tau: the numbers one and tau, the root of tau, the powers that cost an exponential,
-// then products of two earlier entries.
+// powerTable plans a table of powers of tau: the numbers one and tau, the roots and reciprocals that are needed, the powers
+// that cost an exponential, then products of two earlier entries.
 type powerTable struct {
 	t        []float64 // the exponents
-	root     int       // entry of the square root; 0 when there is none
-	exps     []int     // entries
+	roots    []powerStep
+	inverses []powerStep
+	exps     []int // entries
 	products []powerStep
 }
 
-// powerStep makes the entry at as the product of the entries a and b.
+// powerStep makes the entry at from the entry a and, for a product, b.
 type powerStep struct{ at, a, b int }
 
 // plainTerm is one term n tau^t times the factor in delta of its shape, with the factors of its derivatives.
@@ -164,7 +164,7 @@ func New(c Coefficients) (*Equation, error) {
 	if err := c.Ideal.check(); err != nil {
 		return nil, err
 	}
-	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, perRho: 1 / c.ReducingDensity, ideal: ideal{Ideal: c.Ideal}}
+	e := &Equation{R: c.GasConstant, TRed: c.ReducingTemperature, RhoRed: c.ReducingDensity, ideal: ideal{Ideal: c.Ideal}}
 	b := builder{eq: e, shapeAt: map[shapeKey]int{}}
 	r := c.Residual
 	for _, form := range []struct {

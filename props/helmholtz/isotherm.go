@@ -30,8 +30,11 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 	pw := &s.powers
 	pw[0], pw[1] = 1, tau
 	const mask = maxPowers - 1 // an index within the table needs no bounds check
-	if i := e.powers.root; i > 0 {
-		pw[i&mask] = math.Sqrt(tau)
+	for _, k := range e.powers.roots {
+		pw[k.at&mask] = math.Sqrt(pw[k.a&mask])
+	}
+	for _, k := range e.powers.inverses {
+		pw[k.at&mask] = 1 / pw[k.a&mask]
 	}
 	for _, i := range e.powers.exps {
 		pw[i&mask] = exp(e.powers.t[i] * lnTau)
@@ -107,7 +110,7 @@ func (s *Isotherm) Density(rho float64) (d, dd float64) {
 		r := s.Residual(rho)
 		return r.D, r.DD
 	}
-	delta := rho * e.perRho
+	delta := rho / e.RhoRed
 	var pow [deltaPowers]float64
 	e.fillPowers(&pow, delta)
 	for i := range e.groups {
@@ -160,7 +163,7 @@ func (e *Equation) fillPowers(pow *[deltaPowers]float64, delta float64) {
 // Residual returns the residual part and its derivatives at density rho in mol/m3, which must be positive.
 func (s *Isotherm) Residual(rho float64) Alpha {
 	e := s.eq
-	delta := rho * e.perRho
+	delta := rho / e.RhoRed
 	var pow [deltaPowers]float64
 	e.fillPowers(&pow, delta)
 	var out Alpha
