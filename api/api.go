@@ -31,6 +31,7 @@ type Options struct {
 
 	MaxBody       int64 // bytes of a JSON request; default DefaultMaxBody
 	MaxPoints     int   // items of a batch; default DefaultMaxPoints
+	MaxMixtures   int   // mixtures by fractions kept for later requests; default DefaultMaxMixtures
 	MaxConcurrent int   // calculations under way before others are turned away; default DefaultMaxConcurrent
 }
 
@@ -38,6 +39,7 @@ type Options struct {
 const (
 	DefaultMaxBody       = 2_000_000
 	DefaultMaxPoints     = 10_000
+	DefaultMaxMixtures   = 256
 	DefaultMaxConcurrent = 256
 )
 
@@ -51,6 +53,7 @@ type API struct {
 	version   string
 	metrics   *metrics
 	lists     lists
+	mixtures  *mixtures
 	ready     atomic.Bool
 
 	maxBody   int64
@@ -69,7 +72,7 @@ func New(o Options) (*API, error) {
 		return nil, errors.New("api: no logger")
 	case o.Version == "":
 		return nil, errors.New("api: no version")
-	case o.MaxBody < 0 || o.MaxPoints < 0 || o.MaxConcurrent < 0:
+	case o.MaxBody < 0 || o.MaxPoints < 0 || o.MaxMixtures < 0 || o.MaxConcurrent < 0:
 		return nil, errors.New("api: a limit is negative")
 	}
 	a := &API{
@@ -85,6 +88,7 @@ func New(o Options) (*API, error) {
 	if a.metrics, err = newMetrics(o.Registry, o.Version, a.slots); err != nil {
 		return nil, err
 	}
+	a.mixtures = newMixtures(cmp.Or(o.MaxMixtures, DefaultMaxMixtures), a.metrics)
 	a.makeLists()
 	a.routes()
 	return a, nil
@@ -140,8 +144,19 @@ func (a *API) Warm(ctx context.Context) error {
 	return nil
 }
 
-// WarmBlends prepares the blends, which takes a second or two. The API is ready without it.
-func (a *API) WarmBlends(ctx context.Context) error { return a.catalogue.WarmBlends(ctx) }
+// WarmBlends prepares the blends and the lists of the catalogue, which takes a second or two. The API is ready without it:
+// requests make what they need first.
+func (a *API) WarmBlends(ctx context.Context) error {
+	if err := a.catalogue.WarmBlends(ctx); err != nil {
+		return err
+	}
+	for _, make := range a.lists {
+		if _, err := make(); err != nil {
+			return err
+		}
+	}
+	return nil
+}
 
 // Drain turns the API not ready, so that no new traffic is sent to it. It goes on answering.
 func (a *API) Drain() { a.setReady(false) }

@@ -10,22 +10,24 @@ import (
 
 // calculation holds what all requests that compute share.
 type calculation struct {
-	Refrigerant string            `json:"refrigerant" validate:"required,max=64"`
+	Refrigerant substance         `json:"refrigerant" validate:"required"`
 	Datum       string            `json:"datum"` // default IIR, or triple_point where the refrigerant has no IIR
 	Units       map[string]string `json:"units"` // default {"system": "SI"}
 	Site        *site             `json:"site"`  // needed by gauge pressures
 	Extrapolate bool              `json:"extrapolate"`
+	Estimates   bool              `json:"accept_estimates"` // of mixture parameters that nobody has tested
 }
 
 // basis names what a result rests on.
 type basis struct {
 	Refrigerant  string `json:"refrigerant"`
 	Model        string `json:"model"`
-	Source       string `json:"source"` // of the equation
+	Source       string `json:"source"` // of the equation, or of a blend's composition
 	Datum        string `json:"datum"`
 	Extrapolated bool   `json:"extrapolated"` // some result lies outside the validity of the equation
 	Version      string `json:"version"`      // of the service
 
+	*blendBasis
 	Transport []transportBasis `json:"transport,omitempty"` // of the transport properties shown
 }
 
@@ -38,6 +40,7 @@ type caution struct {
 // job is a calculation whose refrigerant, datum and units are known.
 type job struct {
 	r           props.Refrigerant
+	components  []string // of a blend, in the order of its compositions
 	extrapolate bool
 	units       *units
 	basis       basis
@@ -50,7 +53,7 @@ func (a *API) begin(c *calculation) (*job, error) {
 	if err != nil {
 		return nil, err
 	}
-	r, err := a.refrigerant(c.Refrigerant, c.Datum)
+	r, err := a.refrigerant(c, u)
 	if err != nil {
 		return nil, err
 	}
@@ -61,6 +64,15 @@ func (a *API) begin(c *calculation) (*job, error) {
 	j := &job{r: r, extrapolate: c.Extrapolate, units: u, cautions: []caution{}, basis: basis{
 		Refrigerant: r.Designation(), Model: id.Model, Source: id.Source, Datum: r.Datum().String(), Version: a.version,
 	}}
+	if id.Kind == props.KindBlend {
+		j.components, j.basis.blendBasis = componentsOf(r), blendBasisOf(&id)
+	}
+	if c.Refrigerant.mixture != nil {
+		j.basis.Source = "composition of the request"
+	}
+	for _, reservation := range r.Reservations() {
+		j.caution(reservation.Code, reservation.Detail)
+	}
 	if c.Datum == "" && r.Datum() != props.IIR {
 		j.caution("datum_not_defined", r.Designation()+" has no saturated liquid at 0 °C, so that IIR, the datum by default, is not defined; "+
 			"enthalpy, entropy and internal energy count from "+r.Datum().String())
@@ -68,22 +80,31 @@ func (a *API) begin(c *calculation) (*job, error) {
 	return j, nil
 }
 
-// refrigerant finds the refrigerant of a request, counting from the datum with that name.
-func (a *API) refrigerant(name, datum string) (props.Refrigerant, error) {
-	d, ok := props.ParseDatum(datum)
-	if !ok && datum != "" {
+// refrigerant finds the refrigerant of a request, counting from the datum that it names.
+func (a *API) refrigerant(c *calculation, u *units) (props.Refrigerant, error) {
+	d, ok := props.ParseDatum(c.Datum)
+	if !ok && c.Datum != "" {
 		return nil, invalid([]MemberError{{
-			Pointer: "#/datum", Code: "not_allowed", Detail: quote(datum) + " is no datum; allowed are " + strings.Join(datumNames(allDatums), ", "),
+			Pointer: "#/datum", Code: "not_allowed", Detail: quote(c.Datum) + " is no datum; allowed are " + strings.Join(datumNames(allDatums), ", "),
 		}})
 	}
-	r, err := a.catalogue.Refrigerant(name, d)
+	find := func(d props.Datum) (props.Refrigerant, error) {
+		if m := c.Refrigerant.mixture; m != nil {
+			return a.mixture(m, d, c.Estimates, u)
+		}
+		return a.catalogue.Refrigerant(c.Refrigerant.designation, d)
+	}
+	r, err := find(d)
+	if e, ok := errors.AsType[*props.DatumError](err); ok && d == props.DefaultDatum && len(e.Allowed) > 0 {
+		r, err = find(e.Allowed[0]) // the request leaves the choice to us
+	}
 	if err == nil {
 		return r, nil
 	}
-	if e, ok := errors.AsType[*props.DatumError](err); ok && d == props.DefaultDatum {
-		return a.catalogue.Refrigerant(name, e.Allowed[0]) // the request leaves the choice to us
+	if p, ok := errors.AsType[*Problem](err); ok {
+		return nil, p
 	}
-	return nil, voice{}.problem(err)
+	return nil, voice{units: u}.problem(err)
 }
 
 var allDatums = []props.Datum{props.IIR, props.ASHRAE, props.NBP, props.TriplePoint}

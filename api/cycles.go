@@ -2,6 +2,7 @@ package api
 
 import (
 	"slices"
+	"strings"
 
 	"github.com/gin-gonic/gin"
 
@@ -49,16 +50,16 @@ func (a *API) upperCircuit(req *cycleRequest) ([]*job, error) {
 		return nil, nil
 	}
 	upper := make([]*job, len(req.Cascade.Upper))
-	for i, name := range req.Cascade.Upper {
+	for i := range upper {
 		of := req.calculation
-		of.Refrigerant = name
+		of.Refrigerant = req.Cascade.Upper[i]
 		var err error
 		if upper[i], err = a.begin(&of); err != nil {
 			p := *problemFor(err)
 			p.Errors = slices.Clone(p.Errors)
 			for k := range p.Errors {
-				if p.Errors[k].Pointer == "#/refrigerant" {
-					p.Errors[k].Pointer = place{"#/cascade/upper", i}.String()
+				if rest, ok := strings.CutPrefix(p.Errors[k].Pointer, "#/refrigerant"); ok {
+					p.Errors[k].Pointer = place{"#/cascade/upper", i}.String() + rest
 				}
 			}
 			return nil, &p

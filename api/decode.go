@@ -19,7 +19,7 @@ const (
 // decodeJSON reads the one JSON value in body into the struct that v points to. It is stricter than [json.Unmarshal]: names
 // match in case, none may be unknown or come twice, and numbers must be finite. Null stands for an absent member. It
 // returns a [*Problem] with a pointer for every defect, which names no Go type. A field may be a struct, pointer, slice,
-// map of strings, string, bool or float64; others panic.
+// map of strings, string, bool, float64 or a [selfDecoder]; others panic.
 //
 // What is JSON and what is not is for the standard library to say. The walk along the fields of the struct finds the rest,
 // and the place where a text stops being JSON.
@@ -63,6 +63,12 @@ type token struct {
 	text []byte // as it stands in the body, quotes included
 }
 
+// selfDecoder is a value that comes in forms of its own.
+type selfDecoder interface {
+	// decode reads the value that starts with t, as [decoder.assign] does.
+	decode(d *decoder, t token) error
+}
+
 // value reads the next value into target. It notes a defect of the value and goes on; an error ends the reading.
 func (d *decoder) value(target reflect.Value) error {
 	t, err := d.next()
@@ -74,6 +80,9 @@ func (d *decoder) value(target reflect.Value) error {
 
 // assign stores the value that starts with t.
 func (d *decoder) assign(target reflect.Value, t token) error {
+	if own, ok := target.Addr().Interface().(selfDecoder); ok {
+		return own.decode(d, t)
+	}
 	switch target.Kind() {
 	case reflect.Pointer:
 		target.Set(reflect.New(target.Type().Elem()))

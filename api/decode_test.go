@@ -60,7 +60,15 @@ func TestDecodeRefuses(t *testing.T) {
 		{"true for a number", `{"points": [{"temperature": true}]}`, 422, "#/points/0/temperature", "wrong_type", "not true"},
 		{"object for a number", `{"points": [{"temperature": {"value": 5}}]}`, 422, "#/points/0/temperature", "wrong_type", "not an object"},
 		{"array for a number", `{"points": [{"temperature": [5]}]}`, 422, "#/points/0/temperature", "wrong_type", "not an array"},
-		{"number for text", `{"refrigerant": 290}`, 422, "#/refrigerant", "wrong_type", "must be a string, not the number 290"},
+		{"number for text", `{"refrigerant": 290}`, 422, "#/refrigerant", "wrong_type", "must be a designation such as \"R454B\", or an object with mass_fractions or mole_fractions, not the number 290"},
+		{"fraction as text", `{"refrigerant": {"mass_fractions": {"R32": "0.5"}}}`, 422, "#/refrigerant/mass_fractions/R32", "wrong_type", "must be a number"},
+		{"null fraction", `{"refrigerant": {"mass_fractions": {"R32": null}}}`, 422, "#/refrigerant/mass_fractions/R32", "wrong_type", "not null"},
+		{"fractions as a list", `{"refrigerant": {"mole_fractions": [0.5, 0.5]}}`, 422, "#/refrigerant/mole_fractions", "wrong_type", "designations and fractions"},
+		{"component twice", `{"refrigerant": {"mole_fractions": {"R32": 0.5, "R\u00332": 0.5}}}`, 422, "#/refrigerant/mole_fractions/R32", "duplicate_member", "comes twice"},
+		{"both fractions", `{"refrigerant": {"mole_fractions": {}, "mass_fractions": {}}}`, 422, "#/refrigerant", "surplus", "one of them"},
+		{"no fractions", `{"refrigerant": {}}`, 422, "#/refrigerant", "missing", "mass_fractions or mole_fractions"},
+		{"other fractions", `{"refrigerant": {"massFractions": {}}}`, 422, "#/refrigerant/massFractions", "unknown_member", "did you mean mass_fractions?"},
+		{"long name", `{"refrigerant": "` + strings.Repeat("R", 65) + `"}`, 422, "#/refrigerant", "too_long", "64 characters"},
 		{"number for a unit", `{"units": {"pressure": 1}}`, 422, "#/units/pressure", "wrong_type", "must be a string"},
 		{"array of units", `{"units": ["SI"]}`, 422, "#/units", "wrong_type", "must be an object"},
 		{"object of points", `{"points": {"0": {}}}`, 422, "#/points", "wrong_type", "must be an array"},
@@ -121,7 +129,7 @@ func TestDecodeAccepts(t *testing.T) {
 		t.Fatal(err)
 	}
 	p := req.Points[0]
-	if req.Refrigerant != "R290" || req.Units["system"] != "IP" || req.Datum != "" || *req.Site.Altitude != 0 || len(req.Points) != 2 ||
+	if req.Refrigerant.designation != "R290" || req.Units["system"] != "IP" || req.Datum != "" || *req.Site.Altitude != 0 || len(req.Points) != 2 ||
 		p.ID != "ü" || *p.Temperature != 0 || p.Pressure != nil || *p.Quality != 0 || req.Properties == nil {
 		t.Errorf("%+v", req)
 	}
@@ -176,6 +184,8 @@ func FuzzDecode(f *testing.F) {
 		`{"refrigerant":"R290","units":{"system":"SI"},"points":[{"id":"a","temperature":5,"pressure":4e2,"phase":"vapour"}],"properties":["density"]}`,
 		`{"refrigerant":"R134a","range":{"of":"temperature","from":-40,"to":60,"step":5}}`,
 		`{"refrigerant":"R32","evaporation":{"temperature":2,"superheat":5},"suction_line":{"pressure_drop":1,"temperature_rise":2},"size":{"heating":8}}`,
+		`{"refrigerant":{"mass_fractions":{"R32":0.6,"R1234yf":0.4}},"accept_estimates":true,"temperatures":[0]}`,
+		`{"refrigerant":{"mole_fractions":{"R32":6e-1,"R1234ze(E)":0.4},"mass_fractions":null},"points":[]}`,
 		`{"temperature":NaN}`, `{"a":{"b":[1,{"c":null}]}}`, `{"points":[{"temperature":1},{"temperature":"1","temperature":1e999}]}`,
 		"{\"id\":\"\xff\"}", `{"id":"\ud800"}`, `[[[[[[[[[[[[[[[[[[1]]]]]]]]]]]]]]]]]]`, `{"":1}`, `{"points":[]}x`,
 	} {
@@ -227,6 +237,7 @@ func FuzzDecodeQuery(f *testing.F) {
 	for _, query := range []string{
 		"refrigerant=R290&temperature=5&pressure=400&system=IP", "units.pressure=bar(g)&site.altitude=450&extrapolate=true&properties=density,enthalpy",
 		"temperature=NaN&temperature=1", "units=SI&units.system=SI", "a.b.c=1&a.b=2&a=3", "temperature={}&site=[[[", ".=1&=2", "quality=1e999&id=%ff",
+		"refrigerant.mass_fractions.R32=0.6&refrigerant.mass_fractions.R1234yf=0.4", "refrigerant.mole_fractions=1&refrigerant.x.y.z=2&refrigerant=R32",
 	} {
 		f.Add(query)
 	}

@@ -18,7 +18,11 @@ type metrics struct {
 	iterations   *prometheus.HistogramVec
 	batches      *prometheus.HistogramVec
 	refused      prometheus.Counter
-	ready        prometheus.Gauge
+
+	mixtureHits, mixtureMisses prometheus.Counter
+	mixturesKept               prometheus.Gauge
+
+	ready prometheus.Gauge
 }
 
 func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*metrics, error) {
@@ -45,10 +49,17 @@ func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*
 		refused: prometheus.NewCounter(prometheus.CounterOpts{
 			Name: "dewmark_http_requests_refused_total", Help: "HTTP requests turned away because too many calculations were under way.",
 		}),
+		mixturesKept: prometheus.NewGauge(prometheus.GaugeOpts{
+			Name: "dewmark_mixtures_kept", Help: "Mixtures by fractions whose phase envelopes are kept.",
+		}),
 		ready: prometheus.NewGauge(prometheus.GaugeOpts{
 			Name: "dewmark_ready", Help: "1 while the service asks for traffic.",
 		}),
 	}
+	mixtureRequests := prometheus.NewCounterVec(prometheus.CounterOpts{
+		Name: "dewmark_mixture_requests_total", Help: "Requests for a mixture by its fractions; hit where it was kept already or is being made.",
+	}, []string{"result"})
+	m.mixtureHits, m.mixtureMisses = mixtureRequests.WithLabelValues("hit"), mixtureRequests.WithLabelValues("miss")
 	build := prometheus.NewGauge(prometheus.GaugeOpts{
 		Name: "dewmark_build_info", Help: "Always 1; its labels name the build.",
 		ConstLabels: prometheus.Labels{"version": version, "goversion": runtime.Version(), "goarch": runtime.GOARCH},
@@ -59,7 +70,7 @@ func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*
 	}, func() float64 { return float64(len(slots)) })
 	var errs []error
 	for _, c := range []prometheus.Collector{
-		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, build, underWay,
+		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, mixtureRequests, m.mixturesKept, build, underWay,
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
 	} {
 		errs = append(errs, r.Register(c))

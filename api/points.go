@@ -118,7 +118,7 @@ func (w *worker) show(s props.State) {
 	if w.shown.derived {
 		w.solved.derived = w.r.Derived(s)
 	}
-	w.view.fill(&w.solved, w.units, w.shown)
+	w.view.fill(&w.solved, w.components, w.units, w.shown)
 	w.view.extrapolated = w.extrapolate && w.r.Extrapolated(s)
 }
 

@@ -150,6 +150,10 @@ func (v voice) problem(err error) *Problem {
 		detail := v.pairNames() + " do not fix a state; give two independent properties"
 		return unprocessable("dependent-pair", "Properties depend on each other", detail, v.eachGiven("dependent", detail)...)
 	}
+	if e, ok := errors.AsType[*props.ConditionError](err); ok {
+		detail := fmt.Sprintf("%s leave the %s of %s uncertain by %.1g %%; give another pair", v.pairText(), e.Property, e.Refrigerant, 100*e.Uncertainty)
+		return unprocessable("uncertain-state", "Properties leave the state uncertain", detail, v.eachGiven("uncertain", detail)...)
+	}
 	if e, ok := errors.AsType[*props.ConvergenceError](err); ok {
 		detail := fmt.Sprintf("the solver found no state of %s with %s; its last attempt was %s, %s", e.Refrigerant, v.pairText(),
 			v.units.text(kindTemperature, e.T), v.units.text(kindDensity, e.Rho))
@@ -318,7 +322,7 @@ func (v voice) eachGiven(code, detail string) []MemberError {
 
 func (v voice) views(states []props.State) []stateView {
 	views := make([]stateView, len(states))
-	j := &job{r: v.r, units: v.units}
+	j := &job{r: v.r, components: componentsOf(v.r), units: v.units}
 	for i, s := range states {
 		views[i] = j.view(s, everything, &account{})
 	}

@@ -55,7 +55,13 @@ func put(object map[string]any, path []string, value any) bool {
 
 // typeAt returns the type of the member that path leads to, or nil.
 func typeAt(t reflect.Type, path []string) reflect.Type {
-	for _, name := range path {
+	for i, name := range path {
+		if t == typeOfSubstance {
+			if len(path)-i == 2 {
+				return reflect.TypeFor[float64]() // the fraction of a component
+			}
+			return nil
+		}
 		if t.Kind() == reflect.Pointer {
 			t = t.Elem()
 		}

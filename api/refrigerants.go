@@ -2,8 +2,12 @@ package api
 
 import (
 	"cmp"
+	"errors"
+	"math"
 	"net/http"
+	"runtime"
 	"sync"
+	"sync/atomic"
 
 	"github.com/gin-gonic/gin"
 
@@ -26,7 +30,9 @@ type refrigerantSummary struct {
 	CriticalTemperature float64    `json:"critical_temperature"`
 	CriticalPressure    float64    `json:"critical_pressure"`
 	CriticalDensity     float64    `json:"critical_density"`
-	NormalBoilingPoint  *float64   `json:"normal_boiling_point"`
+	NormalBoilingPoint  *float64   `json:"normal_boiling_point"` // bubble point of a blend
+	NormalDewPoint      *float64   `json:"normal_dew_point"`
+	Glide               *float64   `json:"glide"` // at the pressure of both
 	TemperatureMin      float64    `json:"temperature_min"`
 	TemperatureMax      float64    `json:"temperature_max"`
 	PressureMax         float64    `json:"pressure_max"`
@@ -40,27 +46,28 @@ type fraction struct {
 // refrigerantDetail is the answer to GET /v1/refrigerants/{designation}.
 type refrigerantDetail struct {
 	refrigerantSummary
-	MolarMass              float64           `json:"molar_mass"`
-	Formula                string            `json:"formula"`
-	CAS                    string            `json:"cas"`
-	Aliases                []string          `json:"aliases"`
-	TripleTemperature      *float64          `json:"triple_temperature"`
-	DensityMax             float64           `json:"density_max"`
-	AcentricFactor         *float64          `json:"acentric_factor"`
-	Datums                 []string          `json:"datums"` // its default first
-	ODP                    *float64          `json:"odp"`
-	GWP                    gwp               `json:"gwp"`
-	LowerFlammabilityLimit *float64          `json:"lower_flammability_limit"` // kind density, like the three after it
-	ToxicityLimit          *float64          `json:"toxicity_limit"`
-	PracticalLimit         *float64          `json:"practical_limit"`
-	ConcentrationLimit     *float64          `json:"concentration_limit"`
-	TypicalUse             string            `json:"typical_use"`
-	Notes                  string            `json:"notes"`
-	Provenance             provenance        `json:"provenance"`
-	Model                  model             `json:"model"`
-	Transport              []transportModel  `json:"transport"`
-	Units                  map[string]string `json:"units"`
-	Cautions               []caution         `json:"cautions"`
+	MolarMass              float64    `json:"molar_mass"`
+	Formula                string     `json:"formula"`
+	CAS                    string     `json:"cas"`
+	Aliases                []string   `json:"aliases"`
+	TripleTemperature      *float64   `json:"triple_temperature"`
+	DensityMax             float64    `json:"density_max"`
+	AcentricFactor         *float64   `json:"acentric_factor"`
+	Datums                 []string   `json:"datums"` // its default first
+	ODP                    *float64   `json:"odp"`
+	GWP                    gwp        `json:"gwp"`
+	LowerFlammabilityLimit *float64   `json:"lower_flammability_limit"` // kind density, like the three after it
+	ToxicityLimit          *float64   `json:"toxicity_limit"`
+	PracticalLimit         *float64   `json:"practical_limit"`
+	ConcentrationLimit     *float64   `json:"concentration_limit"`
+	TypicalUse             string     `json:"typical_use"`
+	Notes                  string     `json:"notes"`
+	Provenance             provenance `json:"provenance"`
+	Model                  model      `json:"model"`
+	*blendDetail
+	Transport []transportModel  `json:"transport"`
+	Units     map[string]string `json:"units"`
+	Cautions  []caution         `json:"cautions"`
 }
 
 type gwp struct {
@@ -134,15 +141,23 @@ func (a *API) listRefrigerants(c *gin.Context) (any, error) {
 
 // list describes all refrigerants in the given units.
 func (a *API) list(u *units) (*refrigerantsResponse, error) {
-	resp := &refrigerantsResponse{Units: u.names(kindTemperature, kindPressure, kindDensity)}
-	for _, name := range a.catalogue.Designations() {
-		r, err := a.catalogue.Refrigerant(name, props.DefaultDatum)
-		if err != nil {
-			return nil, err
-		}
-		resp.Refrigerants = append(resp.Refrigerants, summarise(r, u))
+	names := a.catalogue.Designations()
+	resp := &refrigerantsResponse{Refrigerants: make([]refrigerantSummary, len(names)), Units: u.names(kindTemperature, kindTemperatureDifference, kindPressure, kindDensity)}
+	failures := make([]error, len(names))
+	var next atomic.Int64
+	var wg sync.WaitGroup
+	for range min(runtime.GOMAXPROCS(0), len(names)) { // curves and envelopes that are not there yet take their time
+		wg.Go(func() {
+			for i := next.Add(1) - 1; i < int64(len(names)); i = next.Add(1) - 1 {
+				r, err := a.catalogue.Refrigerant(names[i], props.DefaultDatum)
+				if failures[i] = err; err == nil {
+					resp.Refrigerants[i] = summarise(r, u)
+				}
+			}
+		})
 	}
-	return resp, nil
+	wg.Wait()
+	return resp, errors.Join(failures...)
 }
 
 // describeRefrigerant answers GET /v1/refrigerants/{designation}.
@@ -152,7 +167,7 @@ func (a *API) describeRefrigerant(c *gin.Context) (any, error) {
 	if err != nil {
 		return nil, err
 	}
-	r, err := a.refrigerant(c.Param("designation"), "")
+	r, err := a.refrigerant(&calculation{Refrigerant: substance{designation: c.Param("designation")}}, u)
 	if err != nil {
 		p := problemFor(err)
 		if p.Status == http.StatusUnprocessableEntity { // here it is the resource that does not exist
@@ -178,8 +193,14 @@ func (a *API) describeRefrigerant(c *gin.Context) (any, error) {
 		PracticalLimit: concentration(class.PracticalLimit), ConcentrationLimit: concentration(class.ConcentrationLimit),
 		TypicalUse: class.TypicalUse, Notes: class.Notes, Provenance: provenance(class.Provenance),
 		Model: model{id.Model, id.Source, id.Notes, id.Verification}, Transport: transportModels(r, u),
-		Units:    u.names(kindTemperature, kindPressure, kindDensity, kindMolarMass),
+		Units:    u.names(kindTemperature, kindTemperatureDifference, kindPressure, kindDensity, kindMolarMass),
 		Cautions: []caution{safetyCaution},
+	}
+	if b, ok := r.(*props.Blend); ok {
+		d.blendDetail = blendDetailOf(b, &id, u)
+		for _, reservation := range r.Reservations() {
+			d.Cautions = append(d.Cautions, caution(reservation))
+		}
 	}
 	if t := id.TripleTemperature; t != nil {
 		d.TripleTemperature = new(tidy(u.out(kindTemperature, *t)))
@@ -196,16 +217,21 @@ var safetyCaution = caution{
 
 func summarise(r props.Refrigerant, u *units) refrigerantSummary {
 	id, limits, critical := r.Identity(), r.Limits(), r.Critical()
+	bubble, dew := r.NormalBoilingPoint(), math.NaN()
+	if T, err := r.DewTemperature(props.StandardAtmosphere); err == nil {
+		dew = T
+	}
 	s := refrigerantSummary{
 		Designation: id.Designation, Name: id.Name, Kind: string(id.Kind),
 		SafetyClass: id.Classification.SafetyClass, GWP100: id.Classification.GWP100.AR6,
 		CriticalTemperature: u.out(kindTemperature, critical.T), CriticalPressure: u.out(kindPressure, critical.P),
-		CriticalDensity: u.out(kindDensity, critical.Rho), NormalBoilingPoint: known(u.out(kindTemperature, r.NormalBoilingPoint())),
+		CriticalDensity: u.out(kindDensity, critical.Rho), NormalBoilingPoint: u.known(kindTemperature, bubble),
+		NormalDewPoint: u.known(kindTemperature, dew), Glide: u.known(kindTemperatureDifference, dew-bubble),
 		TemperatureMin: tidy(u.out(kindTemperature, limits.TemperatureMin)), TemperatureMax: tidy(u.out(kindTemperature, limits.TemperatureMax)),
 		PressureMax: tidy(u.out(kindPressure, limits.PressureMax)),
 	}
 	for _, c := range id.Composition {
-		s.Composition = append(s.Composition, fraction(c))
+		s.Composition = append(s.Composition, fraction{c.Designation, c.MassFraction})
 	}
 	return s
 }

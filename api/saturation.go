@@ -36,8 +36,9 @@ type saturationResponse struct {
 	rows   []saturationRow
 }
 
-// saturationRow is one row of the table in the caller's units. A failed row has the given number and the problem alone,
-// NaN in the rest.
+// saturationRow is one row of the table in the caller's units. Bubble and dew are both at the temperature or both at the
+// pressure that was given, where those of a blend differ in the other. The numbers of the row belong to one pressure, that
+// of the dew point, as evaporating and condensing temperatures do. A failed row has the given number and the problem alone.
 type saturationRow struct {
 	numbers     [len(rowColumns)]float64
 	bubble, dew stateView
@@ -133,7 +134,7 @@ func (r *saturationResponse) encode(b []byte) ([]byte, error) {
 func (r *saturationRow) encode(b []byte) ([]byte, error) {
 	o := begin(b)
 	for i, x := range r.numbers {
-		if !math.IsNaN(x) {
+		if r.problem == nil || !math.IsNaN(x) {
 			o.number(rowColumns[i].name, x)
 		}
 	}
@@ -233,10 +234,16 @@ func (j *job) row(row *saturationRow, p saturationPoint, shown *selection, into 
 	row.bubble, row.dew = j.view(bubble, shown, into), j.view(dew, shown, into)
 	row.bubble.echo(g.member, g.number)
 	row.dew.echo(g.member, g.number)
+	boiling := bubble // at the pressure of the row
+	if boiling.P != dew.P {
+		if boiling, err = j.r.BubblePointAtPressure(dew.P); err != nil {
+			boiling = props.State{T: math.NaN(), H: math.NaN()} // the bubble line does not reach down to that pressure
+		}
+	}
 	row.numbers = [...]float64{
 		rowTemperature: u.out(kindTemperature, dew.T), rowPressure: u.out(kindPressure, dew.P),
-		rowBubbleTemperature: u.out(kindTemperature, bubble.T), rowDewTemperature: u.out(kindTemperature, dew.T),
-		rowGlide: u.out(kindTemperatureDifference, dew.T-bubble.T), rowLatentHeat: u.out(kindEnthalpy, dew.H-bubble.H),
+		rowBubbleTemperature: u.out(kindTemperature, boiling.T), rowDewTemperature: u.out(kindTemperature, dew.T),
+		rowGlide: u.out(kindTemperatureDifference, dew.T-boiling.T), rowLatentHeat: u.out(kindEnthalpy, dew.H-boiling.H),
 	}
 	row.numbers[column] = p.number
 }
@@ -256,7 +263,7 @@ func (s *selection) columns() []int {
 	}
 	var fields []int
 	for _, f := range s.fields {
-		if f < firstSaturationField && stateFields[f].name != "quality" {
+		if name := stateFields[f].name; f < firstSaturationField && name != "quality" && name != "temperature" {
 			fields = append(fields, f)
 		}
 	}

@@ -13,10 +13,9 @@ import (
 // solved is a state with what its surroundings say about it.
 type solved struct {
 	props.State
-	bubble, dew           float64 // K, saturation temperatures at its pressure; NaN where there are none
-	superheat, subcooling float64 // K; NaN in the wrong phase
-	transport             props.Transport
-	derived               props.Derived
+	props.Surroundings
+	transport props.Transport
+	derived   props.Derived
 }
 
 // noTransport stands where transport properties are not wanted.
@@ -25,34 +24,14 @@ var noTransport = props.Transport{
 	SurfaceTension: transport.Value{Value: math.NaN()}, Prandtl: math.NaN(),
 }
 
+// noSurroundings stands where the saturation around a state is not wanted.
+var noSurroundings = props.Surroundings{Bubble: math.NaN(), Dew: math.NaN(), Superheat: math.NaN(), Subcooling: math.NaN()}
+
 // surround makes s the state, with the saturation at its pressure when it is wanted.
 func (around *solved) surround(r props.Refrigerant, s props.State, wanted *selection) {
-	nan := math.NaN()
-	*around = solved{State: s, bubble: nan, dew: nan, superheat: nan, subcooling: nan, transport: noTransport}
-	if !wanted.saturation {
-		return
-	}
-	bubble, err := r.BubbleTemperature(s.P)
-	if err != nil {
-		return
-	}
-	dew, err := r.DewTemperature(s.P)
-	if err != nil {
-		return
-	}
-	around.bubble, around.dew = bubble, dew
-	switch { // the ends of the dome exactly, in spite of rounding
-	case s.Quality == 0:
-		around.bubble, around.subcooling = s.T, 0
-	case s.Quality == 1:
-		around.dew, around.superheat = s.T, 0
-	case s.Phase == props.Liquid:
-		around.subcooling = bubble - s.T
-	case s.Phase == props.Vapour:
-		around.superheat = s.T - dew
-	}
-	if _, pure := r.(*props.Pure); pure && !math.IsNaN(s.Quality) {
-		around.bubble, around.dew = s.T, s.T
+	*around = solved{State: s, Surroundings: noSurroundings, transport: noTransport}
+	if wanted.saturation {
+		around.Surroundings = props.Surround(r, s)
 	}
 }
 
@@ -86,15 +65,19 @@ var stateFields = [...]stateField{
 	{"thermal_conductivity", kindThermalConductivity, func(s *solved) float64 { return s.transport.ThermalConductivity.Value }},
 	{"prandtl_number", kindNone, func(s *solved) float64 { return s.transport.Prandtl }},
 	{"surface_tension", kindSurfaceTension, func(s *solved) float64 { return s.transport.SurfaceTension.Value }},
-	{"dew_temperature", kindTemperature, func(s *solved) float64 { return s.dew }},
-	{"bubble_temperature", kindTemperature, func(s *solved) float64 { return s.bubble }},
-	{"superheat", kindTemperatureDifference, func(s *solved) float64 { return s.superheat }},
-	{"subcooling", kindTemperatureDifference, func(s *solved) float64 { return s.subcooling }},
+	{"dew_temperature", kindTemperature, func(s *solved) float64 { return s.Dew }},
+	{"bubble_temperature", kindTemperature, func(s *solved) float64 { return s.Bubble }},
+	{"superheat", kindTemperatureDifference, func(s *solved) float64 { return s.Superheat }},
+	{"subcooling", kindTemperatureDifference, func(s *solved) float64 { return s.Subcooling }},
 	// Only for those who ask:
 	{"density_by_enthalpy", kindDensityByEnthalpy, func(s *solved) float64 { return s.derived.DensityByEnthalpy }},
 	{"density_by_pressure", kindDensityByPressure, func(s *solved) float64 { return s.derived.DensityByPressure }},
 	{"fundamental_derivative", kindNone, func(s *solved) float64 { return s.derived.Fundamental }},
 }
+
+// The members that are objects: the mass fractions of both phases of a blend inside the dome and at its edges. They stand
+// in no other state.
+const liquidComposition, vapourComposition = "liquid_composition", "vapour_composition"
 
 // The fields that need more than the state itself: transport properties, then what the saturation around the state
 // decides, then derivatives, which are shown only when a request names them.
@@ -105,12 +88,14 @@ type selection struct {
 	saturation bool  // some field needs the saturation around the state
 	transport  bool  // some field is a transport property
 	derived    bool  // some field is a derivative
+	liquid     bool  // the composition of the liquid of a blend, where there is one
+	vapour     bool  // likewise of the vapour
 	fields     []int // of stateFields, rising
 }
 
 // everything selects all members but the derivatives.
 var everything = func() *selection {
-	s := &selection{saturation: true, transport: true}
+	s := &selection{saturation: true, transport: true, liquid: true, vapour: true}
 	for i := 1; i < firstDerivedField; i++ {
 		s.fields = append(s.fields, i)
 	}
@@ -124,7 +109,16 @@ func selectFields(names []string) (*selection, error) {
 	}
 	var faults []MemberError
 	var wanted [len(stateFields)]bool
+	s := &selection{}
 	for i, name := range names {
+		switch name {
+		case liquidComposition:
+			s.liquid = true
+			continue
+		case vapourComposition:
+			s.vapour = true
+			continue
+		}
 		f := fieldNamed(name)
 		if f <= 0 {
 			faults = append(faults, MemberError{
@@ -135,7 +129,6 @@ func selectFields(names []string) (*selection, error) {
 		}
 		wanted[f] = true
 	}
-	s := &selection{}
 	for i, yes := range wanted {
 		if yes {
 			s.fields = append(s.fields, i)
@@ -164,7 +157,7 @@ func selectable() []string {
 	for _, f := range stateFields[1:] {
 		names = append(names, f.name)
 	}
-	return names
+	return append(names, liquidComposition, vapourComposition)
 }
 
 // kinds returns the kinds of quantity that the selection shows.
@@ -182,11 +175,21 @@ type stateView struct {
 	phase        string
 	numbers      [len(stateFields)]float64 // those shown; null where not a number
 	extrapolated bool                      // outside the validity of the equation; written only when it is so
+
+	components     []string // of a blend
+	liquid, vapour []float64
 }
 
-// fill makes v the view of s.
-func (v *stateView) fill(s *solved, u *units, shown *selection) {
+// fill makes v the view of s, a state of the refrigerant with those components.
+func (v *stateView) fill(s *solved, components []string, u *units, shown *selection) {
 	v.shown, v.phase = shown, s.Phase.String()
+	v.components, v.liquid, v.vapour = components, nil, nil
+	if shown.liquid {
+		v.liquid = s.LiquidComposition
+	}
+	if shown.vapour {
+		v.vapour = s.VapourComposition
+	}
 	for _, i := range shown.fields {
 		f := &stateFields[i]
 		v.numbers[i] = u.out(f.kind, f.value(s))
@@ -206,10 +209,25 @@ func (v *stateView) write(o *object) {
 	for _, i := range v.shown.fields {
 		o.number(stateFields[i].name, v.numbers[i])
 	}
+	v.composition(o, liquidComposition, v.liquid)
+	v.composition(o, vapourComposition, v.vapour)
 	if v.extrapolated {
 		o.name("extrapolated")
 		o.b = append(o.b, "true"...)
 	}
+}
+
+// composition adds the mass fractions of a phase, if it has any.
+func (v *stateView) composition(o *object, name string, fractions []float64) {
+	if fractions == nil {
+		return
+	}
+	o.name(name)
+	inner := begin(o.b)
+	for i, w := range fractions {
+		inner.number(v.components[i], w)
+	}
+	o.b = inner.end()
 }
 
 // member adds v to o as a member of that name.

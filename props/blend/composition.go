@@ -26,8 +26,10 @@ type Composition struct {
 	Shares []Share
 }
 
+// MaxComponents is how many components a mixture may have.
+const MaxComponents = 10
+
 const (
-	maxComponents = 10
 	minFraction   = 1e-7 // below it the incipient phases of the component leave the range of numbers
 	sumTolerance  = 2e-3 // three shares of 33.3 % must pass
 )
@@ -35,8 +37,8 @@ const (
 // moleFractions returns the mole fractions of c. find returns the molar mass of a refrigerant in kg/mol and reports
 // whether it is known.
 func (c *Composition) moleFractions(find func(string) (float64, bool)) ([]float64, error) {
-	if n := len(c.Shares); n < 2 || n > maxComponents {
-		return nil, &CompositionError{Index: -1, Value: float64(n), Reason: fmt.Sprintf("has %d components, a mixture has 2 to %d", n, maxComponents)}
+	if n := len(c.Shares); n < 2 || n > MaxComponents {
+		return nil, &CompositionError{Index: -1, Value: float64(n), Reason: fmt.Sprintf("has %d components, a mixture has 2 to %d", n, MaxComponents)}
 	}
 	if c.Basis > ByMole {
 		return nil, &CompositionError{Index: -1, Value: float64(c.Basis), Reason: "the basis of the fractions is neither mass nor mole"}

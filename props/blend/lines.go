@@ -11,7 +11,7 @@ type line struct {
 	pieces   []linePiece // by rising temperature
 	n        int         // components
 	lo, hi   edgePoint
-	worst    [fieldsOfLine + maxComponents]float64 // largest deviation seen between the nodes, by field
+	worst    [fieldsOfLine + MaxComponents]float64 // largest deviation seen between the nodes, by field
 	evaluate int                                   // equilibria solved to make it
 }
 
@@ -88,7 +88,7 @@ func (l *line) add(a, b float64, sample func(T float64) ([]float64, bool)) bool 
 
 	// Between the nodes, where the remainder is largest, and at the ends.
 	out := make([]float64, width)
-	var worst [fieldsOfLine + maxComponents]float64
+	var worst [fieldsOfLine + MaxComponents]float64
 	good := true
 	for _, x := range []float64{-1, -0.95, -0.52, 0.06, 0.52, 0.95, 1} {
 		l.evaluate++
