@@ -71,7 +71,7 @@ func (c *circuit) noState(at place, field string, cause error) Refusal {
 // againstSecondLaw says what is wrong with a component that would destroy entropy.
 func (c *circuit) againstSecondLaw(a *account, generation float64) Refusal {
 	r := Refusal{Code: SecondLaw, Component: partNames[a.side][a.part]}
-	entropy := Number{EntropyFlow, generation}
+	entropy := Number{EntropyFlow, -generation}
 	switch a.part {
 	case evaporator:
 		r.Field = "source_temperature"

@@ -154,10 +154,20 @@ func TestPerUnitFlow(t *testing.T) {
 }
 
 func BenchmarkSingleStage(b *testing.B) {
-	for _, name := range []string{"R134a", "R290", "R1234yf"} {
-		b.Run(name, func(b *testing.B) {
+	for _, k := range []struct {
+		name      string
+		reference cycle.Reference
+	}{{"R134a", cycle.Dew}, {"R290", cycle.Dew}, {"R1234yf", cycle.Dew}, {"R454B", cycle.Dew}, {"R454B", cycle.Mean}, {"R448A", cycle.Dew}} {
+		b.Run(k.name+"/"+k.reference.String(), func(b *testing.B) {
+			c, err := catalogue()
+			if err != nil {
+				b.Fatal(err)
+			}
 			r := heatPump(b)
-			r.Refrigerant = refrigerant(b, name, props.IIR)
+			if r.Refrigerant, err = c.Refrigerant(k.name, props.IIR); err != nil {
+				b.Fatal(err)
+			}
+			r.Evaporation.Reference, r.Condensation.Reference = k.reference, k.reference
 			b.ReportAllocs()
 			for b.Loop() {
 				if _, err := cycle.Solve(r); err != nil {
