@@ -23,7 +23,6 @@ type Catalogue struct {
 	blends  map[string]string // designation by folded name
 	fluids  []*fluid          // in natural order of designation
 	byName  map[string]*fluid
-	warmed  atomic.Int64
 }
 
 // NewCatalogue reads the embedded coefficient files. The saturation curve of a refrigerant is made when it is first
@@ -154,12 +153,22 @@ func (c *Catalogue) Warm(ctx context.Context) error {
 					return
 				}
 				c.fluids[i].saturation()
-				c.warmed.Add(1)
 			}
 		})
 	}
 	wg.Wait()
 	return context.Cause(ctx)
+}
+
+// Curves returns how many saturation curves of pure refrigerants have been made and the memory they take in bytes.
+func (c *Catalogue) Curves() (made, bytes int) {
+	for _, f := range c.fluids {
+		if curve := f.made.Load(); curve != nil {
+			made++
+			bytes += curve.Size()
+		}
+	}
+	return made, bytes
 }
 
 // WarmBlends makes the phase envelopes of all listed blends, one after the other: some 30 ms each, otherwise spent by the

@@ -89,3 +89,21 @@ func TestWarm(t *testing.T) {
 		t.Errorf("again: %v", err)
 	}
 }
+
+// TestCurves: the curves are made once each, and all of them fit into 4 MB.
+func TestCurves(t *testing.T) {
+	c, err := props.NewCatalogue()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if made, bytes := c.Curves(); made != 0 || bytes != 0 {
+		t.Errorf("a new catalogue has %d curves of %d bytes", made, bytes)
+	}
+	if err := c.Warm(t.Context()); err != nil {
+		t.Fatal(err)
+	}
+	made, bytes := c.Curves()
+	if want := len(c.PureDesignations()); made != want || !(0 < bytes && bytes < 4<<20) {
+		t.Errorf("%d curves of %d bytes after warm-up, want %d under 4 MB", made, bytes, want)
+	}
+}

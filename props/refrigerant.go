@@ -3,6 +3,7 @@ package props
 import (
 	"math"
 	"sync"
+	"sync/atomic"
 
 	"dewmark/props/data"
 	"dewmark/props/helmholtz"
@@ -33,7 +34,7 @@ type fluid struct {
 	perM, perRho float64 // reciprocals of the molar mass and of the reducing density, mol/kg and m3/kg
 	flow         *transport.Model
 	build        sync.Once
-	made         *saturation.Curve
+	made         atomic.Pointer[saturation.Curve]
 	starts       starts // above the critical pressure
 }
 
@@ -64,10 +65,10 @@ func (f *fluid) saturation() *saturation.Curve {
 		if err != nil {
 			panic("props: " + f.rec.ID + ": " + err.Error())
 		}
-		f.made = curve
+		f.made.Store(curve)
 		f.starts = makeStarts(f.plain())
 	})
-	return f.made
+	return f.made.Load()
 }
 
 // view returns the refrigerant with enthalpies and entropies as the equation itself counts them.
@@ -78,7 +79,7 @@ func (f *fluid) view() *Pure {
 
 // plain is view when the saturation curve has just been made.
 func (f *fluid) plain() *Pure {
-	c := f.made
+	c := f.made.Load()
 	v := f.rec.Validity
 	_, liquid, _ := c.At(c.TMin)
 	return &Pure{fluid: f, curve: c, limits: Limits{
