@@ -39,7 +39,7 @@ type Options struct {
 const (
 	DefaultMaxBody       = 2_000_000
 	DefaultMaxPoints     = 10_000
-	DefaultMaxMixtures   = 256
+	DefaultMaxMixtures   = 128 // of some 0.15 MB each
 	DefaultMaxConcurrent = 256
 )
 

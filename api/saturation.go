@@ -102,7 +102,7 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 		if err := j.announce(c, kinds); err != nil {
 			return nil, err
 		}
-		return &saturationTable{job: j, rows: rows, fields: shown.columns()}, nil
+		return &saturationTable{job: j, rows: rows, shown: shown, fields: shown.columns()}, nil
 	}
 	return &saturationResponse{job: j, kinds: kinds, failed: all.failed(), rows: rows}, nil
 }
@@ -253,17 +253,26 @@ func (j *job) row(row *saturationRow, p saturationPoint, shown *selection, into 
 type saturationTable struct {
 	*job
 	rows   []saturationRow
+	shown  *selection
 	fields []int // of stateFields, for each of the two states
 }
 
-// columns returns the fields that a table shows: those selected, or all that do not repeat the row.
-func (s *selection) columns() []int {
-	if s != everything {
-		return s.fields
+// incipient returns the phase that begins to form at one end of the dome: its name, its composition in a state, and whether
+// the table shows it. The other phase is the blend itself.
+func (t *saturationTable) incipient(side string) (name string, of func(*stateView) []float64, shown bool) {
+	if side == "bubble" {
+		return vapourComposition, func(v *stateView) []float64 { return v.vapour }, t.shown.vapour
 	}
+	return liquidComposition, func(v *stateView) []float64 { return v.liquid }, t.shown.liquid
+}
+
+// columns returns the fields that a table shows of both states: those selected, or all that do not repeat the row. The
+// temperature does so always, under the very name that its column would have.
+func (s *selection) columns() []int {
 	var fields []int
 	for _, f := range s.fields {
-		if name := stateFields[f].name; f < firstSaturationField && name != "quality" && name != "temperature" {
+		name := stateFields[f].name
+		if name != "temperature" && (s != everything || f < firstSaturationField && name != "quality") {
 			fields = append(fields, f)
 		}
 	}
@@ -304,6 +313,11 @@ func (t *saturationTable) titles() []string {
 		for _, f := range t.fields {
 			title(side+"_"+stateFields[f].name, stateFields[f].kind)
 		}
+		if name, _, shown := t.incipient(side); shown {
+			for _, component := range t.components {
+				title(side+"_"+name+" "+component, kindNone)
+			}
+		}
 	}
 	return append(titles, "problem")
 }
@@ -314,12 +328,25 @@ func (t *saturationTable) cells(r *saturationRow) []string {
 	for _, x := range r.numbers {
 		cells = append(cells, cell(x))
 	}
-	for _, v := range []*stateView{&r.bubble, &r.dew} {
+	for _, side := range [...]struct {
+		name string
+		view *stateView
+	}{{"bubble", &r.bubble}, {"dew", &r.dew}} {
 		for _, f := range t.fields {
 			if r.problem == nil {
-				cells = append(cells, cell(v.numbers[f]))
+				cells = append(cells, cell(side.view.numbers[f]))
 			} else {
 				cells = append(cells, "")
+			}
+		}
+		if _, of, shown := t.incipient(side.name); shown {
+			fractions := of(side.view)
+			for i := range t.components {
+				if fractions == nil {
+					cells = append(cells, "")
+				} else {
+					cells = append(cells, cell(fractions[i]))
+				}
 			}
 		}
 	}
