@@ -32,15 +32,19 @@ type Options struct {
 	MaxBody       int64 // bytes of a JSON request; default DefaultMaxBody
 	MaxPoints     int   // items of a batch; default DefaultMaxPoints
 	MaxMixtures   int   // mixtures by fractions kept for later requests; default DefaultMaxMixtures
-	MaxConcurrent int   // calculations under way before others are turned away; default DefaultMaxConcurrent
+	MaxConcurrent int   // short questions computed at once; default four a processor
+
+	MaxQueue   int           // requests that wait for a slot of each kind before others are turned away; default DefaultMaxQueue
+	MaxBatches int           // long batches in memory; default DefaultMaxBatches
+	MaxStreams int           // streams open; default DefaultMaxStreams
+	Deadline   time.Duration // for one calculation, not for a stream; default DefaultDeadline
 }
 
 // The default limits. A batch of DefaultMaxPoints with long ids and all digits has 1.5 MB.
 const (
-	DefaultMaxBody       = 2_000_000
-	DefaultMaxPoints     = 10_000
-	DefaultMaxMixtures   = 128 // of some 0.15 MB each
-	DefaultMaxConcurrent = 256
+	DefaultMaxBody     = 2_000_000
+	DefaultMaxPoints   = 10_000
+	DefaultMaxMixtures = 128 // of some 0.15 MB each
 )
 
 // API answers the requests of dewmark's clients. It is safe for concurrent use.
@@ -58,7 +62,7 @@ type API struct {
 
 	maxBody   int64
 	maxPoints int
-	slots     chan struct{} // one taken by each calculation under way
+	admission admission
 }
 
 // New returns an API that is not ready yet; see [API.Warm].
@@ -72,20 +76,21 @@ func New(o Options) (*API, error) {
 		return nil, errors.New("api: no logger")
 	case o.Version == "":
 		return nil, errors.New("api: no version")
-	case o.MaxBody < 0 || o.MaxPoints < 0 || o.MaxMixtures < 0 || o.MaxConcurrent < 0:
+	case o.MaxBody < 0 || o.MaxPoints < 0 || o.MaxMixtures < 0 || o.MaxConcurrent < 0,
+		o.MaxQueue < 0 || o.MaxBatches < 0 || o.MaxStreams < 0 || o.Deadline < 0:
 		return nil, errors.New("api: a limit is negative")
 	}
 	a := &API{
 		engine: gin.New(), catalogue: o.Catalogue, registry: o.Registry, log: o.Logger, version: o.Version, now: o.Now,
 		maxBody:   cmp.Or(o.MaxBody, DefaultMaxBody),
 		maxPoints: cmp.Or(o.MaxPoints, DefaultMaxPoints),
-		slots:     make(chan struct{}, cmp.Or(o.MaxConcurrent, DefaultMaxConcurrent)),
+		admission: newAdmission(&o),
 	}
 	if a.now == nil {
 		a.now = time.Now
 	}
 	var err error
-	if a.metrics, err = newMetrics(o.Registry, o.Version, a.slots); err != nil {
+	if a.metrics, err = newMetrics(o.Registry, o.Version, &a.admission); err != nil {
 		return nil, err
 	}
 	a.mixtures = newMixtures(cmp.Or(o.MaxMixtures, DefaultMaxMixtures), a.metrics)
@@ -114,7 +119,7 @@ func (a *API) routes() {
 	get("/openapi.json", a.cached(a.descriptionJSON, mediaJSON))
 	get("/v1/refrigerants", a.cached(a.listRefrigerants, mediaJSON))
 	get("/v1/refrigerants/:designation", a.cached(a.describeRefrigerant, mediaJSON))
-	get("/v1/states", a.limit, a.cached(a.singleState, mediaJSON))
+	get("/v1/states", a.limit, a.admitAtOnce, a.cached(a.singleState, mediaJSON))
 	e.POST("/v1/states", a.limit, a.postStates)
 	e.POST("/v1/saturation", a.limit, a.handle(a.saturation, mediaJSON, mediaCSV))
 	e.POST("/v1/cycles", a.limit, a.handle(a.cycles))

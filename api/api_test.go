@@ -342,8 +342,9 @@ func TestReadiness(t *testing.T) {
 
 // While all slots are taken, calculations are turned away and probes are not.
 func TestBusy(t *testing.T) {
-	a := newAPI(t, func(o *Options) { o.MaxConcurrent = 1 })
-	a.slots <- struct{}{}
+	a := newAPI(t, func(o *Options) { o.MaxConcurrent, o.MaxQueue = 1, 1 })
+	a.admission.short.slots <- struct{}{}
+	a.admission.short.waiting.Add(1) // the queue is full
 	w := do(t, a.Handler(), "POST", "/v1/cycles", `{}`)
 	if p := problemOf(t, w); w.Code != 503 || p.Type != "/problems/busy" || w.Header().Get("Retry-After") == "" {
 		t.Errorf("%d %+v", w.Code, p)
@@ -351,10 +352,11 @@ func TestBusy(t *testing.T) {
 	if got := do(t, a.Handler(), "GET", "/livez", "").Code; got != 200 {
 		t.Errorf("probe: %d", got)
 	}
-	if got := testutil.ToFloat64(a.metrics.refused); got != 1 {
+	if got := testutil.ToFloat64(a.metrics.refused.WithLabelValues(refusedQueueFull)); got != 1 {
 		t.Errorf("%v refused", got)
 	}
-	<-a.slots
+	<-a.admission.short.slots
+	a.admission.short.waiting.Add(-1)
 	if got := do(t, a.Handler(), "GET", "/v1/states?refrigerant=R32&temperature=0&quality=1", "").Code; got != 200 {
 		t.Errorf("free again: %d", got)
 	}

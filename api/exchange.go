@@ -12,6 +12,7 @@ import (
 	"strconv"
 	"strings"
 	"sync"
+	"time"
 
 	"github.com/gin-gonic/gin"
 )
@@ -185,10 +186,16 @@ func encode(b []byte, v any) ([]byte, error) {
 	return b, err
 }
 
+// slowest is the bytes a second that a client must take of a large answer.
+const slowest = 64 << 10
+
 func send(c *gin.Context, status int, media string, body []byte) {
 	c.Header("Content-Type", media)
 	c.Header("Content-Length", strconv.Itoa(len(body)))
 	c.Status(status)
+	ticketOf(c).pause() // who reads slowly holds no slot
+	allowed := patience/2 + time.Duration(len(body)/slowest)*time.Second
+	_ = http.NewResponseController(c.Writer).SetWriteDeadline(time.Now().Add(allowed)) // recorders of tests cannot
 	_, err := c.Writer.Write(body)
 	if err != nil {
 		_ = c.Error(err) // for the request log; the client is gone
@@ -205,6 +212,9 @@ func (a *API) fail(c *gin.Context, err error) {
 		c.Status(statusClientGone)
 		return
 	}
+	if errors.Is(err, errDeadline) {
+		a.metrics.refused.WithLabelValues(refusedDeadline).Inc()
+	}
 	a.problem(problemFor(err))(c)
 }
 
@@ -216,7 +226,7 @@ func (a *API) problem(p *Problem) gin.HandlerFunc {
 		h := c.Writer.Header()
 		h.Del("ETag")
 		h.Del("Cache-Control")
-		if p.Status == http.StatusServiceUnavailable {
+		if p.Status == http.StatusServiceUnavailable && h.Get("Retry-After") == "" {
 			h.Set("Retry-After", "1")
 		}
 		if err := a.write(c, p.Status, mediaProblem, &here); err != nil {
@@ -235,6 +245,9 @@ func (a *API) decode(c *gin.Context, v any) error {
 	if err != nil {
 		return err
 	}
+	if err := a.admit(c); err != nil {
+		return err
+	}
 	return a.read(body, v)
 }
 
@@ -246,14 +259,23 @@ func (a *API) read(text []byte, v any) error {
 	return validate(v)
 }
 
-// body reads the body of a request up to the limit.
+// body reads the body of a request up to the limit. A large one needs a place among the batches.
 func (a *API) body(c *gin.Context) ([]byte, error) {
 	tooLarge := refusal(http.StatusRequestEntityTooLarge, "body-too-large",
 		fmt.Sprintf("the body may have %d bytes at most; send larger batches as application/x-ndjson", a.maxBody))
 	if c.Request.ContentLength > a.maxBody {
 		return nil, tooLarge
 	}
-	body, err := io.ReadAll(http.MaxBytesReader(c.Writer, c.Request.Body, a.maxBody))
+	bounded := http.MaxBytesReader(c.Writer, c.Request.Body, a.maxBody)
+	body, err := io.ReadAll(io.LimitReader(bounded, longBody+1))
+	if err == nil && len(body) > longBody {
+		if err := ticketOf(c).lengthen(); err != nil {
+			return nil, err
+		}
+		var rest []byte
+		rest, err = io.ReadAll(bounded)
+		body = append(body, rest...)
+	}
 	if _, ok := errors.AsType[*http.MaxBytesError](err); ok {
 		return nil, tooLarge
 	}

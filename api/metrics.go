@@ -17,7 +17,9 @@ type metrics struct {
 	calculations *prometheus.CounterVec
 	iterations   *prometheus.HistogramVec
 	batches      *prometheus.HistogramVec
-	refused      prometheus.Counter
+	refused      *prometheus.CounterVec
+	queued       prometheus.Histogram
+	inFlight     prometheus.Gauge
 
 	mixtureHits, mixtureMisses prometheus.Counter
 	mixturesKept               prometheus.Gauge
@@ -25,7 +27,7 @@ type metrics struct {
 	ready prometheus.Gauge
 }
 
-func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*metrics, error) {
+func newMetrics(r prometheus.Registerer, version string, adm *admission) (*metrics, error) {
 	m := &metrics{
 		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "dewmark_http_requests_total", Help: "HTTP requests answered.",
@@ -46,8 +48,15 @@ func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*
 			Name: "dewmark_batch_items", Help: "Items of a batch request.",
 			Buckets: []float64{1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000, 10000, 100000, 1000000},
 		}, []string{"route"}),
-		refused: prometheus.NewCounter(prometheus.CounterOpts{
-			Name: "dewmark_http_requests_refused_total", Help: "HTTP requests turned away because too many calculations were under way.",
+		refused: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "dewmark_http_requests_refused_total", Help: "HTTP requests turned away whatever they asked for, by reason.",
+		}, []string{"reason"}),
+		queued: prometheus.NewHistogram(prometheus.HistogramOpts{
+			Name: "dewmark_queue_wait_seconds", Help: "Time that requests waited to be computed, of those that had to wait.",
+			Buckets: []float64{.0001, .00025, .0005, .001, .0025, .005, .01, .025, .05, .1, .25, .5, 1},
+		}),
+		inFlight: prometheus.NewGauge(prometheus.GaugeOpts{
+			Name: "dewmark_http_requests_in_flight", Help: "HTTP requests received and not answered yet.",
 		}),
 		mixturesKept: prometheus.NewGauge(prometheus.GaugeOpts{
 			Name: "dewmark_mixtures_kept", Help: "Mixtures by fractions whose phase envelopes are kept.",
@@ -65,12 +74,22 @@ func newMetrics(r prometheus.Registerer, version string, slots chan struct{}) (*
 		ConstLabels: prometheus.Labels{"version": version, "goversion": runtime.Version(), "goarch": runtime.GOARCH},
 	})
 	build.Set(1)
-	underWay := prometheus.NewGaugeFunc(prometheus.GaugeOpts{
-		Name: "dewmark_calculations_in_progress", Help: "Calculating requests under way.",
-	}, func() float64 { return float64(len(slots)) })
+	gauge := func(name, help string, value func() int) prometheus.Collector {
+		return prometheus.NewGaugeFunc(prometheus.GaugeOpts{Name: name, Help: help}, func() float64 { return float64(value()) })
+	}
+	for _, reason := range refusalReasons {
+		m.refused.WithLabelValues(reason) // from zero on, so that the first one is an increase
+	}
 	var errs []error
 	for _, c := range []prometheus.Collector{
-		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, mixtureRequests, m.mixturesKept, build, underWay,
+		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, build,
+		mixtureRequests, m.mixturesKept,
+		m.queued, m.inFlight,
+		gauge("dewmark_calculations_in_progress", "Slots for computing that are taken.", func() int { return len(adm.short.slots) + len(adm.long.slots) }),
+		gauge("dewmark_calculations_limit", "Slots for computing.", func() int { return cap(adm.short.slots) + cap(adm.long.slots) }),
+		gauge("dewmark_calculations_waiting", "Requests that wait for a slot.", func() int { return int(adm.short.waiting.Load() + adm.long.waiting.Load()) }),
+		gauge("dewmark_batches_in_progress", "Long batches under way.", func() int { return len(adm.batches) }),
+		gauge("dewmark_streams_in_progress", "Streams open.", func() int { return len(adm.streams) }),
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
 	} {
 		errs = append(errs, r.Register(c))

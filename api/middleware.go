@@ -66,16 +66,3 @@ func (a *API) recover(c *gin.Context) {
 	}()
 	c.Next()
 }
-
-// limit turns requests away while too many calculations are under way: waiting would only make all of them late.
-func (a *API) limit(c *gin.Context) {
-	select {
-	case a.slots <- struct{}{}:
-		defer func() { <-a.slots }()
-		c.Next()
-	default:
-		a.metrics.refused.Inc()
-		c.Abort()
-		a.problem(refusal(http.StatusServiceUnavailable, "busy", "too many calculations are under way; try again in a second"))(c)
-	}
-}

@@ -85,12 +85,16 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 	if err != nil {
 		return nil, err
 	}
-	a.metrics.batch(c, len(points))
+	if err := a.batch(c, len(points)); err != nil {
+		return nil, err
+	}
 	var all account
 	rows := make([]saturationRow, len(points))
 	for i, p := range points {
-		if i%chunkSize == 0 && c.Request.Context().Err() != nil {
-			return nil, c.Request.Context().Err() // nobody waits for the answer
+		if i%chunkSize == 0 {
+			if err := breathe(c.Request.Context()); err != nil {
+				return nil, err
+			}
 		}
 		j.row(&rows[i], p, shown, &all)
 		all.count(rows[i].problem, false)

@@ -62,7 +62,9 @@ func (a *API) states(c *gin.Context) (any, error) {
 	if err != nil {
 		return nil, err
 	}
-	a.metrics.batch(c, len(req.Points))
+	if err := a.batch(c, len(req.Points)); err != nil {
+		return nil, err
+	}
 	resp := &statesResponse{job: j, kinds: shown.kinds()}
 	if resp.chunks, err = j.chunks(c.Request.Context(), req.Points, shown); err != nil {
 		return nil, err

@@ -46,10 +46,20 @@ func (a *API) streamStates(c *gin.Context) error {
 	if negotiate(c.GetHeader("Accept"), []string{mediaLines}) == "" {
 		return refusal(http.StatusNotAcceptable, "not-acceptable", "Accept does not admit "+mediaLines+", in which a stream is answered")
 	}
+	t, end, err := a.stream(c)
+	if err != nil {
+		return err
+	}
+	defer end()
+	connection := http.NewResponseController(c.Writer)
+	_ = connection.SetReadDeadline(a.now().Add(patience)) // recorders of tests cannot
 	lines := lineReader{bufio.NewReaderSize(c.Request.Body, maxLine)}
 	first, err := lines.next()
 	if err != nil {
 		return malformed("#", "the first line holds no head")
+	}
+	if err := t.start(); err != nil {
+		return err
 	}
 	var head statesHead
 	if err := a.read(first, &head); err != nil {
@@ -67,19 +77,25 @@ func (a *API) streamStates(c *gin.Context) error {
 	if err := j.announce(c, shown.kinds()); err != nil {
 		return err
 	}
-	connection := http.NewResponseController(c.Writer)
-	_ = connection.EnableFullDuplex() // without it HTTP/1 would read all before the first answer; recorders of tests cannot
+	_ = connection.EnableFullDuplex() // without it HTTP/1 would read all before the first answer
 	c.Header("Content-Type", mediaLines)
 	c.Status(http.StatusOK)
 
 	w := newWorker(j, shown)
 	w.stream = true
 	defer func() { a.metrics.calculated("state", &w.account) }()
-	out := bufio.NewWriterSize(c.Writer, maxLine)
-	var buffer []byte
+	var out []byte
+	// flush hands over what is done. It holds no slot, since the client may be slow to take it.
+	flush := func() error {
+		t.pause()
+		_ = connection.SetWriteDeadline(a.now().Add(patience))
+		_, err := c.Writer.Write(out)
+		out = out[:0]
+		return err
+	}
 	for n := 0; ; n++ {
-		if !lines.waiting() { // about to wait for the client: hand over what is done
-			if out.Flush() != nil {
+		if !lines.waiting() { // about to wait for the client
+			if flush() != nil {
 				return nil // the client is gone
 			}
 			_ = connection.Flush()
@@ -88,17 +104,22 @@ func (a *API) streamStates(c *gin.Context) error {
 		line, err := lines.next()
 		if errors.Is(err, io.EOF) {
 			a.metrics.batch(c, n)
-			_ = out.Flush()
+			_ = flush()
 			return nil
 		}
 		if err != nil && !errors.Is(err, bufio.ErrBufferFull) {
-			_ = out.Flush()
+			_ = flush()
 			panic(http.ErrAbortHandler) // the request broke off; the answer must not look complete
 		}
-		buffer = w.line(buffer[:0], line, err, place{"#/points", n})
-		_ = connection.SetWriteDeadline(a.now().Add(patience))
-		if _, err := out.Write(append(buffer, '\n')); err != nil {
-			return nil // the client is gone
+		if n%chunkSize == chunkSize-1 {
+			_ = t.breathe() // if it fails, so does the next line
+		}
+		if t.resume() != nil {
+			panic(http.ErrAbortHandler) // the client is gone, or soon will be
+		}
+		out = append(w.line(out, line, err, place{"#/points", n}), '\n')
+		if len(out) >= maxLine && flush() != nil {
+			return nil
 		}
 	}
 }
@@ -143,10 +164,10 @@ func (l lineReader) next() ([]byte, error) {
 	}
 }
 
-// waiting reports whether a whole line has arrived already.
+// waiting reports whether next has a line to return without reading any more.
 func (l lineReader) waiting() bool {
 	arrived, _ := l.Peek(l.Buffered())
-	return bytes.IndexByte(arrived, '\n') >= 0
+	return bytes.IndexByte(bytes.TrimLeft(arrived, " \t\r\n"), '\n') >= 0
 }
 
 // announce sends what lines have no place for in a header.

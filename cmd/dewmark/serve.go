@@ -49,7 +49,7 @@ func serveCommand(ctx context.Context, args []string, stderr io.Writer) error {
 	flags.DurationVar(&s.drain, "drain", 20*time.Second, "`time` that requests under way have to end at shutdown")
 	flags.TextVar(&s.logLevel, "log-level", slog.LevelInfo, "lowest `level` logged: DEBUG has every request, INFO the refused ones, WARN, ERROR")
 	s.register(flags)
-	flags.IntVar(&s.maxConcurrent, "max-concurrent", api.DefaultMaxConcurrent, "`requests` calculated at once before others get a 503")
+	flags.IntVar(&s.maxConcurrent, "max-concurrent", 0, "short `questions` computed at once; 0 for four a processor")
 	if err := parse(flags, args, 0); err != nil {
 		return err
 	}
