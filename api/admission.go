@@ -192,9 +192,11 @@ func (t *ticket) start() error {
 	}
 	if t.pool.try() {
 		t.held = true
+		event(t.ctx, "computing")
 		return nil
 	}
 	a := t.a
+	event(t.ctx, "waiting")
 	if t.pool.waiting.Load() >= int64(a.admission.queue) {
 		return a.turnAway(refusedQueueFull, busy("too many calculations are under way"))
 	}
@@ -206,7 +208,9 @@ func (t *ticket) start() error {
 	if errors.Is(err, errQueueWait) {
 		return a.turnAway(refusedQueueWait, busy("no other calculation ended soon enough for this one to begin"))
 	}
-	t.held = err == nil
+	if t.held = err == nil; t.held {
+		event(t.ctx, "computing")
+	}
 	return err
 }
 

@@ -8,6 +8,7 @@ import (
 	"cmp"
 	"context"
 	"errors"
+	"fmt"
 	"log/slog"
 	"net/http"
 	"net/http/pprof"
@@ -17,6 +18,7 @@ import (
 	"github.com/gin-gonic/gin"
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/promhttp"
+	"go.opentelemetry.io/otel/trace"
 
 	"dewmark/props"
 )
@@ -38,6 +40,13 @@ type Options struct {
 	MaxBatches int           // long batches in memory; default DefaultMaxBatches
 	MaxStreams int           // streams open; default DefaultMaxStreams
 	Deadline   time.Duration // for one calculation, not for a stream; default DefaultDeadline
+
+	Tokens         *Tokens      // of the clients that may use /v1; default nil, which lets everybody
+	Origins        []string     // of scripts in browsers that may read answers, see [ParseOrigins]; default none
+	Rate           float64      // requests a second of one client; default 0, which is no limit
+	Burst          int          // requests that a client may send at once after a pause; default Rate
+	TrustedProxies []string     // addresses or networks whose X-Forwarded-For tells the client's address; default none
+	Tracer         trace.Tracer // makes a span of each request; default nil, for none
 }
 
 // The default limits. A batch of DefaultMaxPoints with long ids and all digits has 1.5 MB.
@@ -63,6 +72,12 @@ type API struct {
 	maxBody   int64
 	maxPoints int
 	admission admission
+
+	tokens       *Tokens
+	origins      []string
+	rates        *rates
+	tracer       trace.Tracer
+	cacheControl string // of answers that change with the version alone
 }
 
 // New returns an API that is not ready yet; see [API.Warm].
@@ -77,7 +92,7 @@ func New(o Options) (*API, error) {
 	case o.Version == "":
 		return nil, errors.New("api: no version")
 	case o.MaxBody < 0 || o.MaxPoints < 0 || o.MaxMixtures < 0 || o.MaxConcurrent < 0,
-		o.MaxQueue < 0 || o.MaxBatches < 0 || o.MaxStreams < 0 || o.Deadline < 0:
+		o.MaxQueue < 0 || o.MaxBatches < 0 || o.MaxStreams < 0 || o.Deadline < 0, !(o.Rate >= 0) || o.Burst < 0:
 		return nil, errors.New("api: a limit is negative")
 	}
 	a := &API{
@@ -86,11 +101,20 @@ func New(o Options) (*API, error) {
 		maxPoints: cmp.Or(o.MaxPoints, DefaultMaxPoints),
 		admission: newAdmission(&o),
 	}
+	a.tokens, a.origins, a.rates, a.tracer = o.Tokens, o.Origins, newRates(o.Rate, o.Burst), o.Tracer
+	a.cacheControl = "public, max-age=3600"
+	if a.tokens != nil {
+		a.cacheControl = "private, max-age=3600" // a cache on the way would hand it to those without a token
+	}
+	a.engine.RemoteIPHeaders = []string{"X-Forwarded-For"}
+	if err := a.engine.SetTrustedProxies(o.TrustedProxies); err != nil {
+		return nil, fmt.Errorf("api: trusted proxies: %w", err)
+	}
 	if a.now == nil {
 		a.now = time.Now
 	}
 	var err error
-	if a.metrics, err = newMetrics(o.Registry, o.Version, &a.admission); err != nil {
+	if a.metrics, err = newMetrics(o.Registry, o.Version, o.Catalogue.Designations(), &a.admission); err != nil {
 		return nil, err
 	}
 	a.mixtures = newMixtures(cmp.Or(o.MaxMixtures, DefaultMaxMixtures), a.metrics)
@@ -103,7 +127,7 @@ func (a *API) routes() {
 	e := a.engine
 	e.HandleMethodNotAllowed = true
 	e.RedirectTrailingSlash = false
-	e.Use(a.observe, a.recover)
+	e.Use(a.observe, a.recover, a.secure, a.cross, a.authenticate, a.throttle)
 	e.NoRoute(a.problem(refusal(http.StatusNotFound, "not-found", "there is no such resource; /openapi.yaml describes all")))
 	e.NoMethod(func(c *gin.Context) {
 		detail := c.Request.Method + " is not possible here; allowed: " + c.Writer.Header().Get("Allow")

@@ -60,6 +60,7 @@ func (a *API) begin(c *calculation) (*job, error) {
 	if c.Extrapolate {
 		r = props.Extrapolate(r)
 	}
+	a.metrics.used(r.Designation())
 	id := r.Identity()
 	j := &job{r: r, extrapolate: c.Extrapolate, units: u, cautions: []caution{}, basis: basis{
 		Refrigerant: r.Designation(), Model: id.Model, Source: id.Source, Datum: r.Datum().String(), Version: a.version,

@@ -53,9 +53,6 @@ func (a *API) handle(f handler, offers ...string) gin.HandlerFunc {
 	}
 }
 
-// cacheFor is how long clients may keep what only a new version of the service changes.
-const cacheFor = "public, max-age=3600"
-
 // cached is handle for answers that stay the same while the version does: with an entity tag, and 304 for who has it.
 func (a *API) cached(f handler, media string) gin.HandlerFunc {
 	return func(c *gin.Context) {
@@ -71,7 +68,7 @@ func (a *API) cached(f handler, media string) gin.HandlerFunc {
 		sum := sha256.Sum256(body)
 		tag := `"` + base64.RawURLEncoding.EncodeToString(sum[:12]) + `"`
 		c.Header("ETag", tag)
-		c.Header("Cache-Control", cacheFor)
+		c.Header("Cache-Control", a.cacheControl)
 		if matches(c.GetHeader("If-None-Match"), tag) {
 			c.Status(http.StatusNotModified)
 			c.Writer.WriteHeaderNow()
@@ -193,7 +190,10 @@ func send(c *gin.Context, status int, media string, body []byte) {
 	c.Header("Content-Type", media)
 	c.Header("Content-Length", strconv.Itoa(len(body)))
 	c.Status(status)
-	ticketOf(c).pause() // who reads slowly holds no slot
+	if t := ticketOf(c); t != nil {
+		t.pause() // who reads slowly holds no slot
+		event(t.ctx, "computed")
+	}
 	allowed := patience/2 + time.Duration(len(body)/slowest)*time.Second
 	_ = http.NewResponseController(c.Writer).SetWriteDeadline(time.Now().Add(allowed)) // recorders of tests cannot
 	_, err := c.Writer.Write(body)

@@ -8,6 +8,7 @@ import (
 	"github.com/gin-gonic/gin"
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/collectors"
+	"go.opentelemetry.io/otel/trace"
 )
 
 // metrics are what the service tells Prometheus about itself. Label values come from closed sets.
@@ -17,6 +18,8 @@ type metrics struct {
 	calculations *prometheus.CounterVec
 	iterations   *prometheus.HistogramVec
 	batches      *prometheus.HistogramVec
+	refrigerants *prometheus.CounterVec
+	listed       map[string]struct{} // designations that are labels
 	refused      *prometheus.CounterVec
 	queued       prometheus.Histogram
 	inFlight     prometheus.Gauge
@@ -27,7 +30,7 @@ type metrics struct {
 	ready prometheus.Gauge
 }
 
-func newMetrics(r prometheus.Registerer, version string, adm *admission) (*metrics, error) {
+func newMetrics(r prometheus.Registerer, version string, designations []string, adm *admission) (*metrics, error) {
 	m := &metrics{
 		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "dewmark_http_requests_total", Help: "HTTP requests answered.",
@@ -48,6 +51,10 @@ func newMetrics(r prometheus.Registerer, version string, adm *admission) (*metri
 			Name: "dewmark_batch_items", Help: "Items of a batch request.",
 			Buckets: []float64{1, 2, 5, 10, 20, 50, 100, 200, 500, 1000, 2000, 5000, 10000, 100000, 1000000},
 		}, []string{"route"}),
+		refrigerants: prometheus.NewCounterVec(prometheus.CounterOpts{
+			Name: "dewmark_refrigerant_requests_total", Help: "Requests that compute, by the refrigerant they are about.",
+		}, []string{"refrigerant"}),
+		listed: map[string]struct{}{},
 		refused: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "dewmark_http_requests_refused_total", Help: "HTTP requests turned away whatever they asked for, by reason.",
 		}, []string{"reason"}),
@@ -69,6 +76,9 @@ func newMetrics(r prometheus.Registerer, version string, adm *admission) (*metri
 		Name: "dewmark_mixture_requests_total", Help: "Requests for a mixture by its fractions; hit where it was kept already or is being made.",
 	}, []string{"result"})
 	m.mixtureHits, m.mixtureMisses = mixtureRequests.WithLabelValues("hit"), mixtureRequests.WithLabelValues("miss")
+	for _, designation := range designations {
+		m.listed[designation] = struct{}{}
+	}
 	build := prometheus.NewGauge(prometheus.GaugeOpts{
 		Name: "dewmark_build_info", Help: "Always 1; its labels name the build.",
 		ConstLabels: prometheus.Labels{"version": version, "goversion": runtime.Version(), "goarch": runtime.GOARCH},
@@ -84,7 +94,7 @@ func newMetrics(r prometheus.Registerer, version string, adm *admission) (*metri
 	for _, c := range []prometheus.Collector{
 		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, build,
 		mixtureRequests, m.mixturesKept,
-		m.queued, m.inFlight,
+		m.queued, m.inFlight, m.refrigerants,
 		gauge("dewmark_calculations_in_progress", "Slots for computing that are taken.", func() int { return len(adm.short.slots) + len(adm.long.slots) }),
 		gauge("dewmark_calculations_limit", "Slots for computing.", func() int { return cap(adm.short.slots) + cap(adm.long.slots) }),
 		gauge("dewmark_calculations_waiting", "Requests that wait for a slot.", func() int { return int(adm.short.waiting.Load() + adm.long.waiting.Load()) }),
@@ -97,9 +107,24 @@ func newMetrics(r prometheus.Registerer, version string, adm *admission) (*metri
 	return m, errors.Join(errs...)
 }
 
-func (m *metrics) request(route, method, code string, seconds float64) {
+// request enters an answered request. One of a trace that is recorded becomes an example of how long requests take.
+func (m *metrics) request(route, method, code string, seconds float64, of trace.SpanContext) {
 	m.requests.WithLabelValues(route, method, code).Inc()
-	m.latency.WithLabelValues(route, method, code).Observe(seconds)
+	histogram := m.latency.WithLabelValues(route, method, code)
+	if of.IsSampled() {
+		histogram.(prometheus.ExemplarObserver).ObserveWithExemplar(seconds, prometheus.Labels{"trace_id": of.TraceID().String()})
+		return
+	}
+	histogram.Observe(seconds)
+}
+
+// used enters that a request is about a refrigerant. Those that are not in the catalogue, of which there is no end, are
+// one.
+func (m *metrics) used(designation string) {
+	if _, ok := m.listed[designation]; !ok {
+		designation = "other"
+	}
+	m.refrigerants.WithLabelValues(designation).Inc()
 }
 
 func (m *metrics) batch(c *gin.Context, items int) {
