@@ -37,7 +37,7 @@ func callCommand(ctx context.Context, args []string, stdin io.Reader, stdout, st
 	if *accept != "" {
 		r.Header.Set("Accept", *accept)
 	}
-	a, err := newAPI(slog.New(slog.NewTextHandler(stderr, &slog.HandlerOptions{Level: slog.LevelError})), l)
+	a, err := newAPI(slog.New(slog.NewTextHandler(stderr, &slog.HandlerOptions{Level: slog.LevelError})), l.apply)
 	if err != nil {
 		return exitOther, err
 	}

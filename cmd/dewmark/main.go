@@ -28,6 +28,7 @@ Usage:
   dewmark [serve] [flags]           answer over HTTP until interrupted
   dewmark call [flags] METHOD PATH  answer one request, its body read from standard input: dewmark call POST /v1/cycles < request.json
   dewmark probe [flags]             ask a running service whether it is ready, for container health checks
+  dewmark token NAME                make a token for a client and print its line for the file of tokens: dewmark token quoting >>tokens
   dewmark version                   print the version
 
 "dewmark COMMAND --help" lists the flags of a command. Each is also an environment variable: --admin-listen is
@@ -56,6 +57,8 @@ func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.
 		code, err = callCommand(ctx, args, stdin, stdout, stderr)
 	case "probe":
 		code, err = exitRefused, probeCommand(ctx, args, stderr)
+	case "token":
+		code, err = exitOther, tokenCommand(args, stdout, stderr)
 	case "version":
 		_, err = fmt.Fprintln(stdout, release())
 	case "help":

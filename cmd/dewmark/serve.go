@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"crypto/tls"
 	"errors"
 	"flag"
 	"fmt"
@@ -11,6 +12,7 @@ import (
 	"net/http"
 	"os"
 	"runtime/debug"
+	"strings"
 	"time"
 
 	"github.com/gin-gonic/gin"
@@ -23,20 +25,54 @@ import (
 // settings are the flags of serve.
 type settings struct {
 	listen, adminListen string
-	drain               time.Duration
+	drainDelay, drain   time.Duration
 	logLevel            slog.Level
 	limits
+	load
+	access
 }
 
 // limits are the flags that serve and call share.
 type limits struct {
-	maxBody                  int64
-	maxPoints, maxConcurrent int
+	maxBody   int64
+	maxPoints int
 }
 
 func (l *limits) register(flags *flag.FlagSet) {
 	flags.Int64Var(&l.maxBody, "max-body", api.DefaultMaxBody, "largest JSON request in `bytes`")
 	flags.IntVar(&l.maxPoints, "max-points", api.DefaultMaxPoints, "largest batch, in `items`")
+}
+
+func (l *limits) apply(o *api.Options) { o.MaxBody, o.MaxPoints = l.maxBody, l.maxPoints }
+
+// load are the flags that bound what runs at once.
+type load struct {
+	maxConcurrent, maxQueue, maxBatches, maxStreams int
+	deadline                                        time.Duration
+	rate                                            float64
+	burst                                           int
+	trustedProxies                                  string
+}
+
+func (l *load) register(flags *flag.FlagSet) {
+	flags.IntVar(&l.maxConcurrent, "max-concurrent", 0, "short `questions` computed at once; 0 for four a processor")
+	flags.IntVar(&l.maxQueue, "max-queue", api.DefaultMaxQueue, "`requests` that wait to be computed before others get a 503")
+	flags.IntVar(&l.maxBatches, "max-batches", api.DefaultMaxBatches, "long `batches` under way before others get a 503")
+	flags.IntVar(&l.maxStreams, "max-streams", api.DefaultMaxStreams, "`streams` open before others get a 503")
+	flags.DurationVar(&l.deadline, "deadline", api.DefaultDeadline, "`time` for one calculation, after which it ends with a 503")
+	flags.Float64Var(&l.rate, "rate", 0, "`requests` a second of one client before it gets a 429; 0 for no limit")
+	flags.IntVar(&l.burst, "burst", 0, "`requests` that a client may send at once after a pause; 0 for those of a second")
+	flags.StringVar(&l.trustedProxies, "trusted-proxies", "", "`addresses` or networks with commas between, whose X-Forwarded-For tells the client's address")
+}
+
+func (l *load) apply(o *api.Options) {
+	o.MaxConcurrent, o.MaxQueue, o.MaxBatches, o.MaxStreams = l.maxConcurrent, l.maxQueue, l.maxBatches, l.maxStreams
+	o.Deadline, o.Rate, o.Burst = l.deadline, l.rate, l.burst
+	for proxy := range strings.SplitSeq(l.trustedProxies, ",") {
+		if proxy = strings.TrimSpace(proxy); proxy != "" {
+			o.TrustedProxies = append(o.TrustedProxies, proxy)
+		}
+	}
 }
 
 const defaultListen = "127.0.0.1:8080"
@@ -46,10 +82,12 @@ func serveCommand(ctx context.Context, args []string, stderr io.Writer) error {
 	flags := newFlags("serve", "", stderr)
 	flags.StringVar(&s.listen, "listen", defaultListen, "`address` that clients use")
 	flags.StringVar(&s.adminListen, "admin-listen", "127.0.0.1:9090", "`address` of /metrics and the profiler; empty for none")
+	s.access.register(flags)
+	s.limits.register(flags)
+	s.load.register(flags)
+	flags.DurationVar(&s.drainDelay, "drain-delay", 0, "`time` at shutdown to go on accepting while /readyz says no, for balancers to notice")
 	flags.DurationVar(&s.drain, "drain", 20*time.Second, "`time` that requests under way have to end at shutdown")
 	flags.TextVar(&s.logLevel, "log-level", slog.LevelInfo, "lowest `level` logged: DEBUG has every request, INFO the refused ones, WARN, ERROR")
-	s.register(flags)
-	flags.IntVar(&s.maxConcurrent, "max-concurrent", 0, "short `questions` computed at once; 0 for four a processor")
 	if err := parse(flags, args, 0); err != nil {
 		return err
 	}
@@ -57,62 +95,93 @@ func serveCommand(ctx context.Context, args []string, stderr io.Writer) error {
 }
 
 // serve answers until ctx ends.
-func (s *settings) serve(ctx context.Context, log *slog.Logger) error {
+func (s *settings) serve(ctx context.Context, log *slog.Logger) (err error) {
 	if os.Getenv("GOGC") == "" {
 		// A request leaves a few kilobytes of garbage on a heap of a few megabytes, so that at Go's default of 100 the
-		// collector would run every few hundred requests. At 400 it takes some 20 MB more and a fifth less time.
+		// collector would run every few hundred requests. At 400 it takes some 20 MB more and a fifth less time. A limit in
+		// GOMEMLIMIT holds all the same.
 		debug.SetGCPercent(400)
 	}
-	a, err := newAPI(log, s.limits)
+	ctx, stop := context.WithCancel(ctx)
+	defer stop()
+	guard, err := s.access.load(ctx, log)
 	if err != nil {
 		return err
 	}
-	var config net.ListenConfig
-	public, err := config.Listen(ctx, "tcp", s.listen)
+	tracer, endTracing, err := tracing(ctx, log)
 	if err != nil {
 		return err
 	}
-	servers := []*server{newServer(public, a.Handler(), 30*time.Second)}
-	if s.adminListen != "" {
-		admin, err := config.Listen(ctx, "tcp", s.adminListen)
-		if err != nil {
-			return errors.Join(err, public.Close())
-		}
-		servers = append(servers, newServer(admin, a.AdminHandler(), 2*time.Minute)) // a profile takes 30 s by default
-		log.LogAttrs(ctx, slog.LevelInfo, "metrics", slog.String("address", admin.Addr().String()))
+	defer endTracing()
+	a, err := newAPI(log, s.limits.apply, s.load.apply, guard.apply, func(o *api.Options) { o.Tracer = tracer })
+	if err != nil {
+		return err
 	}
-	log.LogAttrs(ctx, slog.LevelInfo, "listening", slog.String("address", public.Addr().String()), slog.String("version", release()))
-
-	ctx, stop := context.WithCancelCause(ctx)
-	defer stop(nil)
+	servers, err := s.open(ctx, log, a, guard)
+	if err != nil {
+		return err
+	}
 	failed := make(chan error, len(servers))
 	for _, srv := range servers {
-		go func() { failed <- srv.http.Serve(srv.listener) }()
+		go func() { failed <- srv.serve() }()
 	}
-	go func() {
-		start := time.Now()
-		if err := a.Warm(ctx); err != nil {
-			return
-		}
-		log.LogAttrs(ctx, slog.LevelInfo, "ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
-		if err := a.WarmBlends(ctx); err == nil { // ready without them: a first request makes the one it needs
-			log.LogAttrs(ctx, slog.LevelInfo, "blends ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
-		}
-	}()
+	go warm(ctx, log, a)
 	select {
 	case err = <-failed:
 	case <-ctx.Done():
 	}
 	a.Drain()
 	log.LogAttrs(ctx, slog.LevelInfo, "stopping", slog.Float64("drain_s", s.drain.Seconds()))
+	if err == nil {
+		time.Sleep(s.drainDelay)
+	}
 	deadline, cancel := context.WithTimeout(context.WithoutCancel(ctx), s.drain)
 	defer cancel()
 	for _, srv := range servers {
 		if late := srv.http.Shutdown(deadline); late != nil {
-			err = errors.Join(err, fmt.Errorf("drain: %w", late), srv.http.Close())
+			// That was agreed on: the service ends in order, only some clients have to ask again.
+			log.LogAttrs(ctx, slog.LevelWarn, "requests cut off", slog.String("address", srv.listener.Addr().String()))
+			err = errors.Join(err, srv.http.Close())
 		}
 	}
 	return err
+}
+
+// open listens for clients and operators.
+func (s *settings) open(ctx context.Context, log *slog.Logger, a *api.API, guard *guard) ([]*server, error) {
+	var config net.ListenConfig
+	public, err := config.Listen(ctx, "tcp", s.listen)
+	if err != nil {
+		return nil, err
+	}
+	if err := guard.admits(public.Addr(), log); err != nil {
+		return nil, errors.Join(err, public.Close())
+	}
+	// Reading, waiting, computing and writing one after the other; the API has tighter limits for each.
+	answer := readPatience + s.deadline + 2*time.Minute
+	servers := []*server{newServer(public, a.Handler(), guard.tls, answer, log)}
+	if s.adminListen != "" {
+		admin, err := config.Listen(ctx, "tcp", s.adminListen)
+		if err != nil {
+			return nil, errors.Join(err, public.Close())
+		}
+		servers = append(servers, newServer(admin, a.AdminHandler(), nil, 2*time.Minute, log)) // a profile takes 30 s by default
+		log.LogAttrs(ctx, slog.LevelInfo, "metrics", slog.String("address", admin.Addr().String()))
+	}
+	log.LogAttrs(ctx, slog.LevelInfo, "listening", slog.String("address", public.Addr().String()), slog.String("version", release()))
+	return servers, nil
+}
+
+// warm prepares a for its first requests.
+func warm(ctx context.Context, log *slog.Logger, a *api.API) {
+	start := time.Now()
+	if err := a.Warm(ctx); err != nil {
+		return
+	}
+	log.LogAttrs(ctx, slog.LevelInfo, "ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
+	if err := a.WarmBlends(ctx); err == nil { // ready without them: a first request makes the one it needs
+		log.LogAttrs(ctx, slog.LevelInfo, "blends ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
+	}
 }
 
 type server struct {
@@ -120,22 +189,49 @@ type server struct {
 	listener net.Listener
 }
 
-// newServer returns a server that gives up on clients who are slower than patience. Streams prolong it line by line.
-func newServer(l net.Listener, h http.Handler, patience time.Duration) *server {
+const (
+	readPatience   = 30 * time.Second // for a request with its body; streams prolong it line by line
+	maxHeaderBytes = 16 << 10         // a query with every unit has a twentieth
+)
+
+// newServer returns a server that gives up on clients who are slow: to send a request, to take its answer, which may come
+// until answer has passed, or to think of another.
+func newServer(l net.Listener, h http.Handler, config *tls.Config, answer time.Duration, log *slog.Logger) *server {
 	return &server{listener: l, http: &http.Server{
-		Handler: h, ReadHeaderTimeout: 5 * time.Second, ReadTimeout: patience, WriteTimeout: patience, IdleTimeout: 2 * time.Minute,
+		Handler: h, TLSConfig: config, MaxHeaderBytes: maxHeaderBytes,
+		ReadHeaderTimeout: 5 * time.Second, ReadTimeout: readPatience, WriteTimeout: answer, IdleTimeout: 2 * time.Minute,
+		ErrorLog: slog.NewLogLogger(log.Handler(), slog.LevelInfo), // of failed handshakes and the like
 	}}
 }
 
+// serve answers until the server is shut down.
+func (s *server) serve() error {
+	var err error
+	if s.http.TLSConfig != nil {
+		err = s.http.ServeTLS(s.listener, "", "")
+	} else {
+		err = s.http.Serve(s.listener)
+	}
+	if errors.Is(err, http.ErrServerClosed) {
+		return nil
+	}
+	return err
+}
+
 // newAPI returns the API of this process.
-func newAPI(log *slog.Logger, l limits) (*api.API, error) {
+func newAPI(log *slog.Logger, settings ...func(*api.Options)) (*api.API, error) {
 	gin.SetMode(gin.ReleaseMode)
 	catalogue, err := props.NewCatalogue()
 	if err != nil {
 		return nil, err
 	}
-	return api.New(api.Options{
-		Catalogue: catalogue, Registry: prometheus.NewRegistry(), Logger: log, Version: release(),
-		MaxBody: l.maxBody, MaxPoints: l.maxPoints, MaxConcurrent: l.maxConcurrent,
-	})
+	o := api.Options{Catalogue: catalogue, Registry: prometheus.NewRegistry(), Logger: log, Version: release()}
+	for _, apply := range settings {
+		apply(&o)
+	}
+	a, err := api.New(o)
+	if err != nil {
+		return nil, fmt.Errorf("these settings cannot be: %w", err)
+	}
+	return a, nil
 }
