@@ -12,6 +12,7 @@ import (
 	"log/slog"
 	"net/http"
 	"net/http/pprof"
+	"sync"
 	"sync/atomic"
 	"time"
 
@@ -21,6 +22,7 @@ import (
 	"go.opentelemetry.io/otel/trace"
 
 	"dewmark/props"
+	"dewmark/props/secondary"
 )
 
 // Options holds what an API needs. Catalogue, Registry, Logger and Version are required.
@@ -67,6 +69,7 @@ type API struct {
 	metrics   *metrics
 	lists     lists
 	mixtures  *mixtures
+	water     func() (*secondary.Liquid, error) // made when it is first wanted
 	ready     atomic.Bool
 
 	maxBody   int64
@@ -118,6 +121,7 @@ func New(o Options) (*API, error) {
 		return nil, err
 	}
 	a.mixtures = newMixtures(cmp.Or(o.MaxMixtures, DefaultMaxMixtures), a.metrics)
+	a.water = sync.OnceValues(func() (*secondary.Liquid, error) { return makeWater(a.catalogue) })
 	a.makeLists()
 	a.routes()
 	return a, nil
@@ -147,6 +151,9 @@ func (a *API) routes() {
 	e.POST("/v1/states", a.limit, a.postStates)
 	e.POST("/v1/saturation", a.limit, a.handle(a.saturation, mediaJSON, mediaCSV))
 	e.POST("/v1/cycles", a.limit, a.handle(a.cycles))
+	e.POST("/v1/operating-points", a.limit, a.handle(a.operatingPoints))
+	e.POST("/v1/ratings", a.limit, a.ratings)
+	e.POST("/v1/compressor-maps/fit", a.limit, a.handle(a.fitMap))
 }
 
 // Handler answers clients.

@@ -169,15 +169,26 @@ func checkProblem(r *http.Request, w *httptest.ResponseRecorder) error {
 	return nil
 }
 
+// lineSchemas are what the lines of a stream can be.
+var lineSchemas = map[string][]string{
+	"/v1/states":  {"StateItem", "FailedItem"},
+	"/v1/ratings": {"RatingRow", "FailedRating"},
+}
+
 // checkParts checks the lines of a stream, and that states are complete unless the request selected properties.
 func (c *contract) checkParts(r *http.Request, body []byte, w *httptest.ResponseRecorder) error {
 	schemas := c.doc.Components.Schemas
 	if w.Header().Get("Content-Type") == "application/x-ndjson" {
+		kinds := lineSchemas[r.URL.Path]
 		for line := range bytes.Lines(w.Body.Bytes()) {
-			if visit(schemas["StateItem"].Value, line) != nil {
-				if err := visit(schemas["FailedItem"].Value, line); err != nil {
-					return err
+			var err error
+			for _, kind := range kinds {
+				if err = visit(schemas[kind].Value, line); err == nil {
+					break
 				}
+			}
+			if err != nil || kinds == nil {
+				return fmt.Errorf("line %.300s is none of %v: %w", line, kinds, err)
 			}
 		}
 		return nil
@@ -223,27 +234,34 @@ func visit(schema *openapi3.Schema, text []byte) error {
 	return schema.VisitJSON(v, openapi3.EnableJSONSchema2020())
 }
 
+// batches are the lists of a request whose items are answered one by one, with the lists of the answer.
+var batches = map[string]string{"points": "states", "conditions": "operating_points"}
+
 // goodPart returns what of a request must fit the description when it was answered: without the members that are null,
-// which stand for members left out, and without the points of a batch that became problems.
+// which stand for members left out, and without the items of a batch that became problems.
 func goodPart(request, answer []byte) []byte {
 	var v any
-	var answered struct{ States []struct{ Problem any } }
+	var answered map[string]any
 	if json.Unmarshal(request, &v) != nil || json.Unmarshal(answer, &answered) != nil {
 		return request // a stream of lines
 	}
 	if object, ok := v.(map[string]any); ok {
-		points, _ := object["points"].([]any)
-		var good []any
-		for i, state := range answered.States {
-			if state.Problem == nil && i < len(points) {
-				good = append(good, points[i])
+		for asked, got := range batches {
+			items, _ := object[asked].([]any)
+			results, _ := answered[got].([]any)
+			if items == nil || results == nil {
+				continue
 			}
-		}
-		if good == nil && points != nil {
-			return nil
-		}
-		if points != nil {
-			object["points"] = good
+			var good []any
+			for i, result := range results {
+				if result.(map[string]any)["problem"] == nil && i < len(items) {
+					good = append(good, items[i])
+				}
+			}
+			if good == nil {
+				return nil
+			}
+			object[asked] = good
 		}
 	}
 	b, err := json.Marshal(pruned(v))
