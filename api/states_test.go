@@ -220,6 +220,15 @@ func TestBatchKeepsGoing(t *testing.T) {
 	}
 }
 
+// A thin gas has almost one enthalpy at a temperature, whatever its pressure.
+func TestUncertainState(t *testing.T) {
+	thin := at(answer(t, "POST", "/v1/states", `{"refrigerant": "R290", "points": [{"temperature": 100, "pressure": 1e-4}]}`, 200), "states", 0)
+	problem := at(answer(t, "POST", "/v1/states", fmt.Sprintf(`{"refrigerant": "R290", "points": [{"temperature": 100, "enthalpy": %v}]}`, at(thin, "enthalpy")), 200), "states", 0, "problem")
+	if at(problem, "type") != "/problems/uncertain-state" || len(at(problem, "errors").([]any)) != 2 || !strings.Contains(fmt.Sprint(at(problem, "detail")), "density") {
+		t.Errorf("%v", problem)
+	}
+}
+
 // The limits that the catalogue states can be asked for, in any unit.
 func TestLimitsAreWithin(t *testing.T) {
 	for _, units := range []string{`{}`, `{"system": "IP"}`, `{"temperature": "K"}`, `{"temperature": "[degR]"}`} {
