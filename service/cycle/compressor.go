@@ -33,7 +33,7 @@ func (c *circuit) compress(s stage, e *efficiencies, in *node, p float64) *node 
 	var out *node
 	switch measured := e.dischargeTemperature; {
 	case isGiven(measured):
-		st, err := c.fluid.atTemperature(p, measured)
+		st, err := c.fluid.atTemperature(p, measured, gas)
 		out = c.put(s.discharge, in.stream, st, err, e.fields.discharge)
 		work = (out.H - in.H) / kept
 		efficiency = min(ideal/work, 1)

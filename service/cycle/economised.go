@@ -26,7 +26,7 @@ func (c *circuit) economisedSubcooler() {
 
 // economise evaporates and superheats the injection flow with liquid. The flow follows from the temperature of the liquid
 // that leaves, or is given. Where the liquid is cold enough already, nothing is injected.
-func (c *circuit) economise(warm, wet *node) (liquid, injected *node) {
+func (c *circuit) economise(warm, wet *node) (cold, injected *node) {
 	e := &c.economiser
 	injected = c.injectionVapour(e.superheat)
 	gain := injected.H - wet.H // J per kg injected
@@ -34,25 +34,25 @@ func (c *circuit) economise(warm, wet *node) (liquid, injected *node) {
 	switch {
 	case isGiven(e.ratio):
 		c.share(e.ratio)
-		liquid = c.heated(warm, -gain*e.ratio/(1-e.ratio), warm.P, valveInlet, "economiser.injection_ratio")
+		cold = c.heated(warm, -gain*e.ratio/(1-e.ratio), warm.P, valveInlet, "economiser.injection_ratio")
 	case target >= warm.T:
 		c.share(0)
-		liquid = c.put(valveInlet, mainStream, warm.State, nil, "")
+		cold = c.put(valveInlet, mainStream, warm.State, nil, "")
 	default:
-		st, err := c.fluid.atTemperature(warm.P, target)
-		liquid = c.put(valveInlet, mainStream, st, err, "economiser.approach")
-		loss := warm.H - liquid.H // J per kg subcooled
+		st, err := c.fluid.atTemperature(warm.P, target, liquid)
+		cold = c.put(valveInlet, mainStream, st, err, "economiser.approach")
+		loss := warm.H - cold.H // J per kg subcooled
 		c.share(loss / (loss + gain))
 	}
-	if c.flows[branchStream] > 0 && (injected.T > warm.T || liquid.T < wet.T) {
+	if c.flows[branchStream] > 0 && (injected.T > warm.T || cold.T < wet.T) {
 		c.refuse(Refusal{
 			Code: SecondLaw, Field: "economiser", Component: partNames[c.side][economiser],
 			Message: message("heat cannot pass from liquid at %s to injection vapour at %s that starts from %s",
 				temperature(warm.T), temperature(injected.T), temperature(wet.T)),
 		})
 	}
-	c.record(economiser, two(warm, wet), two(liquid, injected), 0, 0, nan)
-	return liquid, injected
+	c.record(economiser, two(warm, wet), two(cold, injected), 0, 0, nan)
+	return cold, injected
 }
 
 // injectionVapour puts vapour of the intermediate pressure, superheated.
@@ -60,7 +60,7 @@ func (c *circuit) injectionVapour(superheat float64) *node {
 	if superheat == 0 {
 		return c.put(injection, branchStream, c.middle.dew, nil, "")
 	}
-	st, err := c.fluid.atTemperature(c.middle.pressure, c.middle.dew.T+superheat)
+	st, err := c.fluid.atTemperature(c.middle.pressure, c.middle.dew.T+superheat, gas)
 	return c.put(injection, branchStream, st, err, "economiser.injection_superheat")
 }
 

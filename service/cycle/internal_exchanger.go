@@ -14,11 +14,11 @@ func (c *circuit) internalLimits(warm, cold *node) (most internalLimits) {
 	if c.refused != nil || warm.T <= cold.T {
 		return most
 	}
-	coldest, err := c.fluid.atTemperature(most.liquidPressure, cold.T)
+	coldest, err := c.fluid.atTemperature(most.liquidPressure, cold.T, liquid)
 	if err != nil {
 		c.refuse(c.noState(warm.place, "internal_exchanger.effectiveness", err))
 	}
-	warmest, err := c.fluid.atTemperature(most.vapourPressure, warm.T)
+	warmest, err := c.fluid.atTemperature(most.vapourPressure, warm.T, gas)
 	if err != nil {
 		c.refuse(c.noState(cold.place, "internal_exchanger.effectiveness", err))
 	}

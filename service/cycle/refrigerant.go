@@ -1,6 +1,7 @@
 package cycle
 
 import (
+	"errors"
 	"math"
 
 	"dewmark/props"
@@ -63,12 +64,22 @@ func (m *model) wetAt(p, x float64) (props.State, error) {
 	return m.PressureQuality(p, x)
 }
 
-// atTemperature, atEnthalpy and atEntropy return the state at pressure p with that property.
-func (m *model) atTemperature(p, T float64) (props.State, error) {
+// atTemperature returns the state at pressure p and temperature T. On the saturation line of a refrigerant without glide
+// that is any mixture of both phases; the content says which end of it is meant.
+func (m *model) atTemperature(p, T float64, of content) (props.State, error) {
 	m.asked++
-	return m.TemperaturePressure(T, p)
+	s, err := m.TemperaturePressure(T, p)
+	switch _, onLine := errors.AsType[*props.AmbiguousError](err); {
+	case !onLine:
+		return s, err
+	case of == liquid:
+		return m.bubbleAt(p)
+	default:
+		return m.dewAt(p)
+	}
 }
 
+// atEnthalpy and atEntropy return the state at pressure p with that property.
 func (m *model) atEnthalpy(p, h float64) (props.State, error) {
 	m.asked++
 	return m.PressureEnthalpy(p, h)
@@ -105,7 +116,7 @@ func (m *model) compressed(p float64, in *props.State) (props.State, error) {
 	return g.PressureEntropyNear(p, in.S, start)
 }
 
-// content of a pipe decides which saturation line counts.
+// content of a pipe or exchanger decides which saturation line counts.
 type content bool
 
 const (

@@ -82,7 +82,16 @@ var refusals = []refusal{
 	{"suction line warmed by the cold", func(_ *testing.T, r *cycle.Request) {
 		r.AmbientTemperature, r.SuctionLine.TemperatureRise = new(260.0), 10
 	}, cycle.SecondLaw, "ambient_temperature"},
-	{"condensed in the discharge line", func(_ *testing.T, r *cycle.Request) { r.DischargeLine.TemperatureDrop = 40 }, cycle.NoSolution, "condensation.temperature"},
+	{"condensed in the suction line", func(_ *testing.T, r *cycle.Request) {
+		r.SuctionLine.TemperatureRise, r.AmbientTemperature = -6, new(250.0)
+	}, cycle.NoSolution, "suction_line.temperature_rise"},
+	{"condensed in the discharge line", func(_ *testing.T, r *cycle.Request) { r.DischargeLine.TemperatureDrop = 40 }, cycle.NoSolution, "discharge_line.temperature_drop"},
+	{"boiled in the liquid line", func(_ *testing.T, r *cycle.Request) {
+		r.LiquidLine.TemperatureChange, r.AmbientTemperature = 4, new(330.0)
+	}, cycle.NoSolution, "liquid_line.temperature_change"},
+	{"discharge at the dew point", func(_ *testing.T, r *cycle.Request) {
+		r.Compressor.IsentropicEfficiency, r.Compressor.DischargeTemperature = nil, new(313.15)
+	}, cycle.ImpossibleMeasurement, "compressor.discharge_temperature"},
 
 	{"gas cooler in a single stage", func(_ *testing.T, r *cycle.Request) { r.GasCooler = &cycle.GasCooler{} }, cycle.Surplus, "gas_cooler"},
 	{"exchanger in a single stage", func(_ *testing.T, r *cycle.Request) { r.InternalExchanger = &cycle.InternalExchanger{} }, cycle.Surplus, "internal_exchanger"},

@@ -55,7 +55,7 @@ func (c *circuit) setLow(e *evaporation, loss Drop) {
 	case e.superheat == 0:
 		c.low.outlet, err = c.fluid.dewAt(p)
 	default:
-		c.low.outlet, err = c.fluid.atTemperature(p, dew+e.superheat)
+		c.low.outlet, err = c.fluid.atTemperature(p, dew+e.superheat, gas)
 	}
 	if err != nil {
 		c.refuse(c.noState(evaporatorOutlet, field, err))
@@ -84,7 +84,7 @@ func (c *circuit) setCondenser(k *condensation, loss Drop) {
 	if k.subcooling == 0 {
 		outlet, err = c.fluid.bubbleAt(p)
 	} else {
-		outlet, err = c.fluid.atTemperature(p, bubble-k.subcooling)
+		outlet, err = c.fluid.atTemperature(p, bubble-k.subcooling, liquid)
 	}
 	if err != nil {
 		c.refuse(c.noState(condenserOutlet, k.subcoolingField, err))
@@ -104,7 +104,7 @@ func (c *circuit) setGasCooler(p float64) {
 		})
 		return
 	}
-	outlet, err := c.fluid.atTemperature(p, g.outlet)
+	outlet, err := c.fluid.atTemperature(p, g.outlet, gas)
 	if err != nil {
 		field := g.outletField
 		if e, ok := errors.AsType[*props.RangeError](err); ok && e.Property == props.Pressure {

@@ -48,6 +48,29 @@ func TestDropsOfSaturationTemperature(t *testing.T) {
 	checkAccounts(t, s)
 }
 
+// TestOnTheSaturationLine: where temperature and pressure leave the quality open, a gas is saturated vapour and a liquid
+// saturated liquid.
+func TestOnTheSaturationLine(t *testing.T) {
+	r := heatPump(t)
+	r.AmbientTemperature = new(250.0)
+	r.SuctionLine.TemperatureRise = -*r.Evaporation.Superheat
+	if got := at(t, solve(t, r), "1").Quality; got != 1 {
+		t.Errorf("vapour cooled to its dew point has quality %g", got)
+	}
+	r = heatPump(t)
+	r.AmbientTemperature = new(330.0)
+	r.LiquidLine.TemperatureChange = *r.Condensation.Subcooling
+	if got := at(t, solve(t, r), "5").Quality; got != 0 {
+		t.Errorf("liquid warmed to its bubble point has quality %g", got)
+	}
+	r = heatPump(t)
+	r.Evaporation.Superheat, r.Condensation.Subcooling = new(1e-12), new(1e-12)
+	s := solve(t, r)
+	if gas, liquid := at(t, s, "7").Quality, at(t, s, "4").Quality; gas != 1 || liquid != 0 {
+		t.Errorf("vanishing superheat and subcooling give qualities %g and %g", gas, liquid)
+	}
+}
+
 func TestLinesChangeTheTemperature(t *testing.T) {
 	r := heatPump(t)
 	r.AmbientTemperature = new(290.0)

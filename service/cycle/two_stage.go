@@ -67,7 +67,7 @@ func (c *circuit) subcooledInCoil(in *node) *node {
 	if T >= in.T {
 		return c.put(valveInlet, in.stream, in.State, nil, "")
 	}
-	st, err := c.fluid.atTemperature(in.P, T)
+	st, err := c.fluid.atTemperature(in.P, T, liquid)
 	return c.put(valveInlet, in.stream, st, err, "intercooler.approach")
 }
 
@@ -86,7 +86,7 @@ func (c *circuit) cooledOutside(in *node) *node {
 			Message: message("gas cooled to %s would condense: it must stay above the intermediate dew point, %s", temperature(T), temperature(c.middle.dew.T)),
 		})
 	}
-	st, err := c.fluid.atTemperature(in.P, T)
+	st, err := c.fluid.atTemperature(in.P, T, gas)
 	out := c.put(highSuction, in.stream, st, err, "intercooler.approach")
 	c.exchange(intercooler, in, out, x.temperature)
 	return out
