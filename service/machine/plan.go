@@ -62,7 +62,7 @@ func (p *plan) speeds(k *Condition) {
 	}
 }
 
-// layoutOf fills the cycle's request with what does not change from trial to trial.
+// template fills the cycle's request with what does not change from trial to trial.
 func (p *plan) template() cycle.Request {
 	m := p.machine
 	r := cycle.Request{
