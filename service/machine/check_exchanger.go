@@ -9,7 +9,7 @@ import (
 // Defaults of exchangers. All are common practice.
 const (
 	defaultSlices          = 20
-	defaultGasCoolerSlices = 50
+	defaultGasCoolerSlices = 100
 	mostSlices             = 1000
 	liquidShare            = 0.5
 	airShare               = 0.7

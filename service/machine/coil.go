@@ -21,6 +21,7 @@ type strip struct {
 	T1, T2   float64 // K, of the refrigerant
 	heat     float64 // W
 	share    float64 // of the thermal resistance on the side of the air
+	settled  bool    // the streams do not cross, whatever rounding says
 }
 
 func (s *strip) capacity() float64 { return s.flow * moistCapacity(s.air.W) }
@@ -39,6 +40,9 @@ func (s *strip) dry(a Arrangement, gap float64) float64 {
 	if a == ParallelFlow {
 		d1, d2 = s.air.T-s.T1, left-s.T2
 	}
+	if s.settled {
+		d1, d2 = math.Max(d1, leastDifference), math.Max(d2, leastDifference)
+	}
 	if m := logMean(d1, d2); m > 0 {
 		return s.heat / m
 	}
@@ -52,6 +56,9 @@ func (s *strip) wet() (ua, surface float64) {
 	hT, slope, _ := secondary.Saturation(s.pressure, T)
 	in := s.air.h - hT
 	out := in - s.heat/s.flow
+	if s.settled {
+		out = math.Max(out, leastDifference*slope)
+	}
 	if !(out > 0) {
 		return math.Inf(1), T
 	}
@@ -71,11 +78,12 @@ func (s *strip) wet() (ua, surface float64) {
 func (s *strip) surface(hT, slope, T, mean float64) float64 {
 	cp := moistCapacity(s.air.W)
 	target := (1 - s.share) * mean
-	x := target / (cp*s.share + slope*(1-s.share))
+	most := s.air.T - T // warmer than the air it is not; beyond, water might boil
+	x := math.Min(target/(cp*s.share+slope*(1-s.share)), most)
 	for range surfaceSteps {
 		h, dh, _ := secondary.Saturation(s.pressure, T+x)
 		step := (cp*s.share*x + (1-s.share)*(h-hT) - target) / (cp*s.share + (1-s.share)*dh)
-		x -= step
+		x = math.Min(x-step, most)
 		if math.Abs(step) < 1e-12*T {
 			break
 		}
@@ -132,22 +140,39 @@ func (s *strip) leave(ua float64, wet bool, surface float64) outcome {
 		return dry
 	}
 	contact := -math.Expm1(-ua / s.share / s.capacity()) // 1 - bypass factor
-	apparatus := saturatedAt(s.pressure, in.h-s.heat/s.flow/contact)
+	water := secondary.CondensateEnthalpy(surface)
+	apparatus, _ := bracketed(coldest, in.T, func(T float64) (float64, error) {
+		h, _, W := secondary.Saturation(s.pressure, T)
+		return contact*(in.h-h-(in.W-W)*water) - s.heat/s.flow, nil
+	})
 	_, _, WA := secondary.Saturation(s.pressure, apparatus)
 	if !(WA < in.W) { // the surface is below the dew point only in name
 		return dry
 	}
 	out := outcome{wet: true, surface: surface, apparatus: apparatus}
 	out.air.W = in.W - contact*(in.W-WA)
-	out.air.h = in.h - s.heat/s.flow - (in.W-out.air.W)*secondary.CondensateEnthalpy(surface)
+	out.air.h = in.h - s.heat/s.flow - (in.W-out.air.W)*water
 	out.air.T = dryBulb(out.air.h, out.air.W)
-	if T := saturatedAt(s.pressure, out.air.h); out.air.T < T { // fog rains out
-		_, _, W := secondary.Saturation(s.pressure, T)
-		out.air.T, out.air.W = T, W
-		out.air.h = in.h - s.heat/s.flow - (in.W-W)*secondary.CondensateEnthalpy(surface)
+	if saturatedAt(s.pressure, out.air.h) > out.air.T {
+		out.air = s.clear(surface)
 	}
 	out.shed = s.flow * (in.W - out.air.W)
 	return out
+}
+
+// coldest is below what any coil cools air to, K.
+const coldest = 175.0
+
+// clear returns the air behind a strip that would leave as fog, after that has rained out. Air that a dry zone before it has
+// cooled below its dew point becomes warmer by that.
+func (s *strip) clear(surface float64) airState {
+	in, water := s.air, secondary.CondensateEnthalpy(surface)
+	T, _ := bracketed(coldest, math.Min(in.T+30, 373), func(T float64) (float64, error) {
+		h, _, W := secondary.Saturation(s.pressure, T)
+		return math.Min(h, 1e9) + (in.W-math.Min(W, 1e3))*water - (in.h - s.heat/s.flow), nil
+	})
+	h, _, W := secondary.Saturation(s.pressure, T)
+	return airState{T, W, h}
 }
 
 // dryBulb returns the temperature of moist air with enthalpy h.
@@ -158,8 +183,7 @@ func dryBulb(h, W float64) float64 {
 
 // saturatedAt returns the temperature at which saturated air has enthalpy h.
 func saturatedAt(p, h float64) float64 {
-	low, high := 180.0, 370.0 // K; no coil comes near
-	T, _ := bracketed(low, high, func(T float64) (float64, error) {
+	T, _ := bracketed(coldest, 373, func(T float64) (float64, error) {
 		hT, _, _ := secondary.Saturation(p, T)
 		return math.Min(hT, 1e9) - h, nil
 	})
@@ -235,6 +259,7 @@ func (w *work) coilSeries(share float64, tell visit) (needed, short float64) {
 		}
 		s := &w.segments[i]
 		k := w.strip(s, air, w.stream.flow, share)
+		k.settled = tell != nil
 		gap := air.T - s.T2
 		if i == n-1 && w.arrangement == Counterflow {
 			gap = w.gap

@@ -5,23 +5,32 @@ import "math"
 // In crossflow the zones lie side by side: each has a share of the area and the same share of the stream, which enters all
 // of them at its inlet temperature.
 
-// beginAside looks at the differences that matter in crossflow and in coils: the stream's inlet against each segment, its
-// outlet against the two-phase zone.
+// beginAside looks at how the refrigerant leaves the segments against the stream's inlet, in crossflow and in coils.
 func (w *work) beginAside() {
-	w.needed, w.pinch, w.pinchAt, w.reach = math.NaN(), math.Inf(1), 0, 0
-	if !w.stream.known {
-		w.pinch, w.pinchAt = math.NaN(), math.NaN()
+	w.needed, w.pinch, w.pinchAt, w.reach = math.NaN(), math.NaN(), math.NaN(), 0
+	for i := range w.segments {
+		w.reach = math.Min(w.reach, w.ahead(i))
 	}
+}
+
+// dryShares adds up the shares of all zones at the conductance ua, without condensation.
+func (w *work) dryShares(ua float64) (area float64) {
+	for i := range w.segments {
+		area += w.crossShare(i, ua)
+	}
+	return area
+}
+
+// pinchAside finds the smallest difference between the streams at the conductance ua: where the refrigerant leaves a segment,
+// against the stream's inlet, and in two-phase segments against what leaves there.
+func (w *work) pinchAside(ua float64) {
+	w.pinch, w.pinchAt = math.Inf(1), 0
 	for i := range w.segments {
 		s := &w.segments[i]
-		d := w.ahead(i)
-		w.reach = math.Min(w.reach, d)
-		if !w.stream.known {
-			continue
-		}
-		w.note(d, s.to)
+		w.note(w.ahead(i), s.to)
 		if s.zone == Condensing || s.zone == Evaporating {
-			w.note(w.stream.sign*(s.T2-w.stream.outT), s.to)
+			change := w.duty * (s.to - s.from) / (w.crossShare(i, ua) * w.stream.capacity)
+			w.note(w.stream.sign*(s.T2-w.stream.inT)-change, s.to)
 		}
 	}
 }
@@ -31,11 +40,7 @@ func (w *work) crossMismatch(ua float64) float64 {
 	if w.reach < 0 {
 		return w.reach/crossReach - 1
 	}
-	var area float64 // shares of all zones together
-	for i := range w.segments {
-		area += w.crossShare(i, ua)
-	}
-	return 1/area - 1
+	return 1/w.dryShares(ua) - 1
 }
 
 // ahead returns by how much the refrigerant, where it leaves a segment, is on its proper side of the stream's inlet.

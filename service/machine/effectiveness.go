@@ -57,39 +57,3 @@ func shortfall(a Arrangement, ntu, ratio float64, streamIsMax bool) float64 {
 
 // tinyRatio is where a ratio of capacity flows counts as 0 or as 1: the formulas lose their digits there.
 const tinyRatio = 1e-9
-
-// mostNTU bounds the search for a number of transfer units; no exchanger that is built comes near.
-const mostNTU = 1e4
-
-// transferUnits returns the NTU with that effectiveness, the inverse of [effectiveness], or infinity when the arrangement
-// cannot reach it.
-func transferUnits(a Arrangement, eps, ratio float64, streamIsMax bool) float64 {
-	switch {
-	case !(eps < 1):
-		return math.Inf(1)
-	case eps <= 0:
-		return 0
-	case ratio < tinyRatio:
-		return -math.Log1p(-eps)
-	case a == ParallelFlow:
-		if most := 1 / (1 + ratio); eps >= most {
-			return math.Inf(1)
-		}
-		return -math.Log1p(-eps*(1+ratio)) / (1 + ratio)
-	case a == Counterflow:
-		if 1-ratio < tinyRatio {
-			return eps / (1 - eps)
-		}
-		return math.Log((1-eps*ratio)/(1-eps)) / (1 - ratio)
-	}
-	if effectiveness(a, mostNTU, ratio, streamIsMax) <= eps {
-		return math.Inf(1)
-	}
-	low := -math.Log1p(-eps) // what an unlimited other stream would take
-	high := 2*low + 1
-	for effectiveness(a, high, ratio, streamIsMax) < eps {
-		low, high = high, 2*high
-	}
-	ntu, _ := bracketed(low, high, func(x float64) (float64, error) { return effectiveness(a, x, ratio, streamIsMax) - eps, nil })
-	return ntu
-}

@@ -136,6 +136,11 @@ func (w *work) mismatch(level levels) float64 {
 		}
 		return w.surplus(ua, w.needed, w.reach)
 	case !math.IsNaN(w.exchange.pinch):
+		if !w.series() {
+			if w.pinch = w.reach; w.reach >= 0 {
+				w.pinchAside(w.neededAside(w.dryShares))
+			}
+		}
 		return w.pinch - w.exchange.pinch
 	}
 	return w.approachAt(level, w.approachOf) - w.approach

@@ -15,7 +15,7 @@ type Exchanger struct {
 	Reference   cycle.Reference
 	Arrangement Arrangement // default counterflow; crossflow for moist air
 	// Slices cuts each zone in which the refrigerant's temperature is not straight over its heat into so many slices of equal
-	// heat: blends, gas coolers and exchangers with pressure drop; default 20, in gas coolers 50. A pure refrigerant without
+	// heat: blends, gas coolers and exchangers with pressure drop; default 20, in gas coolers 100. A pure refrigerant without
 	// pressure drop has three zones with one logarithmic mean each, and slices only where this asks for them.
 	Slices *int
 

@@ -6,6 +6,7 @@ import (
 
 	"dewmark/props"
 	"dewmark/props/secondary"
+	"dewmark/service/cycle"
 )
 
 var catalogue = sync.OnceValue(func() *props.Catalogue {
@@ -41,4 +42,15 @@ var water = sync.OnceValue(func() *secondary.Liquid {
 func haveRefrigerant(name string) bool {
 	_, err := catalogue().Refrigerant(name, props.DefaultDatum)
 	return err == nil
+}
+
+// countedFluid counts dew points by temperature.
+type countedFluid struct {
+	cycle.Refrigerant
+	states chan struct{}
+}
+
+func (f *countedFluid) DewPoint(T float64) (props.State, error) {
+	f.states <- struct{}{}
+	return f.Refrigerant.DewPoint(T)
 }

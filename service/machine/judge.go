@@ -14,6 +14,8 @@ const (
 	// sources of freezing points differ by as much.
 	freezingMargin = 3.0
 	usualPinch     = 1.0 // K, common practice
+	// streamReach is how far beyond the range of its properties a secondary liquid is still computed, K, with a caution.
+	streamReach = 30.0
 )
 
 // check refuses what a search can reach but no machine can do.
@@ -37,9 +39,15 @@ func (t *trial) check(s *settled, p *OperatingPoint) error {
 				temperature(p.SuctionDewTemperature), t.dischargeNumber(p), difference(-v.Margin))
 		}
 	}
-	for _, w := range []*work{&s.evaporator, &s.condenser} {
-		if math.IsNaN(w.ua) && w.pinch <= 0 {
-			return refused(TemperatureCross, w.field, nil, "with this approach the streams would cross inside the exchanger by %s", difference(-w.pinch))
+	if w := &s.evaporator; w.coil() && math.IsNaN(w.ua) && w.pinch <= 0 {
+		return w.crossed(w.pinch)
+	}
+	for _, x := range []struct {
+		side *side
+		q    *StreamResult
+	}{{&t.source, &p.Evaporator.Secondary}, {&t.sink, &p.Condenser.Secondary}} {
+		if err := x.side.possible(x.q); err != nil {
+			return err
 		}
 	}
 	if q := &p.Evaporator.Secondary; q.OutletTemperature <= q.FreezingPoint {
@@ -47,6 +55,42 @@ func (t *trial) check(s *settled, p *OperatingPoint) error {
 			temperature(q.OutletTemperature), temperature(q.FreezingPoint))
 	}
 	return nil
+}
+
+// possible refuses a liquid that would enter frozen, or far beyond the range of its properties.
+func (s *side) possible(q *StreamResult) error {
+	if s.liquid == nil {
+		return nil
+	}
+	_, highest := s.liquid.Range()
+	warm := math.Max(q.InletTemperature, q.OutletTemperature)
+	switch {
+	case q.InletTemperature <= q.FreezingPoint:
+		return refused(Freezing, s.field+".inlet_temperature", nil, "the "+q.Fluid+" would enter at %s; it freezes at %s",
+			temperature(q.InletTemperature), temperature(q.FreezingPoint))
+	case warm > highest+streamReach:
+		return refused(NoState, s.field, s.liquid.Check(warm), "the "+q.Fluid+" would reach %s, far beyond the range of its properties", temperature(warm))
+	}
+	return nil
+}
+
+// apart refuses streams that an approach makes cross. A conductance keeps them apart by itself. What a coil's air leaves with
+// is for [trial.check], which knows of condensation.
+func (s *settled) apart() error {
+	for _, w := range []*work{&s.evaporator, &s.condenser} {
+		least := w.gap
+		if w.pinch < least && !w.coil() {
+			least = w.pinch
+		}
+		if math.IsNaN(w.ua) && least <= 0 {
+			return w.crossed(least)
+		}
+	}
+	return nil
+}
+
+func (w *work) crossed(pinch float64) error {
+	return refused(TemperatureCross, w.field, nil, "with this approach the streams would cross inside the exchanger by %s", difference(-pinch))
 }
 
 // dischargeNumber is the temperature of condensation at the flange, or the pressure above the critical one.

@@ -13,6 +13,9 @@ var nan = math.NaN()
 // report computes the settled machine once more, with the temperatures of its streams in the accounts, and looks it over
 // as a practitioner would.
 func (t *trial) report(s *settled, clamped *Caution) (*OperatingPoint, error) {
+	if err := s.apart(); err != nil {
+		return nil, err
+	}
 	// The means are those of the secondary streams, so that entropy generation counts the exchangers' own.
 	t.sourceMean, t.sinkMean = s.evaporator.stream.entropyMean(), s.condenser.stream.entropyMean()
 	t.request.SourceTemperature, t.request.SinkTemperature = &t.sourceMean, &t.sinkMean
@@ -150,23 +153,29 @@ func (w *work) seriesResult(r *ExchangerResult) {
 		for i := range r.Zones {
 			r.Zones[i].Share /= needed
 		}
-		r.UA, r.Pinch = needed, math.Max(0, w.pinch)
+		r.UA = needed
+		r.takePinch(w)
 	}
 	r.finish()
+}
+
+// takePinch takes over the smallest difference. A conductance keeps streams apart; what falls below zero is rounding.
+func (r *ExchangerResult) takePinch(w *work) {
+	if r.Pinch, r.PinchAt = w.pinch, w.pinchAt; !math.IsNaN(w.ua) {
+		r.Pinch = math.Max(0, w.pinch)
+	}
 }
 
 // asideResult tells the zones of crossflow.
 func (w *work) asideResult(r *ExchangerResult, ua float64) {
 	if math.IsNaN(ua) {
-		ua = w.neededAside(func(ua float64) float64 {
-			var area float64
-			for i := range w.segments {
-				area += w.crossShare(i, ua)
-			}
-			return area
-		})
+		ua = w.neededAside(w.dryShares)
 	}
 	r.UA = ua
+	if w.stream.known {
+		w.pinchAside(ua)
+		r.takePinch(w)
+	}
 	for i := range w.segments {
 		s := &w.segments[i]
 		z := r.zone(s)
@@ -215,6 +224,9 @@ func (w *work) coilResult(r *ExchangerResult, ua, share float64) {
 			}
 			z.SecondaryInlet = k.air.T
 		}
+		if s.zone == Evaporating {
+			w.note(out.air.T-k.coldEnd(w.arrangement), s.to)
+		}
 		q.CondensateFlow += out.shed
 		if out.wet {
 			surface += out.surface * k.heat
@@ -223,6 +235,7 @@ func (w *work) coilResult(r *ExchangerResult, ua, share float64) {
 		}
 	}
 	q.CondensateFlow = 0
+	w.pinch, w.pinchAt = w.gap, 1
 	var W float64
 	if w.series() {
 		W = w.tellSeries(r, share, tell)
@@ -234,19 +247,7 @@ func (w *work) coilResult(r *ExchangerResult, ua, share float64) {
 		q.SurfaceTemperature, q.ApparatusDewPoint = surface/wetHeat, apparatus/wetHeat
 	}
 	w.leaving(q, W)
-	r.Pinch, r.PinchAt = w.coilPinch()
-}
-
-// coilPinch returns the smallest difference between refrigerant and air, with what condensation left of the air's change.
-func (w *work) coilPinch() (pinch, at float64) {
-	pinch, at = w.gap, 1
-	for i := range w.segments {
-		s := &w.segments[i]
-		if d := w.stream.outT - s.T2; s.zone == Evaporating && d < pinch {
-			pinch, at = d, s.to
-		}
-	}
-	return pinch, at
+	r.takePinch(w)
 }
 
 // tellSeries goes through a coil whose zones the air passes one after another, in the direction of the refrigerant. It
@@ -291,7 +292,7 @@ func (w *work) tellAside(r *ExchangerResult, ua, share float64, tell visit) (W f
 		W += part * out.air.W
 		area += part
 	}
-	return W / area
+	return W + (1-area)*w.stream.air.W // an exchanger larger than it can use leaves some air as it is
 }
 
 // result tells what is known of a stream without looking at the exchanger.
@@ -334,6 +335,9 @@ func (w *work) leaving(q *StreamResult, W float64) {
 	q.OutletTemperature, q.OutletRatio = out.T, W
 	q.OutletHumidity, q.OutletWetBulb = math.Min(1, out.RelativeHumidity()), out.WetBulb()
 	q.SensibleDuty = p.flow * moistCapacity(p.air.W) * (p.inT - out.T)
+	if !q.Wet {
+		q.SensibleDuty = w.duty
+	}
 	q.LatentDuty = w.duty - q.SensibleDuty
 	q.SensibleRatio = q.SensibleDuty / w.duty
 	w.stream.outT = out.T // for the leaving approach

@@ -112,10 +112,14 @@ func (t *trial) newAxes() (*axes, error) {
 		return nil, refused(NoState, "condition.sink", nil,
 			"the refrigerant condenses up to %s, too cold for the sink, %s; above it a transcritical layout has a gas cooler", temperature(hottest.T), temperature(cold))
 	}
-	return &axes{
-		newAxis(-1, t.limitOf(&t.evaporator, &t.source), lowest+t.superheat, warm),
-		newAxis(+1, t.limitOf(&t.condenser, &t.sink), cold, hot),
-	}, nil
+	limits := [2]float64{t.limitOf(&t.evaporator, &t.source), t.limitOf(&t.condenser, &t.sink)}
+	if math.IsNaN(limits[low]) { // an approach can ask for vapour warmer, or liquid colder, than the stream enters
+		warm += t.superheat
+	}
+	if math.IsNaN(limits[high]) {
+		cold -= t.subcooling
+	}
+	return &axes{newAxis(-1, limits[low], lowest+t.superheat, warm), newAxis(+1, limits[high], cold, hot)}, nil
 }
 
 // limitOf returns the stream's inlet temperature where the refrigerant can come close to it, or NaN.
@@ -186,19 +190,16 @@ func (t *trial) explain(err error, b *axes) error {
 		return t.impossible(err)
 	}
 	inner, nested := errors.AsType[*wall](outer.cause)
+	found := nested && !math.IsNaN(inner.miss) // the condenser could be tried
 	switch {
-	case nested && inner.cause != nil && !math.IsNaN(inner.miss) && !inner.above:
-		return t.tooFlat(inner, b)
-	case nested && inner.cause == nil && inner.above:
+	case found && inner.above:
 		return t.tooSmall(&t.condenser, inner, b)
-	case nested && inner.cause != nil:
-		return t.impossible(inner.cause)
-	case nested:
+	case outer.above && !math.IsNaN(outer.miss):
+		return t.tooSmall(&t.evaporator, outer, b)
+	case found:
 		return t.tooFlat(inner, b)
 	case outer.cause != nil:
 		return t.impossible(outer.cause)
-	case outer.above:
-		return t.tooSmall(&t.evaporator, outer, b)
 	}
 	return refused(NoConvergence, "", nil, "the search ended with compressor and exchangers %s of the duty apart, the refrigerant leaving the evaporator at %s", plain(outer.miss), temperature(b[low].temperature(outer.x)))
 }

@@ -66,13 +66,32 @@ func (p *profile) share(h float64) float64 {
 // pressure falls evenly with the heat.
 func (p *profile) pressure(q float64) float64 { return p.in.P + q*(p.out.P-p.in.P) }
 
+// edgeRounds is how often the pressure at a zone's edge is improved: it changes little over the way, so that each round gains
+// two digits.
+const edgeRounds = 5
+
+// edge returns the dew or bubble point on the way, at the pressure where the refrigerant has its enthalpy.
+func (p *profile) edge(first float64, at func(pressure float64) (props.State, error)) (props.State, error) {
+	s, err := at(first)
+	if !p.dropping {
+		return s, err
+	}
+	for range edgeRounds {
+		if err != nil {
+			return s, err
+		}
+		s, err = at(p.pressure(p.share(s.H)))
+	}
+	return s, err
+}
+
 // condenser cuts the way from superheated vapour to subcooled liquid.
 func (p *profile) condenser(x *exchange) error {
-	dew, err := p.fluid.DewPointAtPressure(p.in.P)
+	dew, err := p.edge(p.in.P, p.fluid.DewPointAtPressure)
 	if err != nil {
 		return err
 	}
-	bubble, err := p.fluid.BubblePointAtPressure(p.out.P)
+	bubble, err := p.edge(p.out.P, p.fluid.BubblePointAtPressure)
 	if err != nil {
 		return err
 	}
@@ -95,7 +114,7 @@ func (p *profile) condenser(x *exchange) error {
 
 // evaporator cuts the way from wet vapour to superheated vapour.
 func (p *profile) evaporator(x *exchange) error {
-	dew, err := p.fluid.DewPointAtPressure(p.out.P)
+	dew, err := p.edge(p.out.P, p.fluid.DewPointAtPressure)
 	if err != nil {
 		return err
 	}
