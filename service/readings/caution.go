@@ -14,6 +14,7 @@ const (
 	MoreDrawsNeeded   CautionCode = "more_draws_needed"   // too few random draws
 	DrawsFailed       CautionCode = "draws_failed"        // random draws without a result
 	NoExpectedValues  CautionCode = "no_expected_values"  // the given machine has no operating point here
+	BeyondMachine     CautionCode = "beyond_machine"      // the given machine breaks a limit here
 	CircularMap       CautionCode = "circular_map"        // the machine's map takes part in a result
 	FewSamples        CautionCode = "few_samples"         // a mean of fewer than 30
 	Safety            CautionCode = "safety"              // who may work on a machine

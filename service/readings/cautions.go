@@ -37,7 +37,7 @@ func (w *work) cautionAssumed(r *Result) {
 			r.caution(Assumed, in.Name, "", message("no uncertainty given: a standard uncertainty of %s is assumed (common practice)", uncertaintyOf(reading, in.Standard)))
 		}
 	}
-	if w.defaultLoss != none && w.rises {
+	if w.defaultLoss != none && w.rises && !w.evaluator.lossStated {
 		r.caution(Assumed, HeatLossFraction.String(), "", message(
 			"no heat loss of the compressor given: none is assumed, with a standard uncertainty of %s of its power; hermetic compressors lose %s to %s (common practice)",
 			plain(heatLossUncertainty), plain(0.02), plain(0.15)))

@@ -15,6 +15,11 @@ type Machine interface {
 	Flow(suctionPressure, suctionTemperature, dischargePressure, speed float64) (flow, relative float64, err error)
 }
 
+// heatLosing is a machine that states which share of its power does not reach the refrigerant, and how sure that is.
+type heatLosing interface {
+	HeatLoss() (fraction, standard float64, ok bool)
+}
+
 // Conditions are what a sample says of the surroundings. Values that are not read are NaN.
 type Conditions struct {
 	Source, Sink StreamConditions
@@ -58,24 +63,26 @@ const (
 type featureRow struct {
 	name     string
 	quantity cycle.Quantity
-	basic    bool // not a function of other features
+	// Basic features make up the test whether there is any deviation, and none of them is a function of others. Following
+	// ones are functions of others, and add nothing to the likelihood of a fault that those have not added already.
+	basic, following bool
 }
 
 var featureTable = [FeatureCount]featureRow{
-	{"t_evap", cycle.Temperature, true},
-	{"p_evap", cycle.Pressure, false},
-	{"superheat", cycle.TemperatureDifference, true},
-	{"t_cond", cycle.Temperature, true},
-	{"p_cond", cycle.Pressure, false},
-	{"subcooling", cycle.TemperatureDifference, true},
-	{"t_discharge", cycle.Temperature, true},
-	{"pressure_ratio", cycle.Dimensionless, false},
-	{"dt_condenser_fluid", cycle.TemperatureDifference, true},
-	{"dt_evaporator_fluid", cycle.TemperatureDifference, true},
-	{"approach_condenser", cycle.TemperatureDifference, false},
-	{"approach_evaporator", cycle.TemperatureDifference, false},
-	{"capacity", cycle.HeatFlow, true},
-	{"power", cycle.Power, true},
+	FeatureEvaporation:        {name: "t_evap", quantity: cycle.Temperature, basic: true},
+	FeatureLowPressure:        {name: "p_evap", quantity: cycle.Pressure},
+	FeatureSuperheat:          {name: "superheat", quantity: cycle.TemperatureDifference, basic: true},
+	FeatureCondensation:       {name: "t_cond", quantity: cycle.Temperature, basic: true},
+	FeatureHighPressure:       {name: "p_cond", quantity: cycle.Pressure},
+	FeatureSubcooling:         {name: "subcooling", quantity: cycle.TemperatureDifference, basic: true},
+	FeatureDischarge:          {name: "t_discharge", quantity: cycle.Temperature, basic: true},
+	FeaturePressureRatio:      {name: "pressure_ratio", quantity: cycle.Dimensionless, following: true},
+	FeatureCondenserChange:    {name: "dt_condenser_fluid", quantity: cycle.TemperatureDifference, basic: true},
+	FeatureEvaporatorChange:   {name: "dt_evaporator_fluid", quantity: cycle.TemperatureDifference, basic: true},
+	FeatureCondenserApproach:  {name: "approach_condenser", quantity: cycle.TemperatureDifference, following: true},
+	FeatureEvaporatorApproach: {name: "approach_evaporator", quantity: cycle.TemperatureDifference, following: true},
+	FeatureCapacity:           {name: "capacity", quantity: cycle.HeatFlow, basic: true},
+	FeaturePower:              {name: "power", quantity: cycle.Power, basic: true},
 }
 
 func (f Feature) String() string {

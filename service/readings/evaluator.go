@@ -22,7 +22,10 @@ type Evaluator struct {
 	ambient      float64 // standard uncertainty of the ambient pressure, Pa; 0 without gauges
 	ambientKnown bool    // it was given
 	model        float64
-	works        sync.Pool
+	// What is taken for the heat loss of the compressor where no reading tells, and its standard uncertainty.
+	lossValue, lossDoubt float64
+	lossStated           bool // the machine tells it
+	works                sync.Pool
 }
 
 // stated is an uncertainty of an installation that was checked.
@@ -55,6 +58,12 @@ func New(i *Installation, o *Options) (*Evaluator, error) {
 	}
 	if m := i.ModelUncertainty; m != nil {
 		e.model = *m
+	}
+	e.lossDoubt = heatLossUncertainty
+	if m, can := i.Machine.(heatLosing); can {
+		if f, u, ok := m.HeatLoss(); ok {
+			e.lossValue, e.lossDoubt, e.lossStated = f, u, true
+		}
 	}
 	e.works.New = func() any { return &work{evaluator: e} }
 	return e, nil

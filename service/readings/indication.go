@@ -24,8 +24,10 @@ func indicate(k *Comparison, scheme string) []Indication {
 				continue
 			}
 			e := Evidence{r.Feature, sign, r.Normalised, sign.probability(r.Normalised), math.Abs(r.Normalised) > strong}
-			signs++
-			i.Score += math.Log(e.Probability)
+			if !featureTable[r.Feature].following {
+				signs++
+				i.Score += math.Log(e.Probability)
+			}
 			if e.Probability >= 0.5 {
 				i.For = append(i.For, e)
 				if e.Strong && sign != Stays {
@@ -35,7 +37,7 @@ func indicate(k *Comparison, scheme string) []Indication {
 				i.Against = append(i.Against, e)
 			}
 		}
-		if supporting < strongFeatures {
+		if supporting < strongFeatures || signs == 0 {
 			continue
 		}
 		i.Score /= float64(signs)

@@ -40,9 +40,10 @@ func (w *work) collect() {
 	w.ambient = w.add(uncertainty.Input{Name: "ambient_pressure", Standard: e.ambient, Distribution: uncertainty.Rectangular, Assumed: !e.ambientKnown})
 	w.exchange = w.addFactor("property_model.exchange", e.model, e.installation.ModelUncertainty == nil)
 	w.compression = w.addFactor("property_model.compression", e.model, e.installation.ModelUncertainty == nil)
-	w.defaultLoss = none
+	w.defaultLoss, w.lossValue = none, 0
 	if !s.has(HeatLossFraction) && !w.shell() {
-		w.defaultLoss = w.add(uncertainty.Input{Name: HeatLossFraction.String(), Standard: heatLossUncertainty, Assumed: true})
+		w.lossValue = e.lossValue
+		w.defaultLoss = w.add(uncertainty.Input{Name: HeatLossFraction.String(), Value: e.lossValue, Standard: e.lossDoubt, Assumed: true})
 	}
 	for of := range sideCount {
 		w.density[of], w.heatCapacity[of] = none, none

@@ -68,7 +68,25 @@ func readSignatures(text string) (map[string][]signature, error) {
 		list[i].signs[feature] = Sign(sign + 1)
 		out[scheme] = list
 	}
+	holdSuperheat(out[practiceScheme])
 	return out, nil
+}
+
+// uncontrolled are the faults in which the valve does not control: its own, and that of liquid which gets past it.
+var uncontrolled = []string{"expansion_device_too_open", "liquid_floodback"}
+
+// holdSuperheat softens the signs of the superheat: a valve that works holds it until it is wide open or closed.
+func holdSuperheat(list []signature) {
+	for i := range list {
+		sign := &list[i].signs[FeatureSuperheat]
+		switch {
+		case slices.Contains(uncontrolled, list[i].fault):
+		case *sign == Rises:
+			*sign = StaysOrRise
+		case *sign == Falls:
+			*sign = StaysOrFall
+		}
+	}
 }
 
 // Faults returns the faults whose signs are known for an expansion device.

@@ -31,6 +31,7 @@ type work struct {
 	streamObstacles                 [sideCount]error
 	releases, takes, rises, isIdeal bool // differences of enthalpy that take part
 	mapTells                        bool
+	lossValue                       float64 // of the power, where no reading tells
 	weights                         [sizedCount][routeCount]float64
 
 	points  [placeCount]point
@@ -211,7 +212,7 @@ func (w *work) heatLoss() uncertainty.Linear {
 		heat := c.Scaled(c.Difference(w.reading(ShellTemperature), w.reading(AmbientTemperature)), *w.evaluator.installation.ShellConductance)
 		return c.Quotient(heat, w.reading(CompressorPower))
 	}
-	return w.input(w.defaultLoss, 0)
+	return w.input(w.defaultLoss, w.lossValue)
 }
 
 // meet finds the heat of a stream.
