@@ -205,6 +205,9 @@ func (r *cycleRequest) si(j *job, upper []*job) (*cycle.Request, error) {
 		SinkTemperature:    u.optional(kindTemperature, r.SinkTemperature),
 		AmbientTemperature: u.optional(kindTemperature, r.AmbientTemperature),
 	}
+	if u.ambient > 0 {
+		q.AmbientPressure = new(u.ambient)
+	}
 	q.With = combined(&c, "#/with", r.With)
 	if g := r.GasCooler; g != nil {
 		q.GasCooler = &cycle.GasCooler{

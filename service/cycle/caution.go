@@ -40,8 +40,7 @@ const (
 	usualRatio        = 10.0         // one stage, reciprocating; 8 to 10 are usual
 	poorEjector       = 0.15         // efficiency by Elbel and Hrnjak
 	bestEjector       = 0.35
-	nearCriticalShare = 0.98     // of the critical pressure: latent heat and densities change steeply from there
-	atmosphere        = 101325.0 // Pa
+	nearCriticalShare = 0.98 // of the critical pressure: latent heat and densities change steeply from there
 )
 
 // noticedGlide is the difference of dew and bubble temperature from which a vessel parts the components of a blend, K.
@@ -63,7 +62,7 @@ func (c *circuit) raise(s *Solution) {
 	lowest := -1
 	for i := range s.States {
 		at := &s.States[i]
-		if at.State.P < atmosphere && (lowest < 0 || at.State.P < s.States[lowest].State.P) {
+		if at.State.P < c.air && (lowest < 0 || at.State.P < s.States[lowest].State.P) {
 			lowest = i
 		}
 		if x, can := at.Refrigerant.(extrapolator); can && x.Extrapolated(at.State) {
@@ -73,7 +72,7 @@ func (c *circuit) raise(s *Solution) {
 	if lowest >= 0 {
 		at := &s.States[lowest]
 		c.caution(Caution{Code: BelowAtmosphere, Label: at.Label, Message: message(
-			"the pressure falls to %s, below the standard atmosphere: a leak draws air and moisture in", pressure(at.State.P))})
+			"the pressure falls to %s, below that of the air around, %s: a leak draws air and moisture in", pressure(at.State.P), pressure(c.air))})
 	}
 	for i := range c.nodeCount {
 		c.raiseAt(&c.nodes[i])

@@ -73,6 +73,17 @@ func TestCautions(t *testing.T) {
 	}
 }
 
+// TestThinAir: what counts is the air around the machine. At 1500 m it has 84.6 kPa by ISO 2533 (from memory).
+func TestThinAir(t *testing.T) {
+	r := heatPump(t)
+	r.Evaporation.Temperature, r.AmbientPressure = new(230.0), new(84.6e3)
+	for _, c := range solve(t, r).Cautions {
+		if c.Code == cycle.BelowAtmosphere {
+			t.Errorf("boiling a degree below the normal boiling point: %s", c.Message)
+		}
+	}
+}
+
 // TestWetSuctionCOP: the compressor works with the two-phase state it is given.
 func TestWetSuctionCOP(t *testing.T) {
 	r := heatPump(t)

@@ -29,6 +29,7 @@ type plan struct {
 
 	size                  size
 	source, sink, ambient float64 // K
+	air                   float64 // Pa, around the machine
 
 	cautions []Caution
 	refusals []Refusal // of the check of the request

@@ -39,6 +39,7 @@ type Request struct {
 	SourceTemperature  *float64 // "source_temperature", K: what the evaporator takes heat from
 	SinkTemperature    *float64 // "sink_temperature", K: what the condenser gives heat to
 	AmbientTemperature *float64 // "ambient_temperature", K: dead state; what lines and compressor shells exchange heat with
+	AmbientPressure    *float64 // "site.ambient_pressure", Pa: of the air around the machine; nil means the standard atmosphere
 }
 
 // Evaporation fixes the evaporator outlet. Exactly one of Temperature and Pressure is given.

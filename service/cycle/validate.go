@@ -6,7 +6,7 @@ import (
 	"strings"
 )
 
-// Defaults for what a request leaves out. All are common practice, and each use of one is a caution.
+// Defaults for what a request leaves out. All are common practice, and each use of one but the last two is a caution.
 const (
 	defaultIsentropicEfficiency = 0.65
 	defaultVolumetricEfficiency = 0.90
@@ -15,8 +15,9 @@ const (
 	defaultInjectionSuperheat   = 5.0    // K
 	defaultNozzleEfficiency     = 0.8
 	defaultDiffuserEfficiency   = 0.75
-	defaultSuctionChamberDrop   = 30e3 // Pa
-	defaultHighPressureMax      = 14e6 // Pa
+	defaultSuctionChamberDrop   = 30e3     // Pa
+	defaultHighPressureMax      = 14e6     // Pa
+	defaultAmbientPressure      = 101325.0 // Pa, the standard atmosphere
 )
 
 // Bounds of numbers as such. They keep nonsense away from the property model, whose own limits are tighter.
@@ -40,6 +41,7 @@ func (v *plan) fill(r *Request) {
 	v.drops(r)
 	v.parts(r)
 	v.sized(r.Size)
+	v.air = v.orDefault("site.ambient_pressure", r.AmbientPressure, &pressureBounds, defaultAmbientPressure)
 }
 
 func (v *plan) wrong(code RefusalCode, field string, m Message) {
