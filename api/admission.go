@@ -6,7 +6,6 @@ import (
 	"errors"
 	"net/http"
 	"runtime"
-	"strconv"
 	"sync/atomic"
 	"time"
 
@@ -24,7 +23,7 @@ type admission struct {
 	batches     chan struct{} // a place is taken by each long batch, from its body to the last byte of its answer
 	streams     chan struct{} // likewise by each stream
 	queue       int           // requests that may wait for a slot of a pool
-	deadline    time.Duration // for one calculation, its wait included; a stream has none
+	deadline    time.Duration // for one calculation, its wait included; a table in rows has it for each, a stream has none
 }
 
 // The default limits of admission.
@@ -53,7 +52,7 @@ func defaultSlots() int { return 4 * runtime.GOMAXPROCS(0) }
 func longSlots() int { return max(1, runtime.GOMAXPROCS(0)*3/4) }
 
 const (
-	longItems = 64          // a batch of more items is long work
+	longItems = 64          // a batch of more states, or of what costs as much, is long work
 	longBody  = 64 << 10    // bytes; so is a larger body, whatever it holds
 	queueWait = time.Second // nobody waits longer for a slot to begin
 )
@@ -97,7 +96,8 @@ func (p *pool) release() { <-p.slots }
 type ticket struct {
 	a      *API
 	ctx    context.Context // ends with the client's patience or at the deadline
-	cancel context.CancelFunc
+	cancel context.CancelCauseFunc
+	clock  *time.Timer // rings at the deadline
 	pool   *pool
 	held   bool // a slot of pool
 	batch  bool // a place among the batches
@@ -147,7 +147,7 @@ func busy(detail string) *Problem {
 // limit gives a request a ticket, with which [API.decode] admits it once its body is read, and takes back what the handler
 // still holds in the end.
 func (a *API) limit(c *gin.Context) {
-	t := &ticket{a: a, ctx: c.Request.Context(), cancel: func() {}, pool: a.admission.short}
+	t := &ticket{a: a, ctx: c.Request.Context(), cancel: func(error) {}, pool: a.admission.short}
 	c.Set(ticketKey, t)
 	defer t.close()
 	c.Next()
@@ -169,8 +169,9 @@ func (a *API) admit(c *gin.Context) error {
 	if t == nil {
 		return nil
 	}
-	ctx, cancel := context.WithTimeoutCause(c.Request.Context(), a.admission.deadline, errDeadline)
+	ctx, cancel := context.WithCancelCause(c.Request.Context())
 	t.ctx, t.cancel = context.WithValue(ctx, ticketContextKey{}, t), cancel
+	t.clock = time.AfterFunc(a.admission.deadline, func() { cancel(errDeadline) })
 	c.Request = c.Request.WithContext(t.ctx)
 	return t.start()
 }
@@ -182,7 +183,10 @@ func (t *ticket) close() {
 		t.batch = false
 		<-t.a.admission.batches
 	}
-	t.cancel()
+	if t.clock != nil {
+		t.clock.Stop()
+	}
+	t.cancel(context.Canceled)
 }
 
 // start takes a slot, waiting for it among few others and not for long.
@@ -241,7 +245,7 @@ func (t *ticket) lengthen() error {
 	case t.a.admission.batches <- struct{}{}:
 		t.batch = true
 	default:
-		return t.a.turnAway(refusedBatches, busy("too many batches of more than "+strconv.Itoa(longItems)+" items are under way"))
+		return t.a.turnAway(refusedBatches, busy("too many large batches are under way"))
 	}
 	began := t.held
 	t.pause()
@@ -252,10 +256,11 @@ func (t *ticket) lengthen() error {
 	return nil
 }
 
-// batch enters how many items a request has, which makes long work of it if they are many.
-func (a *API) batch(c *gin.Context, items int) error {
+// batch enters how many items a request has, which makes long work of it if they are many. Each costs as much as so many
+// states.
+func (a *API) batch(c *gin.Context, items, states int) error {
 	a.metrics.batch(c, items)
-	if items <= longItems {
+	if items*states <= longItems {
 		return nil
 	}
 	return ticketOf(c).lengthen()
@@ -295,6 +300,29 @@ func (t *ticket) breathe() error {
 	}
 	t.pause()
 	return t.resume()
+}
+
+// share is for work whose pieces run on goroutines of their own: the request gives its slot back, and each piece takes one
+// when it begins and releases it when it ends.
+func (t *ticket) share() (admit func(context.Context) (release func(), err error)) {
+	if t == nil {
+		return nil
+	}
+	t.pause()
+	p := t.pool
+	return func(ctx context.Context) (func(), error) {
+		if err := p.wait(ctx); err != nil {
+			return nil, err
+		}
+		return p.release, nil
+	}
+}
+
+// renew gives a request its whole time again, because who gets a table row by row sees that it goes on.
+func (t *ticket) renew() {
+	if t != nil && t.clock != nil {
+		t.clock.Reset(t.a.admission.deadline)
+	}
 }
 
 // helper takes a slot for one more goroutine of the work of ctx, if one is free. The goroutine ends when relieved says so,

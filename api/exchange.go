@@ -1,6 +1,7 @@
 package api
 
 import (
+	"cmp"
 	"context"
 	"crypto/sha256"
 	"encoding/base64"
@@ -207,6 +208,9 @@ const statusClientGone = 499
 
 // fail answers with the problem that err is.
 func (a *API) fail(c *gin.Context, err error) {
+	if errors.Is(err, context.Canceled) || errors.Is(err, context.DeadlineExceeded) { // which of them is the cause?
+		err = cmp.Or(context.Cause(c.Request.Context()), err)
+	}
 	_ = c.Error(err) // for the request log
 	if errors.Is(err, context.Canceled) {
 		c.Status(statusClientGone)

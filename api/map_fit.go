@@ -85,7 +85,9 @@ func (a *API) fitMap(c *gin.Context) (any, error) {
 	if err != nil {
 		return nil, err
 	}
-	a.metrics.batch(c, len(points))
+	if err := a.batch(c, len(points), 1); err != nil {
+		return nil, err
+	}
 	var all account
 	v := machineVoice{voice: voice{units: u}, condition: "#"}
 	fit, err := machine.FitMap(points, sheet.si(), req.PressureAxis)

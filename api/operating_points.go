@@ -2,9 +2,6 @@ package api
 
 import (
 	"context"
-	"runtime"
-	"sync"
-	"sync/atomic"
 
 	"github.com/gin-gonic/gin"
 
@@ -45,6 +42,9 @@ func (r *condition) si(f *fluids, c *choices, at string) machine.Condition {
 	}
 }
 
+// statesPerOperatingPoint is about how many states one operating point costs as much as.
+const statesPerOperatingPoint = 32
+
 // operatingPoints answers POST /v1/operating-points.
 func (a *API) operatingPoints(c *gin.Context) (any, error) {
 	var req operatingPointsRequest
@@ -65,7 +65,9 @@ func (a *API) operatingPoints(c *gin.Context) (any, error) {
 	for i := range req.Conditions {
 		conditions[i] = req.Conditions[i].si(f, &faults[i], place{"#/conditions", i}.String())
 	}
-	a.metrics.batch(c, len(conditions))
+	if err := a.batch(c, len(conditions), statesPerOperatingPoint); err != nil {
+		return nil, err
+	}
 	points := make([]pointItem, len(conditions))
 	answer := func(ctx context.Context, i int) {
 		p := &points[i]
@@ -78,7 +80,7 @@ func (a *API) operatingPoints(c *gin.Context) (any, error) {
 			voice: voice{units: j.units, r: j.r}, condition: place{"#/conditions", i}.String(), oneMap: req.Machine.Compressor.Map != nil,
 		})
 	}
-	if err := inParallel(c.Request.Context(), len(points), answer); err != nil {
+	if err := inParallel(c.Request.Context(), len(points), func(i int) { answer(c.Request.Context(), i) }); err != nil {
 		return nil, err
 	}
 	var all account
@@ -109,27 +111,6 @@ func problemOrNil(err error) *Problem {
 		return nil
 	}
 	return problemFor(err)
-}
-
-// inParallel calls work for the numbers below n on all processors. It returns the cause when ctx ends first.
-func inParallel(ctx context.Context, n int, work func(ctx context.Context, i int)) error {
-	var next atomic.Int64
-	take := func() {
-		for ctx.Err() == nil {
-			i := int(next.Add(1)) - 1
-			if i >= n {
-				return
-			}
-			work(ctx, i)
-		}
-	}
-	var wg sync.WaitGroup
-	for range min(runtime.GOMAXPROCS(0), n) - 1 {
-		wg.Go(take)
-	}
-	take()
-	wg.Wait()
-	return context.Cause(ctx)
 }
 
 // operatingPointsResponse holds the answers in the order of the conditions.

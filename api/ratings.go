@@ -105,7 +105,10 @@ func (a *API) rate(c *gin.Context) error {
 		return invalidItem(MemberError{Pointer: "#/source_temperatures", Code: "too_many", Detail: fmt.Sprintf(
 			"%d source temperatures, %d sink temperatures and %d speeds make %d rows; allowed are %d at most", len(g.SourceTemperatures), len(g.SinkTemperatures), max(1, len(g.Speeds)), rows, a.maxPoints)})
 	}
-	a.metrics.batch(c, rows)
+	if err := a.batch(c, rows, statesPerOperatingPoint); err != nil {
+		return err
+	}
+	g.Admit = ticketOf(c).share()
 	t := &ratingTable{
 		job: j, out: bufio.NewWriterSize(c.Writer, maxLine), context: c, media: accepted(c), now: a.now, request: &req,
 		voice: machineVoice{voice: voice{units: j.units, r: j.r}, condition: "#", oneMap: req.Machine.Compressor.Map != nil},
@@ -116,14 +119,16 @@ func (a *API) rate(c *gin.Context) error {
 		if row.Point != nil {
 			a.metrics.iterations.WithLabelValues("operating_point").Observe(float64(row.Point.Evaluations))
 		}
-		return t.add(&row)
+		err := t.add(&row)
+		ticketOf(c).renew()
+		return err
 	}); err == nil {
 		err = t.end()
 	}
 	switch {
 	case err == nil || errors.Is(err, errClientGone):
 		return nil
-	case t.begun && errors.Is(ctx.Err(), context.Canceled):
+	case t.begun && errors.Is(context.Cause(ctx), context.Canceled):
 		return nil // nobody reads the rest
 	case t.begun:
 		panic(http.ErrAbortHandler) // half a table must not look complete

@@ -85,7 +85,7 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 	if err != nil {
 		return nil, err
 	}
-	if err := a.batch(c, len(points)); err != nil {
+	if err := a.batch(c, len(points), 2); err != nil {
 		return nil, err
 	}
 	var all account

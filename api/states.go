@@ -62,7 +62,7 @@ func (a *API) states(c *gin.Context) (any, error) {
 	if err != nil {
 		return nil, err
 	}
-	if err := a.batch(c, len(req.Points)); err != nil {
+	if err := a.batch(c, len(req.Points), 1); err != nil {
 		return nil, err
 	}
 	resp := &statesResponse{job: j, kinds: shown.kinds()}

@@ -1,5 +1,7 @@
 package machine
 
+import "context"
+
 // Grid is a table of conditions: every source temperature with every sink temperature and every speed, in this order of
 // nesting, the speeds innermost.
 type Grid struct {
@@ -12,6 +14,9 @@ type Grid struct {
 	SinkByInlet        bool
 	// Workers is how many rows are computed at the same time; 0 means as many as there are cores to run on.
 	Workers int
+	// Admit, unless nil, is called before each row, by several workers at once. It may wait, and the row ends with release. An
+	// error of it, which ends the row, is for a context that has ended.
+	Admit func(context.Context) (release func(), err error)
 }
 
 // Row is one row of a rating table: an operating point, or the reason why there is none.

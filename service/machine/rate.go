@@ -90,6 +90,14 @@ func Rate(ctx context.Context, m *Machine, g *Grid, yield func(Row) error) error
 // row computes one row.
 func (g *Grid) row(ctx context.Context, u *unit, i int) Row {
 	k, row := g.condition(i)
+	if g.Admit != nil {
+		release, err := g.Admit(ctx)
+		if err != nil {
+			row.Err = err
+			return row
+		}
+		defer release()
+	}
 	row.Point, row.Err = u.solve(ctx, &k)
 	return row
 }
