@@ -283,6 +283,37 @@ func TestSlowReader(t *testing.T) {
 	})
 }
 
+// Whoever takes a rating table slowly holds no slot meanwhile. The deadline is for each row, so that the table as a whole
+// may take longer.
+func TestSlowReaderOfTable(t *testing.T) {
+	body := hugeGrid(t)
+	synctest.Test(t, func(t *testing.T) {
+		a := newAPI(t, nil)
+		c := piped(t, a).dial()
+		defer c.Close()
+		text := strings.Replace(head(mediaJSON, len(body)), "/v1/states HTTP/1.1\r\n", "/v1/ratings HTTP/1.1\r\nAccept: "+mediaLines+"\r\n", 1)
+		if _, err := io.WriteString(c, text+body); err != nil {
+			t.Fatal(err)
+		}
+		answer := bufio.NewReaderSize(c, 16)
+		for range 5 {
+			synctest.Wait()
+			if slotsTaken(a) != 0 || len(a.admission.batches) != 1 {
+				t.Errorf("%d slots and %d places taken", slotsTaken(a), len(a.admission.batches))
+			}
+			time.Sleep(DefaultDeadline - time.Second)
+			if _, err := answer.Discard(3000); err != nil {
+				t.Fatal(err)
+			}
+		}
+		time.Sleep(2 * time.Minute)
+		synctest.Wait()
+		if len(a.admission.batches) != 0 {
+			t.Error("the place is still taken")
+		}
+	})
+}
+
 // A client that stalls in the middle of its body holds no slot, and is cut off.
 func TestSlowBody(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
