@@ -84,6 +84,31 @@ func TestThinAir(t *testing.T) {
 	}
 }
 
+// TestCompositionShift: a vessel parts a blend, an economiser that boils a branch of it away does not. Taking both phases as
+// the blend itself makes the vessel destroy entropy, for which no request is refused.
+func TestCompositionShift(t *testing.T) {
+	c, err := catalogue()
+	if err != nil {
+		t.Fatal(err)
+	}
+	blend, err := c.Refrigerant("R407C", props.IIR)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for layout, want := range map[cycle.Layout]bool{
+		cycle.SingleStage: false, cycle.EconomisedSubcooler: false, cycle.EconomisedFlash: true, cycle.TwoStageFlash: true, cycle.ParallelCompression: true,
+	} {
+		r := heatPump(t)
+		r.Refrigerant, r.Layout = blend, layout
+		if layout == cycle.ParallelCompression {
+			r.Intermediate = &cycle.Intermediate{Temperature: new(290.0)}
+		}
+		if got := slices.ContainsFunc(solve(t, r).Cautions, func(c cycle.Caution) bool { return c.Code == cycle.CompositionShift }); got != want {
+			t.Errorf("%s: caution %t, want %t", layout, got, want)
+		}
+	}
+}
+
 // TestWetSuctionCOP: the compressor works with the two-phase state it is given.
 func TestWetSuctionCOP(t *testing.T) {
 	r := heatPump(t)

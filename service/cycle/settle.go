@@ -186,7 +186,7 @@ func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
 		if b.entropy < k.SmallestEntropyGeneration {
 			k.SmallestEntropyGeneration, k.SmallestComponent = b.entropy, comp.Name
 		}
-		if b.entropy < -tolerance {
+		if b.entropy < -tolerance && !c.partsBlend(a.part) {
 			c.refuse(c.againstSecondLaw(a, b.entropy))
 		}
 	}

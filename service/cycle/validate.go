@@ -337,6 +337,17 @@ func (v *plan) compressor(f *compressorFields, k *Compressor) efficiencies {
 // hasSecond reports whether the layout has a second compressor or a second step of compression.
 func (v *plan) hasSecond() bool { return v.layout != SingleStage && v.layout != Ejector }
 
+// hasVessel reports whether liquid and vapour part in a vessel at the intermediate pressure.
+func (v *plan) hasVessel() bool {
+	switch v.layout {
+	case EconomisedFlash, TwoStageFlash, ParallelCompression, Ejector:
+		return true
+	case TwoStageIntercooled:
+		return v.intercooler.kind == ClosedIntercooler
+	}
+	return false
+}
+
 func (v *plan) secondCompressor(r *Request) efficiencies {
 	switch k := r.SecondCompressor; {
 	case !v.hasSecond():

@@ -47,6 +47,13 @@ func (c *circuit) separate(as part, in *node, atLiquid place, ofLiquid stream, a
 	return liquid, vapour, share
 }
 
+// partsBlend reports whether a component is a vessel that parts liquid and vapour of a zeotropic blend. Both are taken to
+// have the composition of the blend, so that such a vessel may seem to destroy entropy, which is no fault of the request.
+func (c *circuit) partsBlend(p part) bool {
+	vessel := p == flashTank || p == receiver || p == separator || p == intercooler
+	return vessel && c.hasVessel() && !c.fluid.withoutGlide()
+}
+
 // mix joins two flows at the pressure of the first.
 func (c *circuit) mix(as part, a, b *node, at place, of stream) *node {
 	fa, fb := c.flow(a), c.flow(b)
