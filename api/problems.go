@@ -245,9 +245,7 @@ func (v voice) refused(e *cycle.RefusedError) *Problem {
 			f.Detail += " (state " + r.Label + ")"
 		}
 		if r.Cause != nil {
-			inner := v
-			inner.given = nil
-			f.Detail += ": " + inner.problem(r.Cause).Error()
+			f.Detail += ": " + v.cause(r.Cause)
 		}
 		faults = append(faults, f)
 	}
