@@ -11,7 +11,7 @@ import (
 // the air by its temperature and moisture by its humidity ratio (Lewis number 1), passed on through the inner resistance.
 // It is what the models of whole coils approximate.
 func integrated(k *strip, ua float64) (heat float64, out airState) {
-	const steps = 20000
+	const steps = 2000
 	outer, inner := ua/k.share, math.Inf(1)
 	if k.share < 1 {
 		inner = ua / (1 - k.share)
@@ -29,7 +29,7 @@ func integrated(k *strip, ua float64) (heat float64, out airState) {
 			return dry, wet
 		}
 		low, high := k.T1, T
-		for range 60 {
+		for range 45 {
 			s := (low + high) / 2
 			dry, wet := arrives(s)
 			if total := dry + wet*latent(s); total > inner/steps*(s-k.T1) {

@@ -14,7 +14,7 @@ type OperatingPoint struct {
 	DischargePressure       float64 // Pa, at the compressor's discharge flange
 	Superheat               float64 // K, at the evaporator outlet
 	Speed                   float64 // 1/s; NaN for a compressor without one
-	SourceTemperature       float64 // K, entropy mean of the source over its change
+	SourceTemperature       float64 // K, entropy mean of the source over its change, by dry bulb for moist air
 	SinkTemperature         float64 // K, likewise
 	Evaporator              ExchangerResult
 	Condenser               ExchangerResult // the gas cooler too

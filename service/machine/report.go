@@ -16,6 +16,14 @@ func (t *trial) report(s *settled, clamped *Caution) (*OperatingPoint, error) {
 	if err := s.apart(); err != nil {
 		return nil, err
 	}
+	if s.evaporator.coil() { // condensation decides how warm the air leaves
+		first, err := t.tryAt(t.on, s.y)
+		if err != nil {
+			return nil, t.impossible(err)
+		}
+		first.evaporator.result(first.levels[low])
+		s.evaporator.stream.outT = first.evaporator.stream.outT
+	}
 	// The means are those of the secondary streams, so that entropy generation counts the exchangers' own.
 	t.sourceMean, t.sinkMean = s.evaporator.stream.entropyMean(), s.condenser.stream.entropyMean()
 	t.request.SourceTemperature, t.request.SinkTemperature = &t.sourceMean, &t.sinkMean

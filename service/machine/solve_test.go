@@ -13,7 +13,7 @@ import (
 
 // airWater is a plain R290 machine between 7 °C air and 30/35 °C water.
 func airWater(t testing.TB) (*Machine, *Condition) {
-	return &Machine{
+	m := &Machine{
 		Refrigerant: refrigerant(t, "R290"), Layout: cycle.SingleStage, Purpose: cycle.Heating,
 		Compressor: Compressor{
 			SweptVolume:          new(40e-6),
@@ -24,10 +24,12 @@ func airWater(t testing.TB) (*Machine, *Condition) {
 		Evaporator: Exchanger{UA: new(900.0), SecondaryShare: new(0.7), SuperheatRatio: new(0.5)},
 		Condenser:  Exchanger{UA: new(1500.0), DesuperheatRatio: new(0.4), SubcoolingRatio: new(0.4)},
 		Superheat:  new(5.0), Subcooling: new(3.0),
-	}, &Condition{
+	}
+	k := &Condition{
 		Source: Stream{InletTemperature: new(280.15), RelativeHumidity: new(0.87), VolumeFlow: new(0.9)},
 		Sink:   Stream{Liquid: water(), InletTemperature: new(303.15), OutletTemperature: new(308.15)},
 	}
+	return m, k
 }
 
 // waterWater is the same compressor between 12/7 °C and 30/35 °C water.
@@ -217,6 +219,12 @@ func TestCoilOfAMachine(t *testing.T) {
 		if !(q.SurfaceTemperature > p.EvaporationTemperature && q.SurfaceTemperature < 280.15) {
 			t.Errorf("%s: surface at %g K", a, q.SurfaceTemperature)
 		}
+	}
+	// Where most of the heat is latent, air that stayed dry would have to leave colder than the refrigerant.
+	n, muggy := airWater(t)
+	muggy.Source.InletTemperature, muggy.Source.RelativeHumidity, muggy.Source.VolumeFlow = new(305.15), new(0.95), new(0.2)
+	if p := solve(t, n, muggy); !(p.Evaporator.Secondary.SensibleRatio < 0.45) || !(p.Evaporator.Secondary.OutletTemperature > p.EvaporationTemperature) {
+		t.Errorf("muggy air: %+v", p.Evaporator.Secondary)
 	}
 	// Dry air gives no water, and moist air more heat.
 	m, k := airWater(t)

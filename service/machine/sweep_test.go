@@ -79,7 +79,7 @@ func scenes(t testing.TB) []scene {
 func TestSweep(t *testing.T) {
 	draws := 20000
 	if testing.Short() {
-		draws = 300
+		draws = 120
 	}
 	all := scenes(t)
 	machines := make([]*Machine, len(all))
