@@ -22,25 +22,13 @@ var layoutNames = [...]string{
 	"two_stage_intercooled", "cascade", "parallel_compression", "transcritical", "ejector",
 }
 
-func (l Layout) String() string {
-	if int(l) >= len(layoutNames) {
-		return ""
-	}
-	return layoutNames[l]
-}
+func (l Layout) String() string { return nameOf(layoutNames[:], l) }
 
 // Layouts returns the names of all layouts.
 func Layouts() []string { return append([]string(nil), layoutNames[1:]...) }
 
 // ParseLayout returns the layout with that name and reports whether there is one.
-func ParseLayout(name string) (Layout, bool) {
-	for i, n := range layoutNames {
-		if n == name && i > 0 {
-			return Layout(i), true
-		}
-	}
-	return 0, false
-}
+func ParseLayout(name string) (Layout, bool) { return parse[Layout](layoutNames[:], name) }
 
 // Purpose says which of the two heat flows is the benefit.
 type Purpose uint8
@@ -53,22 +41,10 @@ const (
 
 var purposeNames = [...]string{"", "heating", "cooling"}
 
-func (p Purpose) String() string {
-	if int(p) >= len(purposeNames) {
-		return ""
-	}
-	return purposeNames[p]
-}
+func (p Purpose) String() string { return nameOf(purposeNames[:], p) }
 
 // ParsePurpose returns the purpose with that name and reports whether there is one.
-func ParsePurpose(name string) (Purpose, bool) {
-	for i, n := range purposeNames {
-		if n == name && i > 0 {
-			return Purpose(i), true
-		}
-	}
-	return 0, false
-}
+func ParsePurpose(name string) (Purpose, bool) { return parse[Purpose](purposeNames[:], name) }
 
 // Reference says what an evaporating or condensing temperature of a zeotropic blend means. For a pure refrigerant without
 // pressure drop both are the same.
@@ -82,19 +58,7 @@ const (
 
 var referenceNames = [...]string{"dew", "mean"}
 
-func (r Reference) String() string {
-	if int(r) >= len(referenceNames) {
-		return ""
-	}
-	return referenceNames[r]
-}
+func (r Reference) String() string { return nameOf(referenceNames[:], r) }
 
 // ParseReference returns the reference with that name and reports whether there is one.
-func ParseReference(name string) (Reference, bool) {
-	for i, n := range referenceNames {
-		if n == name {
-			return Reference(i), true
-		}
-	}
-	return 0, false
-}
+func ParseReference(name string) (Reference, bool) { return parse[Reference](referenceNames[:], name) }

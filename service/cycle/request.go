@@ -85,24 +85,14 @@ const (
 
 var correlationNames = [...]string{"", "liao_2000", "sarkar_2004", "chen_gu_2005"}
 
-func (c Correlation) String() string {
-	if int(c) >= len(correlationNames) {
-		return ""
-	}
-	return correlationNames[c]
-}
+func (c Correlation) String() string { return nameOf(correlationNames[:], c) }
 
 // Correlations returns the names of all correlations.
 func Correlations() []string { return append([]string(nil), correlationNames[1:]...) }
 
 // ParseCorrelation returns the correlation with that name and reports whether there is one.
 func ParseCorrelation(name string) (Correlation, bool) {
-	for i, n := range correlationNames {
-		if n == name && i > 0 {
-			return Correlation(i), true
-		}
-	}
-	return 0, false
+	return parse[Correlation](correlationNames[:], name)
 }
 
 // Objective is what a free pressure is chosen for.
@@ -116,22 +106,10 @@ const (
 
 var objectiveNames = [...]string{"", "cop"}
 
-func (o Objective) String() string {
-	if int(o) >= len(objectiveNames) {
-		return ""
-	}
-	return objectiveNames[o]
-}
+func (o Objective) String() string { return nameOf(objectiveNames[:], o) }
 
 // ParseObjective returns the objective with that name and reports whether there is one.
-func ParseObjective(name string) (Objective, bool) {
-	for i, n := range objectiveNames {
-		if n == name && i > 0 {
-			return Objective(i), true
-		}
-	}
-	return 0, false
-}
+func ParseObjective(name string) (Objective, bool) { return parse[Objective](objectiveNames[:], name) }
 
 // Compressor is one compressor or one step of compression.
 type Compressor struct {
@@ -208,21 +186,11 @@ const (
 
 var intercoolerNames = [...]string{"", "open", "flash_gas_removal", "closed", "external"}
 
-func (k IntercoolerKind) String() string {
-	if int(k) >= len(intercoolerNames) {
-		return ""
-	}
-	return intercoolerNames[k]
-}
+func (k IntercoolerKind) String() string { return nameOf(intercoolerNames[:], k) }
 
 // ParseIntercooler returns the kind of intercooler with that name and reports whether there is one.
 func ParseIntercooler(name string) (IntercoolerKind, bool) {
-	for i, n := range intercoolerNames {
-		if n == name && i > 0 {
-			return IntercoolerKind(i), true
-		}
-	}
-	return 0, false
+	return parse[IntercoolerKind](intercoolerNames[:], name)
 }
 
 // Intercooler sits between the stages of a two-stage layout.

@@ -2,7 +2,6 @@ package cycle
 
 import (
 	"fmt"
-	"math"
 	"strings"
 )
 
@@ -18,13 +17,6 @@ const (
 	defaultSuctionChamberDrop   = 30e3     // Pa
 	defaultHighPressureMax      = 14e6     // Pa
 	defaultAmbientPressure      = 101325.0 // Pa, the standard atmosphere
-)
-
-// Bounds of numbers as such. They keep nonsense away from the property model, whose own limits are tighter.
-const (
-	mostKelvin = 5000.0 // K
-	mostPascal = 1e10   // Pa
-	mostSize   = 1e15   // W, kg/s, m3/s
 )
 
 // fill takes over r: it checks every field, and what belongs together, and fills in the defaults. What is wrong with r is
@@ -56,58 +48,6 @@ func (v *plan) surplus(field, text string) { v.wrong(Surplus, field, message(tex
 func (v *plan) assume(field, text string, n Number) float64 {
 	v.caution(Caution{Code: Assumed, Field: field, Message: message(text, n)})
 	return n.Value
-}
-
-// bounds of a number; an open end does not belong to them.
-type bounds struct {
-	quantity         Quantity
-	min, max         float64
-	openMin, openMax bool
-}
-
-var (
-	temperatureBounds = bounds{Temperature, 0, mostKelvin, true, false}
-	pressureBounds    = bounds{Pressure, 0, mostPascal, true, false}
-	differenceBounds  = bounds{TemperatureDifference, 0, mostKelvin, false, false}
-	changeBounds      = bounds{TemperatureDifference, -mostKelvin, mostKelvin, false, false}
-	dropBounds        = bounds{PressureDifference, 0, mostPascal, false, false}
-	efficiencyBounds  = bounds{Dimensionless, 0, 1, true, false}
-	nozzleBounds      = bounds{Dimensionless, 0, 1, false, false}
-	fractionBounds    = bounds{Dimensionless, 0, 1, false, true}
-	qualityBounds     = bounds{Dimensionless, 0, 1, false, false}
-)
-
-func (b *bounds) hold(x float64) bool {
-	return (b.min < x || b.min == x && !b.openMin) && (x < b.max || x == b.max && !b.openMax)
-}
-
-// number returns the value that p points to, or NaN without one.
-func (v *plan) number(field string, p *float64, b *bounds) float64 {
-	if p == nil {
-		return nan
-	}
-	return v.value(field, *p, b)
-}
-
-// value checks x and returns it, or NaN when it is out of bounds.
-func (v *plan) value(field string, x float64, b *bounds) float64 {
-	if b.hold(x) {
-		return x
-	}
-	least, most := "at least", "at most"
-	if b.openMin {
-		least = "above"
-	}
-	if b.openMax {
-		most = "below"
-	}
-	if math.IsNaN(x) || math.IsInf(x, 0) {
-		v.wrong(OutOfBounds, field, message("a finite number is needed"))
-		return nan
-	}
-	v.wrong(OutOfBounds, field, message("%s is out of bounds: it must be "+least+" %s and "+most+" %s",
-		Number{b.quantity, x}, Number{b.quantity, b.min}, Number{b.quantity, b.max}))
-	return nan
 }
 
 // exactlyOne checks that one of some alternatives is given.
@@ -291,22 +231,6 @@ func (v *plan) objective(field string, o Objective) {
 	}
 }
 
-// orDefault is number with a default that needs no caution.
-func (v *plan) orDefault(field string, p *float64, b *bounds, standard float64) float64 {
-	if p == nil {
-		return standard
-	}
-	return v.value(field, *p, b)
-}
-
-// orAssume is number with a default that needs a caution; text has one %s for it.
-func (v *plan) orAssume(field string, p *float64, b *bounds, standard float64, text string) float64 {
-	if p == nil {
-		return v.assume(field, text, Number{b.quantity, standard})
-	}
-	return v.value(field, *p, b)
-}
-
 // compressorFields are the paths of a compressor's numbers, ready made because most requests need none of them.
 type compressorFields struct{ part, isentropic, discharge, volumetric, heatLoss string }
 
@@ -387,179 +311,6 @@ func (v *plan) drops(r *Request) {
 	v.suctionLine = SuctionLine{v.drop("suction_line", r.SuctionLine.Drop), v.value("suction_line.temperature_rise", r.SuctionLine.TemperatureRise, &changeBounds)}
 	v.dischargeLine = DischargeLine{v.drop("discharge_line", r.DischargeLine.Drop), v.value("discharge_line.temperature_drop", r.DischargeLine.TemperatureDrop, &changeBounds)}
 	v.liquidLine = LiquidLine{v.drop("liquid_line", r.LiquidLine.Drop), v.value("liquid_line.temperature_change", r.LiquidLine.TemperatureChange, &changeBounds)}
-}
-
-// parts takes what only some layouts have and refuses it elsewhere.
-func (v *plan) parts(r *Request) {
-	v.internalExchanger(r.InternalExchanger)
-	v.intermediatePressure(r)
-	v.economiserPart(r.Economiser)
-	v.intercoolerPart(r.Intercooler)
-	v.cascadePart(r)
-	v.ejectorPart(r.Ejector)
-}
-
-func (v *plan) internalExchanger(x *InternalExchanger) {
-	switch {
-	case !v.exchanger && x != nil:
-		v.surplus("internal_exchanger", "an internal exchanger belongs to suction_exchanger, or to transcritical with suction_exchanger")
-	case v.exchanger && (x == nil || x.Effectiveness == nil):
-		v.missing("internal_exchanger.effectiveness", "a suction exchanger needs its effectiveness, 0 to 1")
-	case v.exchanger:
-		v.internal = internalExchange{
-			effectiveness: v.number("internal_exchanger.effectiveness", x.Effectiveness, &nozzleBounds),
-			liquid:        v.drop("internal_exchanger.liquid", x.Liquid),
-			vapour:        v.drop("internal_exchanger.vapour", x.Vapour),
-		}
-	}
-}
-
-func (v *plan) intermediatePressure(r *Request) {
-	v.intermediate = intermediate{pressure: nan, temperature: nan}
-	m := r.Intermediate
-	switch {
-	case !v.hasSecond():
-		if m != nil {
-			v.surplus("intermediate", v.layout.String()+" has no intermediate pressure")
-		}
-		return
-	case m == nil && v.layout == ParallelCompression:
-		v.missing("intermediate", "parallel compression needs the receiver's pressure or dew temperature, or optimise")
-		return
-	case m == nil && v.layout == Cascade:
-		v.caution(Caution{Code: Assumed, Field: "intermediate", Message: message("no intermediate temperature given: geometric mean of evaporating and condensing temperature assumed")})
-		return
-	case m == nil:
-		v.caution(Caution{Code: Assumed, Field: "intermediate", Message: message("no intermediate pressure given: geometric mean of low and high pressure assumed")})
-		return
-	}
-	v.exactlyOne("intermediate", []string{"pressure", "temperature", "optimise"}, m.Pressure != nil, m.Temperature != nil, m.Optimise != NoObjective)
-	v.objective("intermediate.optimise", m.Optimise)
-	v.intermediate = intermediate{
-		pressure:    v.number("intermediate.pressure", m.Pressure, &pressureBounds),
-		temperature: v.number("intermediate.temperature", m.Temperature, &temperatureBounds),
-		optimise:    m.Optimise != NoObjective,
-	}
-	v.optimisable("intermediate.optimise", v.intermediate.optimise)
-}
-
-// optimisable refuses to search a pressure when a measured discharge temperature stands for the compressor's efficiency.
-func (v *plan) optimisable(field string, wanted bool) {
-	if wanted && (isGiven(v.first.dischargeTemperature) || v.hasSecond() && isGiven(v.second.dischargeTemperature)) {
-		v.surplus(field, "a pressure is optimised at given isentropic efficiency; a measured discharge temperature belongs to one pressure")
-	}
-}
-
-func (v *plan) economiserPart(x *Economiser) {
-	if v.layout != EconomisedSubcooler {
-		if x != nil {
-			v.surplus("economiser", "an economiser belongs to economised_subcooler")
-		}
-		return
-	}
-	if x == nil {
-		x = &Economiser{}
-	}
-	v.economiser = economising{
-		approach:  nan,
-		ratio:     v.number("economiser.injection_ratio", x.InjectionRatio, &fractionBounds),
-		superheat: v.orAssume("economiser.injection_superheat", x.InjectionSuperheat, &differenceBounds, defaultInjectionSuperheat, "no superheat of the injection vapour given: %s assumed"),
-	}
-	switch {
-	case x.InjectionRatio == nil:
-		v.economiser.approach = v.orAssume("economiser.approach", x.Approach, &differenceBounds, defaultApproach, "no approach of the economiser given: %s assumed")
-	case x.Approach != nil:
-		v.surplus("economiser.injection_ratio", "give one of approach and injection_ratio")
-	}
-}
-
-func (v *plan) intercoolerPart(x *Intercooler) {
-	kinds := map[Layout][2]IntercoolerKind{
-		TwoStageFlash:       {OpenIntercooler, FlashGasRemoval},
-		TwoStageIntercooled: {ClosedIntercooler, ExternalIntercooler},
-	}
-	allowed, has := kinds[v.layout]
-	if !has {
-		if x != nil {
-			v.surplus("intercooler", "an intercooler belongs to two_stage_flash and two_stage_intercooled")
-		}
-		return
-	}
-	if x == nil {
-		x = &Intercooler{}
-	}
-	kind := x.Kind
-	if kind == DefaultIntercooler {
-		kind = allowed[0]
-	}
-	if kind != allowed[0] && kind != allowed[1] {
-		v.wrong(NotAllowed, "intercooler.kind", message(fmt.Sprintf("the intercooler of %s must be %s or %s", v.layout, allowed[0], allowed[1])))
-	}
-	v.intercooler = intercooling{kind: kind, approach: nan, temperature: nan}
-	switch kind {
-	case ClosedIntercooler, ExternalIntercooler:
-		v.intercooler.approach = v.orAssume("intercooler.approach", x.Approach, &differenceBounds, defaultApproach, "no approach of the intercooler given: %s assumed")
-	default:
-		if x.Approach != nil {
-			v.surplus("intercooler.approach", "an approach belongs to a closed or an external intercooler")
-		}
-	}
-	if kind != ExternalIntercooler {
-		if x.Temperature != nil {
-			v.surplus("intercooler.temperature", "the temperature of water or air belongs to an external intercooler")
-		}
-		return
-	}
-	v.intercooler.temperature = v.number("intercooler.temperature", x.Temperature, &temperatureBounds)
-	if x.Temperature == nil {
-		v.intercooler.temperature = v.sink
-		if !isGiven(v.sink) {
-			v.missing("intercooler.temperature", "an external intercooler needs the temperature of its water or air, or a sink temperature")
-		}
-	}
-}
-
-func (v *plan) cascadePart(r *Request) {
-	x := r.Cascade
-	if v.layout != Cascade {
-		if x != nil {
-			v.surplus("cascade", "an upper circuit belongs to cascade")
-		}
-		return
-	}
-	if x == nil {
-		v.missing("cascade", "a cascade needs its upper circuit: the refrigerant, and if wanted approach, superheat and subcooling")
-		return
-	}
-	if len(x.Upper) != 1 || x.Upper[0] == nil {
-		v.wrong(NotAllowed, "cascade.upper", message("a cascade has two refrigerants: one below, in refrigerant, and exactly one above; %s are given above", plain(float64(len(x.Upper)))))
-		return
-	}
-	v.cascade = cascading{
-		upper:      x.Upper[0],
-		approach:   v.orAssume("cascade.approach", x.Approach, &differenceBounds, defaultApproach, "no approach of the cascade exchanger given: %s assumed"),
-		superheat:  v.orAssume("cascade.superheat", x.Superheat, &differenceBounds, 0, "no superheat given: %s assumed at the upper evaporator's outlet"),
-		subcooling: v.orAssume("cascade.subcooling", x.Subcooling, &differenceBounds, 0, "no subcooling given: %s assumed at the lower condenser's outlet"),
-	}
-}
-
-func (v *plan) ejectorPart(x *EjectorGeometry) {
-	if v.layout != Ejector {
-		if x != nil {
-			v.surplus("ejector", "an ejector belongs to the ejector layout, or to transcritical with ejector")
-		}
-		return
-	}
-	if x == nil {
-		x = &EjectorGeometry{}
-	}
-	v.ejector = ejecting{
-		assumed:  x.MotiveEfficiency == nil || x.SuctionEfficiency == nil || x.DiffuserEfficiency == nil,
-		motive:   v.orAssume("ejector.motive_efficiency", x.MotiveEfficiency, &nozzleBounds, defaultNozzleEfficiency, "no motive nozzle efficiency given: %s assumed"),
-		suction:  v.orAssume("ejector.suction_efficiency", x.SuctionEfficiency, &nozzleBounds, defaultNozzleEfficiency, "no suction nozzle efficiency given: %s assumed"),
-		diffuser: v.orAssume("ejector.diffuser_efficiency", x.DiffuserEfficiency, &nozzleBounds, defaultDiffuserEfficiency, "no diffuser efficiency given: %s assumed"),
-		drop:     v.orAssume("ejector.suction_pressure_drop", x.SuctionPressureDrop, &dropBounds, defaultSuctionChamberDrop, "no pressure drop into the mixing section given: %s assumed"),
-	}
 }
 
 func (v *plan) sized(s *Size) {
