@@ -33,7 +33,7 @@ func (r *Pure) Derived(s State) Derived {
 	}
 }
 
-// domeDerivatives differentiates v = v' + x (v” - v') with x = (h - h')/(h” - h').
+// domeDerivatives differentiates v = v_l + x (v_v - v_l) with x = (h - h_l)/(h_v - h_l), l and v being the saturated phases.
 func (r *Pure) domeDerivatives(s State) Derived {
 	d := r.domeAt(s.T)
 	l, v := r.domeState(&d, 0), r.domeState(&d, 1)
