@@ -131,7 +131,11 @@ func (v voice) problem(err error) *Problem {
 		return unknownRefrigerant(e, "#/refrigerant")
 	}
 	if e, ok := errors.AsType[*props.DatumError](err); ok {
-		detail := fmt.Sprintf("%s has no saturated liquid where %s counts from; allowed are %s", e.Refrigerant, e.Datum, strings.Join(datumNames(e.Allowed), ", "))
+		allowed := "allowed are " + strings.Join(datumNames(e.Allowed), ", ")
+		if len(e.Allowed) == 0 {
+			allowed = "no other datum has one either"
+		}
+		detail := fmt.Sprintf("%s has no saturated liquid where %s counts from; %s", e.Refrigerant, e.Datum, allowed)
 		return unprocessable("datum-not-defined", "Datum not defined", detail, MemberError{Pointer: "#/datum", Code: "not_allowed", Detail: detail})
 	}
 	if e, ok := errors.AsType[*cycle.RefusedError](err); ok {
