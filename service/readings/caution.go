@@ -17,6 +17,7 @@ const (
 	BeyondMachine     CautionCode = "beyond_machine"      // the given machine breaks a limit here
 	CircularMap       CautionCode = "circular_map"        // the machine's map takes part in a result
 	FewSamples        CautionCode = "few_samples"         // a mean of fewer than 30
+	WeatherMoves      CautionCode = "weather_moves"       // a drift that source and sink may explain
 	Safety            CautionCode = "safety"              // who may work on a machine
 )
 

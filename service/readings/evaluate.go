@@ -8,8 +8,9 @@ import (
 	"dewmark/service/readings/uncertainty"
 )
 
-// evaluate answers a sample that was checked.
-func (w *work) evaluate(ctx context.Context, s *Sample) (*Result, error) {
+// evaluate answers a sample that was checked. Worth tells from all but the comparison whether the sample is worth one, which
+// costs far more than the rest; nil means yes.
+func (w *work) evaluate(ctx context.Context, s *Sample, worth func(*Result) bool) (*Result, error) {
 	w.sample = s
 	w.begin()
 	w.pass() // the first pass decides instead of failing
@@ -22,7 +23,7 @@ func (w *work) evaluate(ctx context.Context, s *Sample) (*Result, error) {
 	w.listStates(r)
 	w.findImplausible(r)
 	w.caution(r)
-	if s.Standstill == 0 {
+	if s.Standstill == 0 && (worth == nil || worth(r)) {
 		if err := w.compare(ctx, r); err != nil {
 			return nil, err
 		}

@@ -72,12 +72,16 @@ func New(i *Installation, o *Options) (*Evaluator, error) {
 // Evaluate answers a sample, or refuses it with a [*RefusedError]. It ends early with the context's error, which only
 // random draws take long enough to meet.
 func (e *Evaluator) Evaluate(ctx context.Context, s *Sample) (*Result, error) {
+	return e.evaluate(ctx, s, nil)
+}
+
+func (e *Evaluator) evaluate(ctx context.Context, s *Sample, worth func(*Result) bool) (*Result, error) {
 	if err := e.checkSample(s); err != nil {
 		return nil, err
 	}
 	w := e.works.Get().(*work)
 	defer e.works.Put(w)
-	return w.evaluate(ctx, s)
+	return w.evaluate(ctx, s, worth)
 }
 
 func (e *Evaluator) checkInstallation(r *refusals) {

@@ -1,6 +1,7 @@
 package readings_test
 
 import (
+	"errors"
 	"sync"
 	"testing"
 
@@ -95,4 +96,20 @@ func heatPump(t testing.TB, fluid props.Refrigerant) *readings.Sample {
 	}
 	s.Sink.Liquid = water(t)
 	return &s
+}
+
+// refuses reports an error that is no refusal of that field.
+func refuses(t testing.TB, err error, field string) {
+	t.Helper()
+	refused, ok := errors.AsType[*readings.RefusedError](err)
+	if !ok {
+		t.Errorf("%s: not refused: %v", field, err)
+		return
+	}
+	for _, r := range refused.Refusals {
+		if r.Field == field && r.Message.String() != "" && r.Code != "" {
+			return
+		}
+	}
+	t.Errorf("%s: refused for another field: %v", field, err)
 }
