@@ -3,9 +3,11 @@ package cycle
 import (
 	"fmt"
 	"strings"
+
+	"dewmark/props"
 )
 
-// Defaults for what a request leaves out. All are common practice, and each use of one but the last two is a caution.
+// Defaults for what a request leaves out. All are common practice, and each use of one but the last is a caution.
 const (
 	defaultIsentropicEfficiency = 0.65
 	defaultVolumetricEfficiency = 0.90
@@ -14,9 +16,8 @@ const (
 	defaultInjectionSuperheat   = 5.0    // K
 	defaultNozzleEfficiency     = 0.8
 	defaultDiffuserEfficiency   = 0.75
-	defaultSuctionChamberDrop   = 30e3     // Pa
-	defaultHighPressureMax      = 14e6     // Pa
-	defaultAmbientPressure      = 101325.0 // Pa, the standard atmosphere
+	defaultSuctionChamberDrop   = 30e3 // Pa
+	defaultHighPressureMax      = 14e6 // Pa
 )
 
 // fill takes over r: it checks every field, and what belongs together, and fills in the defaults. What is wrong with r is
@@ -33,7 +34,7 @@ func (v *plan) fill(r *Request) {
 	v.drops(r)
 	v.parts(r)
 	v.sized(r.Size)
-	v.air = v.orDefault("site.ambient_pressure", r.AmbientPressure, &pressureBounds, defaultAmbientPressure)
+	v.air = v.orDefault("site.ambient_pressure", r.AmbientPressure, &pressureBounds, props.StandardAtmosphere)
 }
 
 func (v *plan) wrong(code RefusalCode, field string, m Message) {

@@ -3,11 +3,9 @@ package machine
 import (
 	"math"
 
+	"dewmark/props"
 	"dewmark/props/secondary"
 )
-
-// standardAtmosphere is the pressure of moist air where none is given, Pa.
-const standardAtmosphere = 101325.0
 
 // streams checks both streams of a condition.
 func (p *plan) streams(k *Condition) {
@@ -79,7 +77,7 @@ func (p *plan) liquid(field string, s *Stream) {
 
 // moistAir finds the air that enters.
 func (p *plan) moistAir(field string, s *Stream, out *side) {
-	pressureOfAir := p.or(field+".pressure", s.Pressure, &pressureBounds, standardAtmosphere)
+	pressureOfAir := p.or(field+".pressure", s.Pressure, &pressureBounds, props.StandardAtmosphere)
 	cooled := out.sign < 0
 	p.atMostOne(field, []string{"relative_humidity", "wet_bulb_temperature", "dew_point_temperature", "humidity_ratio"},
 		s.RelativeHumidity != nil, s.WetBulb != nil, s.DewPoint != nil, s.HumidityRatio != nil)
