@@ -2,6 +2,7 @@ package machine
 
 import (
 	"math"
+	"strings"
 
 	"dewmark/service/cycle"
 )
@@ -174,6 +175,9 @@ func (u *unit) rating(field string, m *Map) rating {
 	if r.scale != (Scale{}) && !(r.scale.Unit > 0 && r.scale.Unit < mostKelvin && math.Abs(r.scale.Zero) < mostKelvin) {
 		u.wrong(OutOfBounds, field+".units.temperature", message("a scale of temperature needs a positive unit"))
 	}
+	if int(m.Kind) >= len(mapNames) {
+		u.wrong(NotAllowed, field+".kind", message("a map is of one of the kinds "+strings.Join(mapNames[:], ", ")))
+	}
 	u.exactlyOne(field, []string{"mass_flow", "capacity"}, len(m.MassFlow) > 0, len(m.Capacity) > 0)
 	u.exactlyOne(field, []string{"suction_superheat", "return_gas_temperature"}, m.SuctionSuperheat != nil, m.ReturnGasTemperature != nil)
 	given, name := m.MassFlow, ".mass_flow"
@@ -189,8 +193,8 @@ func (u *unit) rating(field string, m *Map) rating {
 	} else if m.Subcooling != nil {
 		u.surplus(field+".subcooling", "a map of mass flow has no liquid")
 	}
-	r.flow = u.coefficients(field+name, given)
-	r.power = u.coefficients(field+".power", m.Power)
+	r.flow = u.coefficients(field+name, m.Kind, given)
+	r.power = u.coefficients(field+".power", m.Kind, m.Power)
 	if u.gasCooled && !m.PressureAxis {
 		u.wrong(NotAllowed, field+".pressure_axis", message("a transcritical compressor needs a map over discharge pressure"))
 	}
@@ -216,14 +220,21 @@ func (c *checker) inSI(field string, v float64) float64 {
 	return c.value(field, v, &amountBounds)
 }
 
-func (u *unit) coefficients(field string, given []float64) (out coefficients) {
-	if len(given) != len(out) {
-		u.wrong(OutOfBounds, field, message("a map has ten coefficients, not %s", plain(float64(len(given)))))
+func (u *unit) coefficients(field string, kind MapKind, given []float64) (out coefficients) {
+	most := terms
+	if kind == Biquadratic {
+		most = len(fromBiquadratic)
+	}
+	if len(given) != most {
+		u.wrong(OutOfBounds, field, message("a map of this kind has %s coefficients, not %s", plain(float64(most)), plain(float64(len(given)))))
 		return out
 	}
 	for i, v := range given {
 		if math.IsNaN(v) || math.IsInf(v, 0) {
 			u.wrong(OutOfBounds, index(field, i), message("a finite number is needed"))
+		}
+		if kind == Biquadratic {
+			i = fromBiquadratic[i]
 		}
 		out[i] = v
 	}

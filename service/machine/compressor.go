@@ -59,13 +59,45 @@ type Law struct {
 	Coefficients []float64
 }
 
-// Map is a ten-coefficient rating of a compressor at one speed (AHRI 540, EN 12900):
-//
-//	X = c1 + c2 S + c3 D + c4 S² + c5 S D + c6 D² + c7 S³ + c8 D S² + c9 S D² + c10 D³
-//
-// with S the dew temperature at suction, D that at discharge, both at the flanges and in the units of the data sheet.
+// MapKind is the form of a map's polynomials.
+type MapKind uint8
+
+// The forms of maps, with S the dew temperature at suction, D that at discharge, both at the flanges and in the units of the
+// data sheet.
+const (
+	// TenCoefficient is X = c1 + c2 S + c3 D + c4 S² + c5 S D + c6 D² + c7 S³ + c8 D S² + c9 S D² + c10 D³ (AHRI 540, EN 12900).
+	TenCoefficient MapKind = iota
+	// Biquadratic is X = c1 + c2 S + c3 S² + c4 D + c5 D² + c6 S D + c7 S² D + c8 S D² + c9 S² D² (Stoecker and Jones,
+	// Refrigeration and Air Conditioning).
+	Biquadratic
+)
+
+var mapNames = [...]string{"ten_coefficient", "biquadratic"}
+
+func (k MapKind) String() string {
+	if int(k) >= len(mapNames) {
+		return ""
+	}
+	return mapNames[k]
+}
+
+// MapKinds returns the names of all forms of maps.
+func MapKinds() []string { return append([]string(nil), mapNames[:]...) }
+
+// ParseMapKind returns the form of map with that name and reports whether there is one.
+func ParseMapKind(name string) (MapKind, bool) {
+	for i, n := range mapNames {
+		if n == name {
+			return MapKind(i), true
+		}
+	}
+	return 0, false
+}
+
+// Map is the rating of a compressor at one speed by polynomials in S and D.
 type Map struct {
-	MassFlow []float64 // "….mass_flow", c1 to c10
+	Kind     MapKind
+	MassFlow []float64 // "….mass_flow", the coefficients from c1 on
 	Capacity []float64 // cooling capacity instead of MassFlow
 	Power    []float64
 	Units    MapUnits

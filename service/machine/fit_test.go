@@ -26,10 +26,16 @@ var (
 	fitUnits = MapUnits{MassFlow: 1.0 / 3600}
 )
 
+// ten returns the polynomial of ten coefficients.
+func ten(given []float64) (c coefficients) {
+	copy(c[:], given)
+	return c
+}
+
 func demoPolynomials(t *testing.T) (flow, power coefficients) {
 	t.Helper()
 	m := demo(t, "harrow-8").Compressor.Maps[1]
-	return coefficients(m.MassFlow), coefficients(m.Power)
+	return ten(m.MassFlow), ten(m.Power)
 }
 
 // Points of a polynomial give the polynomial back.
@@ -80,8 +86,9 @@ func TestFitOfNoisyPoints(t *testing.T) {
 		t.Errorf("residuals %g W, without each point %g W; noise %g W", q.RootMeanSquare, q.PredictionSquare, noise)
 	}
 	var sum float64
+	polynomial := ten(q.Coefficients)
 	for i, v := range q.Residuals {
-		fitted, _, _ := (*coefficients)(q.Coefficients).at(points[i].Evaporation-273.15, points[i].Condensation-273.15)
+		fitted, _, _ := polynomial.at(points[i].Evaporation-273.15, points[i].Condensation-273.15)
 		if !(math.Abs(points[i].Power-fitted-v) <= 1e-6) {
 			t.Errorf("residual %d: %g W, the polynomial leaves %g", i, v, points[i].Power-fitted)
 		}
@@ -117,9 +124,7 @@ func TestFitCautionsMissingTerms(t *testing.T) {
 			t.Errorf("%s: misses its own points by %g", c.name, f.MassFlow.LargestShare)
 		}
 	}
-	ten := ratedGrid(flow, power, fitS[:4], fitD[:4])
-	ten = slices.Concat(ten[:10])
-	if f, err := FitMap(ten, fitUnits, false); err != nil || len(f.Cautions) != 1 || f.MassFlow.Rank > terms {
+	if f, err := FitMap(ratedGrid(flow, power, fitS[:4], fitD[:4])[:10], fitUnits, false); err != nil || len(f.Cautions) != 1 || f.MassFlow.Rank > terms {
 		t.Errorf("ten points: %+v, %v", f, err)
 	}
 }

@@ -7,14 +7,17 @@ import (
 	"dewmark/service/cycle"
 )
 
-// coefficients of the polynomial of a map, c1 to c10.
-type coefficients [10]float64
+// coefficients of a map of any kind: c1 to c10 of a [TenCoefficient], and that of S² D².
+type coefficients [11]float64
+
+// fromBiquadratic is where the nine coefficients of a [Biquadratic] belong.
+var fromBiquadratic = [9]int{0, 1, 3, 2, 5, 4, 7, 8, 10}
 
 // at returns X and its slopes at S and D in the units of the data sheet.
 func (c *coefficients) at(S, D float64) (x, byS, byD float64) {
-	x = c[0] + S*(c[1]+S*(c[3]+S*c[6])) + D*(c[2]+D*(c[5]+D*c[9])) + S*D*(c[4]+S*c[7]+D*c[8])
-	byS = c[1] + S*(2*c[3]+3*S*c[6]) + D*(c[4]+2*S*c[7]+D*c[8])
-	byD = c[2] + D*(2*c[5]+3*D*c[9]) + S*(c[4]+S*c[7]+2*D*c[8])
+	x = c[0] + S*(c[1]+S*(c[3]+S*c[6])) + D*(c[2]+D*(c[5]+D*c[9])) + S*D*(c[4]+S*c[7]+D*(c[8]+S*c[10]))
+	byS = c[1] + S*(2*c[3]+3*S*c[6]) + D*(c[4]+2*S*c[7]+D*(c[8]+2*S*c[10]))
+	byD = c[2] + D*(2*c[5]+3*D*c[9]) + S*(c[4]+S*c[7]+2*D*(c[8]+S*c[10]))
 	return x, byS, byD
 }
 

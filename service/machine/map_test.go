@@ -2,9 +2,11 @@ package machine
 
 import (
 	"encoding/csv"
+	"fmt"
 	"math"
 	"os"
 	"strconv"
+	"strings"
 	"testing"
 )
 
@@ -39,38 +41,34 @@ func parse(t *testing.T, text string) float64 {
 	return v
 }
 
-// published returns the ten coefficients of a map in testdata/compressor_maps.csv.
-func published(t *testing.T, id, quantity string) (c coefficients) {
+// published returns the coefficients of a map in testdata/compressor_maps.csv, in the order of its source.
+func published(t *testing.T, id, quantity string) (c []float64) {
 	t.Helper()
 	for _, row := range readTable(t, "compressor_maps.csv") {
-		if row["map_id"] != id || row["quantity"] != quantity {
-			continue
-		}
-		found := false
-		for i, p := range powers {
-			if row["exponent_suction"] == strconv.Itoa(p[0]) && row["exponent_discharge"] == strconv.Itoa(p[1]) {
-				c[i], found = parse(t, row["coefficient"]), true
-			}
-		}
-		if !found {
-			t.Fatalf("term %v is none of the ten", row)
+		if row["map_id"] == id && row["quantity"] == quantity {
+			c = append(c, parse(t, row["coefficient"]))
 		}
 	}
 	return c
 }
 
-// The points of testdata/compressor_map_points.csv that belong to a ten-coefficient map (Lee et al. 2021), to the seven
-// digits printed, in the units of the data sheet and by way of K and SI. The other map there has nine terms of another form.
+// The points of testdata/compressor_map_points.csv: a map of ten coefficients (Lee et al. 2021) and one of nine (Stoecker and
+// Jones, table 14-1), to the seven digits printed, in the units of the data sheet and by way of K and SI.
 func TestPublishedMapPoints(t *testing.T) {
-	maps := map[string]coefficients{
-		"power":     published(t, "LEE2021", "power"),
-		"mass_flow": published(t, "LEE2021", "mass_flow"),
-	}
+	kinds := map[string]MapKind{"LEE2021": TenCoefficient, "SJ14-1": Biquadratic}
 	count := 0
 	for _, row := range readTable(t, "compressor_map_points.csv") {
-		c, ok := maps[row["quantity"]]
-		if row["map_id"] != "LEE2021" || !ok {
-			continue
+		kind, ok := kinds[row["map_id"]]
+		if !ok {
+			t.Fatalf("map %q", row["map_id"])
+		}
+		if row["suction_C"] == "" {
+			continue // a system, see TestPublishedBalance
+		}
+		var u unit
+		c := u.coefficients("map", kind, published(t, row["map_id"], row["quantity"]))
+		if len(u.refusals) > 0 {
+			t.Fatal(u.refusals)
 		}
 		count++
 		S, D := parse(t, row["suction_C"]), parse(t, row["discharge_C"])
@@ -78,22 +76,74 @@ func TestPublishedMapPoints(t *testing.T) {
 		if got, _, _ := c.at(S, D); !(math.Abs(got/want-1) <= 5e-7) {
 			t.Errorf("%s: %.9g, want %s", row["id"], got, row["value"])
 		}
-		r := rating{flow: c, power: c, perFlow: 1e-3, perPower: 1}
+		r := rating{flow: c, power: c, perFlow: 1e-3, perPower: 1e3}
 		flow, power := r.raw(&flanges{suctionDew: S + 273.15, dischargeDew: D + 273.15})
-		if !(math.Abs(flow/want*1e3-1) <= 5e-7 && math.Abs(power/want-1) <= 5e-7) {
+		if !(math.Abs(flow/want*1e3-1) <= 5e-7 && math.Abs(power/want*1e-3-1) <= 5e-7) {
 			t.Errorf("%s in SI: %.9g and %.9g, want %s", row["id"], flow, power, row["value"])
 		}
 	}
-	if count < 10 {
-		t.Errorf("only %d points were compared", count)
+	if count != 20 {
+		t.Errorf("%d points were compared, not 20", count)
+	}
+}
+
+// Where the compressor of Stoecker and Jones, table 14-1, balances with the condenser and the evaporator of that chapter:
+// condenser 9.39 kW/K above the ambient, evaporator 6.0 (1 + 0.046 d) kW/K at difference d to the water. The nested search
+// finds the points of testdata/compressor_map_points.csv, to the digits printed.
+func TestPublishedBalance(t *testing.T) {
+	var u unit
+	capacity := u.coefficients("map", Biquadratic, published(t, "SJ14-1", "refrigeration_capacity"))
+	power := u.coefficients("map", Biquadratic, published(t, "SJ14-1", "power"))
+	compared := 0
+	for _, water := range []float64{10, 20} {
+		tc := 45.0
+		condense := func(te float64) (float64, error) {
+			var err error
+			tc, _, err = hunt(tc, 36, 80, func(tc float64) (float64, error) {
+				q, _, _ := capacity.at(te, tc)
+				w, _, _ := power.at(te, tc)
+				return 9.39*(tc-35)/(q+w) - 1, nil
+			})
+			return tc, err
+		}
+		y, _, err := hunt(5, -water, 30, func(y float64) (float64, error) { // upwards the evaporation falls
+			te := -y
+			tc, err := condense(te)
+			q, _, _ := capacity.at(te, tc)
+			d := water - te
+			return 6.0*(1+0.046*d)*d/q - 1, err
+		})
+		if err != nil {
+			t.Fatal(err)
+		}
+		te := -y
+		if _, err := condense(te); err != nil {
+			t.Fatal(err)
+		}
+		q, _, _ := capacity.at(te, tc)
+		w, _, _ := power.at(te, tc)
+		got := map[string]float64{"t_evap": te, "t_cond": tc, "capacity": q, "power": w}
+		for _, row := range readTable(t, "compressor_map_points.csv") {
+			name, rest, ok := strings.Cut(strings.TrimPrefix(row["quantity"], "system_balance_"), " ")
+			if row["suction_C"] != "" || !ok || !strings.Contains(rest, fmt.Sprintf("water in %g C", water)) {
+				continue
+			}
+			compared++
+			if want := parse(t, row["value"]); !(math.Abs(got[name]/want-1) <= 5.1e-7*math.Max(1, 1/math.Abs(want))) {
+				t.Errorf("%s: %s %.8g, want %s", row["id"], name, got[name], row["value"])
+			}
+		}
+	}
+	if compared != 8 {
+		t.Errorf("%d values were compared, not 8", compared)
 	}
 }
 
 func TestMapSlopes(t *testing.T) {
-	c := coefficients{1, 2, 3, 0.4, 0.5, 0.6, 0.07, 0.08, 0.09, 0.01}
+	c := coefficients{1, 2, 3, 0.4, 0.5, 0.6, 0.07, 0.08, 0.09, 0.01, 0.002}
 	const d = 1e-5
 	x, byS, byD := c.at(1.7, -2.3)
-	var want float64
+	want := 0.002 * math.Pow(1.7*2.3, 2)
 	for i, p := range powers {
 		want += c[i] * math.Pow(1.7, float64(p[0])) * math.Pow(-2.3, float64(p[1]))
 	}

@@ -68,6 +68,14 @@ func TestRefusals(t *testing.T) {
 			m.Compressor = demo(t, "harrow-8").Compressor
 			m.Compressor.Maps[1].MassFlow = m.Compressor.Maps[1].MassFlow[:9]
 		}, OutOfBounds, "machine.compressor.maps.1.mass_flow"},
+		{"map of no kind", func(m *Machine, _ *Condition) {
+			m.Compressor = demo(t, "harrow-8").Compressor
+			m.Compressor.Maps[0].Kind = 7
+		}, NotAllowed, "machine.compressor.maps.0.kind"},
+		{"biquadratic of ten", func(m *Machine, _ *Condition) {
+			m.Compressor = demo(t, "harrow-8").Compressor
+			m.Compressor.Maps[2].Kind = Biquadratic
+		}, OutOfBounds, "machine.compressor.maps.2.mass_flow"},
 		{"map without suction gas", func(m *Machine, _ *Condition) {
 			m.Compressor = demo(t, "harrow-8").Compressor
 			m.Compressor.Maps[0].SuctionSuperheat = nil
