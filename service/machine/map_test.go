@@ -143,7 +143,7 @@ func TestMapSlopes(t *testing.T) {
 	c := coefficients{1, 2, 3, 0.4, 0.5, 0.6, 0.07, 0.08, 0.09, 0.01, 0.002}
 	const d = 1e-5
 	x, byS, byD := c.at(1.7, -2.3)
-	want := 0.002 * math.Pow(1.7*2.3, 2)
+	want := 0.002 * (1.7 * 2.3) * (1.7 * 2.3)
 	for i, p := range powers {
 		want += c[i] * math.Pow(1.7, float64(p[0])) * math.Pow(-2.3, float64(p[1]))
 	}
