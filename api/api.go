@@ -186,8 +186,8 @@ func (a *API) WarmBlends(ctx context.Context) error {
 	if err := a.catalogue.WarmBlends(ctx); err != nil {
 		return err
 	}
-	for _, make := range a.lists {
-		if _, err := make(); err != nil {
+	for _, encoded := range a.lists {
+		if _, err := encoded(); err != nil {
 			return err
 		}
 	}

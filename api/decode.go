@@ -80,7 +80,7 @@ func (d *decoder) value(target reflect.Value) error {
 
 // assign stores the value that starts with t.
 func (d *decoder) assign(target reflect.Value, t token) error {
-	if own, ok := target.Addr().Interface().(selfDecoder); ok {
+	if own, ok := reflect.TypeAssert[selfDecoder](target.Addr()); ok {
 		return own.decode(d, t)
 	}
 	switch target.Kind() {

@@ -29,10 +29,10 @@ func newMixtures(limit int, m *metrics) *mixtures {
 	return &mixtures{byKey: map[string]*list.Element{}, recent: list.New(), limit: limit, metrics: m}
 }
 
-// get returns the mixture with that key, which make makes when it is not kept. A mixture without a phase envelope is kept
+// get returns the mixture with that key, which build makes when it is not kept. A mixture without a phase envelope is kept
 // too, since that takes as long to find out; other failures are not.
-func (m *mixtures) get(key string, make func() (*props.Blend, error)) (*props.Blend, error) {
-	kept := m.entry(key, make)
+func (m *mixtures) get(key string, build func() (*props.Blend, error)) (*props.Blend, error) {
+	kept := m.entry(key, build)
 	b, err := kept.make()
 	if _, costly := errors.AsType[*blend.EnvelopeError](err); err != nil && !costly {
 		m.forget(kept)
@@ -41,7 +41,7 @@ func (m *mixtures) get(key string, make func() (*props.Blend, error)) (*props.Bl
 }
 
 // entry returns what is kept under key, entered now if need be.
-func (m *mixtures) entry(key string, make func() (*props.Blend, error)) *madeMixture {
+func (m *mixtures) entry(key string, build func() (*props.Blend, error)) *madeMixture {
 	m.mu.Lock()
 	defer m.mu.Unlock()
 	if e, ok := m.byKey[key]; ok {
@@ -50,7 +50,7 @@ func (m *mixtures) entry(key string, make func() (*props.Blend, error)) *madeMix
 		return e.Value.(*madeMixture)
 	}
 	m.metrics.mixtureMisses.Inc()
-	made := &madeMixture{key, sync.OnceValues(make)}
+	made := &madeMixture{key, sync.OnceValues(build)}
 	m.byKey[key] = m.recent.PushFront(made)
 	if m.recent.Len() > m.limit {
 		m.drop(m.recent.Back())

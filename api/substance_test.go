@@ -171,7 +171,8 @@ func TestMixturesAreKept(t *testing.T) {
 			name      string
 			got, want float64
 		}{
-			{"hits", testutil.ToFloat64(a.metrics.mixtureHits), hits}, {"misses", testutil.ToFloat64(a.metrics.mixtureMisses), misses},
+			{"hits", testutil.ToFloat64(a.metrics.mixtureHits), hits},
+			{"misses", testutil.ToFloat64(a.metrics.mixtureMisses), misses},
 			{"kept", testutil.ToFloat64(a.metrics.mixturesKept), kept},
 		} {
 			if m.got != m.want {

@@ -30,8 +30,8 @@ type Composition struct {
 const MaxComponents = 10
 
 const (
-	minFraction   = 1e-7 // below it the incipient phases of the component leave the range of numbers
-	sumTolerance  = 2e-3 // three shares of 33.3 % must pass
+	minFraction  = 1e-7 // below it the incipient phases of the component leave the range of numbers
+	sumTolerance = 2e-3 // three shares of 33.3 % must pass
 )
 
 // moleFractions returns the mole fractions of c. find returns the molar mass of a refrigerant in kg/mol and reports
