@@ -2,6 +2,7 @@ package api
 
 import (
 	"fmt"
+	"maps"
 	"net/http"
 	"net/url"
 	"slices"
@@ -24,9 +25,7 @@ var oneYear = []string{"max-age=31536000"}
 // secure adds the headers that keep browsers from misusing an answer.
 func (a *API) secure(c *gin.Context) {
 	h := c.Writer.Header()
-	for name, value := range secureHeaders {
-		h[name] = value
-	}
+	maps.Copy(h, secureHeaders)
 	if c.Request.TLS != nil {
 		h["Strict-Transport-Security"] = oneYear
 	}

@@ -8,6 +8,7 @@ import (
 	"net/http/httptest"
 	"os"
 	"path/filepath"
+	"strconv"
 	"strings"
 	"testing"
 	"time"
@@ -294,7 +295,7 @@ func TestRateLimitForgets(t *testing.T) {
 		t.Fatal("the first request has to wait")
 	}
 	for i := range 5 * maxClients {
-		r.take(fmt.Sprint(i), now)
+		r.take(strconv.Itoa(i), now)
 		if i%1000 == 0 && r.take("busy", now) == 0 {
 			t.Fatalf("forgotten after %d others", i)
 		}

@@ -35,13 +35,15 @@ func inParallel(ctx context.Context, n int, work func(i int)) error {
 					broken.Store(new(fmt.Sprintf("%v\n%s", cause, debug.Stack())))
 				}
 			}()
-			for ctx.Err() == nil && !relieved() && one() {
+			for more := true; more && ctx.Err() == nil && !relieved(); {
+				more = one()
 			}
 		})
 	}
 	func() {
 		defer wg.Wait()
-		for one() && breathe(ctx) == nil {
+		for more := true; more && breathe(ctx) == nil; {
+			more = one()
 		}
 	}()
 	if cause := broken.Load(); cause != nil {

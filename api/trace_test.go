@@ -105,8 +105,8 @@ func TestSpans(t *testing.T) {
 	}
 	attributes := attribute.NewSet(spans[0].Attributes()...)
 	for name, want := range map[attribute.Key]string{"http.route": "/v1/states", "dewmark.request_id": "order-66", "http.response.status_code": "200"} {
-		if got, _ := attributes.Value(name); got.Emit() != want {
-			t.Errorf("%s is %q, want %q", name, got.Emit(), want)
+		if got, _ := attributes.Value(name); got.String() != want {
+			t.Errorf("%s is %q, want %q", name, got.String(), want)
 		}
 	}
 	var events []string
@@ -117,7 +117,7 @@ func TestSpans(t *testing.T) {
 		t.Errorf("events %q", events)
 	}
 	attributes = attribute.NewSet(spans[1].Attributes()...)
-	if got, _ := attributes.Value("dewmark.problems"); got.Emit() != `["malformed_json"]` {
-		t.Errorf("problems %s", got.Emit())
+	if got, _ := attributes.Value("dewmark.problems"); got.String() != `["malformed_json"]` {
+		t.Errorf("problems %s", got.String())
 	}
 }

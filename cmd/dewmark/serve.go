@@ -180,6 +180,7 @@ func warm(ctx context.Context, log *slog.Logger, a *api.API) {
 	}
 	log.LogAttrs(ctx, slog.LevelInfo, "ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
 	if err := a.WarmBlends(ctx); err == nil { // ready without them: a first request makes the one it needs
+		debug.FreeOSMemory() // what warming up left behind would stay for good in a service that is idle
 		log.LogAttrs(ctx, slog.LevelInfo, "blends ready", slog.Float64("warm_up_s", time.Since(start).Seconds()))
 	}
 }
