@@ -159,7 +159,7 @@ func (v voice) problem(err error) *Problem {
 		return unprocessable("uncertain-state", "Properties leave the state uncertain", detail, v.eachGiven("uncertain", detail)...)
 	}
 	if e, ok := errors.AsType[*props.ConvergenceError](err); ok {
-		detail := fmt.Sprintf("the solver found no state of %s with %s; its last attempt was %s, %s", e.Refrigerant, v.pairText(),
+		detail := fmt.Sprintf("the solver found no state of %s with %s; its last attempt was %s, %s", e.Refrigerant, v.pairText(e.Pair[0], e.Pair[1]),
 			v.units.text(kindTemperature, e.T), v.units.text(kindDensity, e.Rho))
 		return unprocessable("no-convergence", "No convergence", detail, v.eachGiven("no_convergence", detail)...)
 	}
@@ -213,8 +213,14 @@ func (v voice) outOfRange(e *props.RangeError) *Problem {
 // ambiguous lists what the caller can choose from.
 func (v voice) ambiguous(e *props.AmbiguousError) *Problem {
 	phases := phasesOf(e.Solutions)
-	detail := fmt.Sprintf("%d states of %s have %s", len(e.Solutions), e.Refrigerant, v.pairText())
-	if len(phases) == len(e.Solutions) {
+	var pair []props.Given
+	for _, p := range e.Pair {
+		pair = append(pair, props.Given{Property: p, Value: p.Of(&e.Solutions[0])})
+	}
+	detail := fmt.Sprintf("%d states of %s have %s", len(e.Solutions), e.Refrigerant, v.pairText(pair...))
+	if len(v.given) == 0 { // deep in a calculation, where the request has no phase to give
+		detail += ": " + strings.Join(phases, ", ")
+	} else if len(phases) == len(e.Solutions) {
 		detail += "; say which is meant with phase: " + strings.Join(phases, ", ")
 	} else {
 		detail += ", some of one phase; see solutions, and name the one that is meant by other properties"
@@ -228,10 +234,10 @@ func (v voice) ambiguous(e *props.AmbiguousError) *Problem {
 func (v voice) noSolution(e *props.NoSolutionError) *Problem {
 	const kind, title = "no-such-state", "No such state"
 	if len(e.Solutions) == 0 {
-		detail := fmt.Sprintf("no state of %s within the limits has %s", e.Refrigerant, v.pairText())
+		detail := fmt.Sprintf("no state of %s within the limits has %s", e.Refrigerant, v.pairText(e.Pair[0], e.Pair[1]))
 		return unprocessable(kind, title, detail, v.eachGiven("no_such_state", detail)...)
 	}
-	detail := fmt.Sprintf("no %s state of %s has %s; allowed here: %s", e.Phase, e.Refrigerant, v.pairText(), strings.Join(phasesOf(e.Solutions), ", "))
+	detail := fmt.Sprintf("no %s state of %s has %s; allowed here: %s", e.Phase, e.Refrigerant, v.pairText(e.Pair[0], e.Pair[1]), strings.Join(phasesOf(e.Solutions), ", "))
 	p := unprocessable(kind, title, detail, MemberError{Pointer: v.at + "/phase", Code: "no_such_state", Detail: detail})
 	p.Solutions = v.views(e.Solutions)
 	return p
@@ -296,11 +302,17 @@ func (v voice) say(g given) string {
 	return text + " " + v.units.of[g.kind].code
 }
 
-// pairText names all that was given.
-func (v voice) pairText() string {
-	texts := make([]string, len(v.given))
-	for i, g := range v.given {
-		texts[i] = v.say(g)
+// pairText names all that was given: by the request, or else by the calculation that asked for the state.
+func (v voice) pairText(asked ...props.Given) string {
+	var texts []string
+	for _, g := range v.given {
+		texts = append(texts, v.say(g))
+	}
+	if len(texts) == 0 {
+		for _, g := range asked {
+			word := propertyNames[g.Property]
+			texts = append(texts, word.member+" "+v.text(word.kind, g.Value))
+		}
 	}
 	return strings.Join(texts, " and ")
 }

@@ -79,7 +79,7 @@ func (c *circuit) raise(s *Solution) {
 	}
 	if glide := c.middle.dew.T - c.middle.bubble.T; c.hasVessel() && glide > noticedGlide {
 		c.caution(Caution{Code: CompositionShift, Field: "refrigerant", Message: message(
-			"liquid and vapour of the vessel at the intermediate pressure differ in composition, with a glide of %s; both are taken as the blend itself, and what entropy the vessel makes is not to be relied on", difference(glide))})
+			"liquid and vapour of the vessel at the intermediate pressure differ in composition, with a glide of %s; both are taken as the blend itself, which leaves the vessel without an entropy account and the cycle without an exergy account", difference(glide))})
 	}
 	for i := range c.optima {
 		if o := &c.optima[i]; o.AtLimit {

@@ -161,6 +161,9 @@ func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
 	for i, j := range list {
 		a := &c.accounts[j]
 		b := c.balance(a, scale)
+		if c.partsBlend(a.part) {
+			b.entropy = nan
+		}
 		comp := &s.Components[i]
 		*comp = Component{
 			Name: partNames[a.side][a.part], Inlets: c.labels(a.in), Outlets: c.labels(a.out),
@@ -186,7 +189,7 @@ func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
 		if b.entropy < k.SmallestEntropyGeneration {
 			k.SmallestEntropyGeneration, k.SmallestComponent = b.entropy, comp.Name
 		}
-		if b.entropy < -tolerance && !c.partsBlend(a.part) {
+		if b.entropy < -tolerance {
 			c.refuse(c.againstSecondLaw(a, b.entropy))
 		}
 	}

@@ -48,7 +48,8 @@ func (c *circuit) separate(as part, in *node, atLiquid place, ofLiquid stream, a
 }
 
 // partsBlend reports whether a component is a vessel that parts liquid and vapour of a zeotropic blend. Both are taken to
-// have the composition of the blend, so that such a vessel may seem to destroy entropy, which is no fault of the request.
+// have the composition of the blend, which leaves the vessel without an entropy account, and the whole without an exergy
+// account.
 func (c *circuit) partsBlend(p part) bool {
 	vessel := p == flashTank || p == receiver || p == separator || p == intercooler
 	return vessel && c.hasVessel() && !c.fluid.withoutGlide()
