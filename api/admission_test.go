@@ -167,7 +167,7 @@ func TestDeadline(t *testing.T) {
 	})
 	// Both kinds of batch notice it.
 	for _, r := range []*http.Request{
-		newRequest("/v1/states", `{"refrigerant": "R134a", "points": [`+batch(1000, ",")+`]}`),
+		newRequest("/v1/states", `{"refrigerant": "R134a", "points": [`+batch(10000, ",")+`]}`),
 		newRequest("/v1/saturation", `{"refrigerant": "R134a", "range": {"of": "temperature", "from": 0, "to": 50, "step": 0.01}}`),
 	} {
 		a := newAPI(t, func(o *Options) { o.Deadline = time.Nanosecond })
