@@ -91,7 +91,33 @@ func serveCommand(ctx context.Context, args []string, stderr io.Writer) error {
 	if err := parse(flags, args, 0); err != nil {
 		return err
 	}
+	if err := s.check(); err != nil {
+		return err
+	}
 	return s.serve(ctx, slog.New(slog.NewJSONHandler(stderr, &slog.HandlerOptions{Level: s.logLevel})))
+}
+
+// check refuses a zero where it does not stand for anything. The API would take it for its default.
+func (s *settings) check() error {
+	for _, limit := range []struct {
+		flag string
+		zero bool
+	}{
+		{"max-body", s.maxBody == 0},
+		{"max-points", s.maxPoints == 0},
+		{"max-queue", s.maxQueue == 0},
+		{"max-batches", s.maxBatches == 0},
+		{"max-streams", s.maxStreams == 0},
+		{"deadline", s.deadline == 0},
+	} {
+		if limit.zero {
+			return fmt.Errorf("--%s must be above zero", limit.flag)
+		}
+	}
+	if s.drain < 0 || s.drainDelay < 0 {
+		return errors.New("--drain and --drain-delay must not be negative")
+	}
+	return nil
 }
 
 // serve answers until ctx ends.
