@@ -17,6 +17,7 @@ type Evaluator struct {
 	fluid        fluid
 	exchanger    bool // an internal exchanger
 	several      bool // more than one compression
+	gasCooled    bool // a gas cooler instead of a condenser
 	given        [readingCount]stated
 	sealed       [readingCount]bool
 	ambient      float64 // standard uncertainty of the ambient pressure, Pa; 0 without gauges
@@ -98,11 +99,20 @@ func (e *Evaluator) checkInstallation(r *refusals) {
 	if len(i.With) > 0 && i.Layout != cycle.Transcritical {
 		r.add(Surplus, "with", message("only a transcritical layout is combined with others"))
 	}
+	for k, l := range i.With {
+		if l.String() == "" || l == cycle.Transcritical {
+			r.add(NotAllowed, at("with", k), message("there is no such layout to combine with"))
+		}
+	}
 	for _, l := range append([]cycle.Layout{i.Layout}, i.With...) {
 		switch l {
-		case cycle.SingleStage, cycle.Transcritical:
+		case cycle.SingleStage:
+		case cycle.Transcritical:
+			e.gasCooled = true
 		case cycle.SuctionExchanger:
 			e.exchanger = true
+		case cycle.Ejector:
+			e.gasCooled, e.several = true, true
 		default:
 			e.several = true
 		}

@@ -51,6 +51,9 @@ func (w *work) findImplausible(r *Result) {
 	}
 }
 
+// highSide are the places between compressor and expansion.
+var highSide = [placeCount]bool{discharge: true, condenserInlet: true, condenserOutlet: true, expansionInlet: true}
+
 func (w *work) checkPressures(r *Result) {
 	for p := range placeCount {
 		at := &w.located[p]
@@ -61,8 +64,8 @@ func (w *work) checkPressures(r *Result) {
 		switch {
 		case v <= leastPressure:
 			r.found(PressuresTooClose, at.pressure.String(), "%s is hardly above a vacuum: a gauge pressure taken as absolute, or a broken sensor", pressure(v))
-		case w.obstacles[p] != nil && w.standing[p] != singlePhase && !w.points[p].saturated.Known():
-			r.found(OutsideSaturation, at.pressure.String(), "at %s the refrigerant neither boils nor condenses within the range of its properties", pressure(v))
+		case !w.points[p].saturated.Known() && !(v >= w.evaluator.fluid.critical && w.evaluator.gasCooled && highSide[p]):
+			r.found(OutsideSaturation, at.pressure.String(), "at %s the refrigerant neither boils nor condenses", pressure(v))
 		}
 	}
 	low, high := w.points[suction].p, w.points[discharge].p
@@ -155,11 +158,7 @@ func (w *work) checkPerformance(r *Result) {
 			r.found(EnthalpiesOutOfOrder, w.located[k.second].temperature.String(), k.text)
 		}
 	}
-	if e := r.Figure(FigureIsentropicEfficiency); e.Known() && !(leastEfficiency < e.Value && e.Value < mostEfficiency) {
-		r.found(EfficiencyImplausible, FigureIsentropicEfficiency.String(),
-			"an isentropic efficiency of %s is not between %s and %s: a thermometer or the power reading is wrong, the suction is wet, or liquid is injected",
-			plain(e.Value), plain(leastEfficiency), plain(mostEfficiency))
-	}
+	w.checkEfficiency(r)
 	if e := r.Figure(FigureVolumetricEfficiency); e.Known() && !(leastVolumetric < e.Value && e.Value < mostVolumetric) {
 		r.found(VolumetricImplausible, FigureVolumetricEfficiency.String(),
 			"a volumetric efficiency of %s is not between %s and %s: flow, speed or swept volume is wrong", plain(e.Value), plain(leastVolumetric), plain(mostVolumetric))
@@ -175,6 +174,21 @@ func (w *work) checkPerformance(r *Result) {
 	if e := r.Figure(FigureEnergyClosure); e.Known() && math.Abs(e.Value) > mostOpenClosure {
 		r.found(EnergyNotClosed, FigureEnergyClosure.String(),
 			"heat given off and heat and power taken up differ by a share of %s; %s is usual in the field", plain(e.Value), plain(mostOpenClosure))
+	}
+}
+
+// checkEfficiency looks at the efficiency by the states alone, which a wrong thermometer spoils first, and at the one by flow
+// and power.
+func (w *work) checkEfficiency(r *Result) {
+	states := w.calculus.Quotient(w.perKilo.ideal, w.perKilo.work)
+	for _, v := range [...]float64{states.Value, r.Figure(FigureIsentropicEfficiency).Value} {
+		if math.IsNaN(v) || leastEfficiency < v && v < mostEfficiency {
+			continue
+		}
+		r.found(EfficiencyImplausible, FigureIsentropicEfficiency.String(),
+			"an isentropic efficiency of %s is not between %s and %s: a thermometer or the power reading is wrong, the suction is wet, or liquid is injected",
+			plain(v), plain(leastEfficiency), plain(mostEfficiency))
+		return
 	}
 }
 

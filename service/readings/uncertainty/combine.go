@@ -34,7 +34,7 @@ func (in *Inputs) Combine(estimates []Linear) Combination {
 	v := in.covariances(estimates)
 	best := -1
 	for i, y := range estimates {
-		if y.Known() && (best < 0 || v[i][i] < v[best][best]) {
+		if usable(y, v[i][i]) && (best < 0 || v[i][i] < v[best][best]) {
 			best = i
 		}
 	}
@@ -81,6 +81,9 @@ func (in *Inputs) Combine(estimates []Linear) Combination {
 	return k
 }
 
+// usable reports whether an estimate is known and its variance a finite number.
+func usable(y Linear, variance float64) bool { return y.Known() && variance <= math.MaxFloat64 }
+
 // covariances returns the covariance matrix of the estimates that are known.
 func (in *Inputs) covariances(estimates []Linear) [][]float64 {
 	v := make([][]float64, len(estimates))
@@ -111,7 +114,7 @@ func promising(estimates []Linear, v [][]float64, w []float64, kept []int) int {
 	}
 	next, least := -1, variance*(1-dependent)
 	for i, y := range estimates {
-		if y.Known() && !slices.Contains(kept, i) {
+		if usable(y, v[i][i]) && !slices.Contains(kept, i) {
 			if l := lean(i); l < least {
 				next, least = i, l
 			}

@@ -33,14 +33,17 @@ type Share struct {
 	Assumed bool // the input's uncertainty is a default
 }
 
-// Estimate returns a result with its uncertainty at a coverage. The budget is appended to room, and the rest of room
-// returned.
+// Estimate returns a result with its uncertainty at a coverage, or NoEstimate when either is no finite number. The budget
+// is appended to room, and the rest of room returned.
 func (in *Inputs) Estimate(y Linear, p Coverage, room []Share) (Estimate, []Share) {
 	if !y.Known() {
 		return NoEstimate, room
 	}
 	e := Estimate{Value: y.Value, Standard: in.Standard(y), DegreesOfFreedom: math.Inf(1)}
-	if !(e.Standard > 0) || math.IsInf(e.Standard, 0) {
+	if math.IsInf(y.Value, 0) || !(e.Standard <= math.MaxFloat64) {
+		return NoEstimate, room
+	}
+	if e.Standard == 0 {
 		e.CoverageFactor = p.Factor(0)
 		e.Expanded = e.CoverageFactor * e.Standard
 		return e, room
