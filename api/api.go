@@ -117,7 +117,7 @@ func New(o Options) (*API, error) {
 		a.now = time.Now
 	}
 	var err error
-	if a.metrics, err = newMetrics(o.Registry, o.Version, o.Catalogue.Designations(), &a.admission); err != nil {
+	if a.metrics, err = newMetrics(o.Registry, o.Version, o.Catalogue, &a.admission); err != nil {
 		return nil, err
 	}
 	a.mixtures = newMixtures(cmp.Or(o.MaxMixtures, DefaultMaxMixtures), a.metrics)

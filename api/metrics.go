@@ -9,6 +9,8 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/collectors"
 	"go.opentelemetry.io/otel/trace"
+
+	"dewmark/props"
 )
 
 // metrics are what the service tells Prometheus about itself. Label values come from closed sets.
@@ -30,7 +32,7 @@ type metrics struct {
 	ready prometheus.Gauge
 }
 
-func newMetrics(r prometheus.Registerer, version string, designations []string, adm *admission) (*metrics, error) {
+func newMetrics(r prometheus.Registerer, version string, catalogue *props.Catalogue, adm *admission) (*metrics, error) {
 	m := &metrics{
 		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "dewmark_http_requests_total", Help: "HTTP requests answered.",
@@ -76,7 +78,7 @@ func newMetrics(r prometheus.Registerer, version string, designations []string, 
 		Name: "dewmark_mixture_requests_total", Help: "Requests for a mixture by its fractions; hit where it was kept already or is being made.",
 	}, []string{"result"})
 	m.mixtureHits, m.mixtureMisses = mixtureRequests.WithLabelValues("hit"), mixtureRequests.WithLabelValues("miss")
-	for _, designation := range designations {
+	for _, designation := range catalogue.Designations() {
 		m.listed[designation] = struct{}{}
 	}
 	build := prometheus.NewGauge(prometheus.GaugeOpts{
@@ -99,6 +101,8 @@ func newMetrics(r prometheus.Registerer, version string, designations []string, 
 		gauge("dewmark_calculations_limit", "Slots for computing.", func() int { return cap(adm.short.slots) + cap(adm.long.slots) }),
 		gauge("dewmark_calculations_waiting", "Requests that wait for a slot.", func() int { return int(adm.short.waiting.Load() + adm.long.waiting.Load()) }),
 		gauge("dewmark_batches_in_progress", "Long batches under way.", func() int { return len(adm.batches) }),
+		gauge("dewmark_saturation_curves", "Saturation curves of pure refrigerants that are made.", func() int { made, _ := catalogue.Curves(); return made }),
+		gauge("dewmark_saturation_curve_bytes", "Memory of the saturation curves that are made.", func() int { _, bytes := catalogue.Curves(); return bytes }),
 		gauge("dewmark_streams_in_progress", "Streams open.", func() int { return len(adm.streams) }),
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
 	} {

@@ -139,6 +139,16 @@ func (r *Pure) isotherm(T float64, y Property, v float64, found func(State)) err
 		}
 		allRoots(r.densities(math.Min(thin, vapour/2), vapour), miss, single)
 	}
+	if y != Entropy { // which grows without end as a gas thins
+		end, _ := miss(thin)
+		limit := r.h0 + r.Rs*T*iso.Ideal.T - v // of the ideal gas
+		if y == Enthalpy {
+			limit += r.Rs * T
+		}
+		if (end < 0) != (limit < 0) || limit == 0 {
+			worst = 1 // a gas thinner than the search goes has the value too
+		}
+	}
 	if worst > 1e-7 {
 		return &ConditionError{Refrigerant: r.rec.ID, Pair: [2]Property{Temperature, y}, Property: Density, Uncertainty: worst}
 	}

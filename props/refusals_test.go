@@ -253,3 +253,21 @@ func TestAmbiguousAndMissingPhase(t *testing.T) {
 		t.Error("a phase was picked on the saturation line")
 	}
 }
+
+// TestThinGas: a gas thinner than any search goes is refused as uncertain, not overlooked because a compressed state has
+// the same enthalpy.
+func TestThinGas(t *testing.T) {
+	r := refrigerant(t, "R290")
+	for _, p := range []float64{1e-6, 1e-3} {
+		s, err := r.TemperaturePressure(373.15, p)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, g := range []props.Given{{Property: props.Enthalpy, Value: s.H}, {Property: props.InternalEnergy, Value: s.U}} {
+			states, err := r.States(props.Given{Property: props.Temperature, Value: s.T}, g)
+			if _, ok := errors.AsType[*props.ConditionError](err); !ok {
+				t.Errorf("%g Pa, %v: %d states, %v", p, g.Property, len(states), err)
+			}
+		}
+	}
+}
