@@ -2,7 +2,9 @@ package readings
 
 import (
 	"math"
+	"slices"
 	"strconv"
+	"strings"
 
 	"dewmark/service/cycle"
 	"dewmark/service/readings/uncertainty"
@@ -88,20 +90,15 @@ func (u *Uncertainty) check(r *refusals, of Reading) stated {
 func (s Sensor) check(r *refusals, field string, of Reading) {
 	row, ok := sensorRules[s]
 	if !ok {
-		names := ""
-		for i, n := range Sensors() {
-			if i > 0 {
-				names += ", "
-			}
-			names += string(n)
+		names := make([]string, 0, len(sensorRules))
+		for _, n := range Sensors() {
+			names = append(names, string(n))
 		}
-		r.add(NotAllowed, field, message("there is no such class of sensors; there are "+names))
+		r.add(NotAllowed, field, message("there is no such class of sensors; there are "+strings.Join(names, ", ")))
 		return
 	}
-	for _, k := range row.kinds {
-		if k == readingTable[of].kind {
-			return
-		}
+	if slices.Contains(row.kinds, readingTable[of].kind) {
+		return
 	}
 	r.add(NotAllowed, field, message("a sensor of the class "+string(s)+" does not measure this"))
 }

@@ -134,7 +134,7 @@ func runMachine(t testing.TB, rng *rand.Rand, m *machine.Machine, f *fault, k *m
 		f.apply(&sick, severity)
 	}
 	if f != nil && f.gas != nil {
-		sick.DischargeLine.Drop.Pressure = f.gas(severity) // the compressor works against it, the condensation knows nothing of it
+		sick.DischargeLine.Pressure = f.gas(severity) // the compressor works against it, the condensation knows nothing of it
 	}
 	p, err := machine.Solve(t.Context(), &sick, k)
 	if err != nil {

@@ -17,14 +17,14 @@ func message(text string, numbers ...cycle.Number) Message { return Message{text
 // String returns the sentence with its numbers in SI units.
 func (m Message) String() string { return m.Render(cycle.Number.String) }
 
-// Render returns the sentence with each number as print writes it.
-func (m Message) Render(print func(cycle.Number) string) string {
+// Render returns the sentence with each number as write puts it.
+func (m Message) Render(write func(cycle.Number) string) string {
 	if len(m.numbers) == 0 {
 		return m.text
 	}
 	words := make([]any, len(m.numbers))
 	for i, n := range m.numbers {
-		words[i] = print(n)
+		words[i] = write(n)
 	}
 	return fmt.Sprintf(m.text, words...)
 }
@@ -36,6 +36,7 @@ func temperature(v float64) cycle.Number { return cycle.Number{Quantity: cycle.T
 func pressure(v float64) cycle.Number    { return cycle.Number{Quantity: cycle.Pressure, Value: v} }
 func heat(v float64) cycle.Number        { return cycle.Number{Quantity: cycle.HeatFlow, Value: v} }
 func plain(v float64) cycle.Number       { return cycle.Number{Quantity: cycle.Dimensionless, Value: v} }
+
 func difference(v float64) cycle.Number {
 	return cycle.Number{Quantity: cycle.TemperatureDifference, Value: v}
 }

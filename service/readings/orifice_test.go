@@ -96,7 +96,7 @@ func (r *rooftop) settle(ctx context.Context, k *machine.Condition) (*machine.Ma
 	}
 	fb, err := at(b)
 	for err != nil && b > a+1 {
-		b -= 1
+		b--
 		fb, err = at(b)
 	}
 	if err != nil || fb < 0 {

@@ -30,32 +30,38 @@ var placeTable = [placeCount]struct {
 	suction: {
 		"1", "compressor suction", true,
 		[]Reading{SuctionPressure, EvaporatorOutletPressure},
-		[]Reading{SuctionTemperature, EvaporatorOutletTemperature}, true,
+		[]Reading{SuctionTemperature, EvaporatorOutletTemperature},
+		true,
 	},
 	discharge: {
 		"2", "compressor discharge", true,
 		[]Reading{DischargePressure, CondenserInletPressure, LiquidPressure, ExpansionInletPressure},
-		[]Reading{DischargeTemperature, CondenserInletTemperature}, false,
+		[]Reading{DischargeTemperature, CondenserInletTemperature},
+		false,
 	},
 	condenserInlet: {
 		"3", "condenser inlet", true,
 		[]Reading{CondenserInletPressure, DischargePressure, LiquidPressure, ExpansionInletPressure},
-		[]Reading{CondenserInletTemperature, DischargeTemperature}, false,
+		[]Reading{CondenserInletTemperature, DischargeTemperature},
+		false,
 	},
 	condenserOutlet: {
 		"4", "condenser outlet", false,
 		[]Reading{LiquidPressure, CondenserInletPressure, DischargePressure, ExpansionInletPressure},
-		[]Reading{LiquidTemperature, ExpansionInletTemperature}, true,
+		[]Reading{LiquidTemperature, ExpansionInletTemperature},
+		true,
 	},
 	expansionInlet: {
 		"5", "expansion valve inlet", false,
 		[]Reading{ExpansionInletPressure, LiquidPressure, CondenserInletPressure, DischargePressure},
-		[]Reading{ExpansionInletTemperature, LiquidTemperature}, true,
+		[]Reading{ExpansionInletTemperature, LiquidTemperature},
+		true,
 	},
 	evaporatorOutlet: {
 		"7", "evaporator outlet", true,
 		[]Reading{EvaporatorOutletPressure, SuctionPressure},
-		[]Reading{EvaporatorOutletTemperature, SuctionTemperature}, true,
+		[]Reading{EvaporatorOutletTemperature, SuctionTemperature},
+		true,
 	},
 }
 

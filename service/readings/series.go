@@ -173,14 +173,14 @@ func (s *Series) judge(sample *Sample, r *Result) (Rejection, string) {
 			return Defrosting, f.Field
 		case slices.Contains(doubting, f.Code):
 			// What makes it implausible need not make the machine unsteady: the window goes on.
-			if m, any := momentOf(sample, r); any {
+			if m, tells := momentOf(sample, r); tells {
 				s.window.judge(&m)
 			}
 			return ImplausibleSample, f.Field
 		}
 	}
-	m, any := momentOf(sample, r)
-	if !any {
+	m, tells := momentOf(sample, r)
+	if !tells {
 		return NothingToJudge, ""
 	}
 	return s.window.judge(&m)

@@ -46,7 +46,7 @@ type moment struct {
 	T       [mostWatched]float64
 }
 
-func momentOf(s *Sample, r *Result) (m moment, any bool) {
+func momentOf(s *Sample, r *Result) (m moment, tells bool) {
 	m.at = s.Time
 	for i, x := range watched {
 		m.T[i] = math.NaN()
@@ -56,9 +56,9 @@ func momentOf(s *Sample, r *Result) (m moment, any bool) {
 		case s.has(x.reading):
 			m.T[i] = s.values[x.reading]
 		}
-		any = any || !math.IsNaN(m.T[i])
+		tells = tells || !math.IsNaN(m.T[i])
 	}
-	return m, any
+	return m, tells
 }
 
 // Bounds of what a window remembers.

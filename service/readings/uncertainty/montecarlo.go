@@ -101,8 +101,8 @@ func (in *Inputs) Propagate(ctx context.Context, d Draws, results, kinds int, tr
 
 // sampler returns a function that draws all inputs.
 func (in *Inputs) sampler(seed uint64) (func(x []float64), error) {
-	const stream = 0x6465776d61726b // any constant; one seed gives one sequence
-	rng := rand.New(rand.NewPCG(seed, stream))
+	const stream = 0x6465776d61726b            // any constant; one seed gives one sequence
+	rng := rand.New(rand.NewPCG(seed, stream)) //nolint:gosec // draws must come again with their seed; nothing is secret
 	list := in.List
 	var students []distuv.StudentsT
 	for i := range list {

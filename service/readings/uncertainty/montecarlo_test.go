@@ -33,8 +33,10 @@ func estimateSum(in *Inputs, p Coverage) Estimate {
 // as wide ±17.0 against the law's ±19.7 or so, which refutes it (values from memory, the second by its formula).
 func TestAdditiveModel(t *testing.T) {
 	rectangular := []Input{
-		{Standard: 1, Distribution: Rectangular}, {Standard: 1, Distribution: Rectangular},
-		{Standard: 1, Distribution: Rectangular}, {Standard: 1, Distribution: Rectangular},
+		{Standard: 1, Distribution: Rectangular},
+		{Standard: 1, Distribution: Rectangular},
+		{Standard: 1, Distribution: Rectangular},
+		{Standard: 1, Distribution: Rectangular},
 	}
 	wide := append([]Input(nil), rectangular...)
 	wide[3].Standard = 10
