@@ -20,13 +20,14 @@ const (
 
 // check refuses what a search can reach but no machine can do.
 func (t *trial) check(s *settled, p *OperatingPoint) error {
-	if t.clamped != nil {
-		if len(t.compressor.ratings) > 0 {
-			return refused(EnvelopeLeft, t.clampedField, nil, "the machine would settle at evaporation %s and %s, where the map means no possible compressor",
-				temperature(p.SuctionDewTemperature), t.dischargeNumber(p))
-		}
-		return refused(Impossible, t.clampedField, nil, "at the pressure ratio of %s the law gives %s, outside 0 to 1",
-			plain(s.solution.Performance.PressureRatio), plain(t.clamped.at(s.solution.Performance.PressureRatio)))
+	switch {
+	case t.strained == "":
+	case t.strainedLaw == nil:
+		return refused(EnvelopeLeft, t.strained, nil, "the machine would settle at evaporation %s and %s, where the map means no possible compressor",
+			temperature(p.SuctionDewTemperature), t.dischargeNumber(p))
+	default:
+		return refused(Impossible, t.strained, nil, "at the pressure ratio of %s the law gives %s, outside 0 to 1",
+			plain(s.solution.Performance.PressureRatio), plain(t.strainedLaw.at(s.solution.Performance.PressureRatio)))
 	}
 	for i := range t.compressor.ratings {
 		r := &t.compressor.ratings[i]

@@ -177,20 +177,26 @@ func (e *ExchangerResult) unsound(oversized bool) string {
 	return ""
 }
 
-// Capacity rises with the source's temperature and the heating COP falls with the sink's, over all machines.
+// Capacity rises with the source's temperature and the heating COP falls with the sink's, over all machines. A transcritical
+// unit at one high-side pressure is an exception where its gas leaves near the pseudo-critical temperature: there more flow
+// leaves so much warmer that the heat falls.
 func TestMonotone(t *testing.T) {
 	for _, s := range scenes(t) {
 		m := demo(t, s.name)
-		draws := 40
+		draws, compared := 60, 0
 		if testing.Short() {
-			draws = 4
+			draws = 9
 		}
 		for i := range draws {
-			k := s.draw(rand.New(rand.NewPCG(2, uint64(i))))
+			k := s.draw(rngFor(2, i))
 			p, err := Solve(t.Context(), m, &k)
 			if err != nil {
 				t.Fatal(err)
 			}
+			if p.Condenser.Zones[0].Name == GasCooling && p.Condenser.Zones[0].RefrigerantOutlet > 303.15 {
+				continue
+			}
+			compared++
 			warmer, hotter := k, k
 			warmer.Source.InletTemperature = new(*k.Source.InletTemperature + 1)
 			hotter.Sink.OutletTemperature = new(*k.Sink.OutletTemperature + 1)
@@ -209,6 +215,9 @@ func TestMonotone(t *testing.T) {
 			if !(c.COPHeating < a.COPHeating) {
 				t.Errorf("%s, draw %d: heating COP %g, with a sink hotter by 1 K %g", s.name, i, a.COPHeating, c.COPHeating)
 			}
+		}
+		if compared < draws/3 {
+			t.Errorf("%s: only %d of %d draws were compared", s.name, compared, draws)
 		}
 	}
 }

@@ -39,8 +39,8 @@ type trial struct {
 	sweptSize, flowSize  cycle.Size
 	gasCooler            cycle.GasCooler
 	following            cycle.Compressor
-	clamped              *law // a law left what an efficiency can be
-	clampedField         string
+	strained             string // path of the law or map that left what a compressor can be, or ""
+	strainedLaw          *law
 	sourceMean, sinkMean float64
 	gaps                 [2]float64 // K, between the refrigerants' outlets and the streams' inlets; NaN where the temperatures tell
 	on                   *axes
@@ -193,7 +193,7 @@ func (t *trial) compress(s *settled) error {
 		}
 	}
 	d := &t.compressor
-	t.clamped = nil
+	t.strained, t.strainedLaw = "", nil
 	if len(d.ratings) > 0 {
 		return t.byMaps(&s.flanges)
 	}
@@ -218,8 +218,8 @@ func (t *trial) efficiency(l *law, field string, ratio float64) float64 {
 	if leastEfficiency <= v && v <= mostEfficiency {
 		return v
 	}
-	if t.clamped == nil {
-		t.clamped, t.clampedField = l, field
+	if t.strained == "" {
+		t.strained, t.strainedLaw = field, l
 	}
 	return math.Max(leastEfficiency, math.Min(v, mostEfficiency))
 }
@@ -315,7 +315,7 @@ func (t *trial) byMaps(f *flanges) error {
 	}
 	t.isentropic = eta
 	if !(leastEfficiency <= eta && eta <= mostEfficiency) {
-		t.clamped, t.clampedField = &d.isentropic, d.ratings[i].field
+		t.strained = d.ratings[i].field
 		t.isentropic = math.Max(leastEfficiency, math.Min(eta, mostEfficiency))
 	}
 	t.volumetric = 1 // stands for "not known"; the report removes it
@@ -325,7 +325,7 @@ func (t *trial) byMaps(f *flanges) error {
 		}
 	}
 	if !(flow > leastFlow) {
-		t.clamped, t.clampedField = &d.isentropic, d.ratings[i].field
+		t.strained = d.ratings[i].field
 		flow = leastFlow
 	}
 	t.flow = flow
