@@ -154,6 +154,7 @@ func (a *API) routes() {
 	e.POST("/v1/operating-points", a.limit, a.handle(a.operatingPoints))
 	e.POST("/v1/ratings", a.limit, a.ratings)
 	e.POST("/v1/compressor-maps/fit", a.limit, a.handle(a.fitMap))
+	e.POST("/v1/readings", a.limit, a.postReadings)
 }
 
 // Handler answers clients.

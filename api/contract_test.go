@@ -171,8 +171,9 @@ func checkProblem(r *http.Request, w *httptest.ResponseRecorder) error {
 
 // lineSchemas are what the lines of a stream can be.
 var lineSchemas = map[string][]string{
-	"/v1/states":  {"StateItem", "FailedItem"},
-	"/v1/ratings": {"RatingRow", "FailedRating"},
+	"/v1/states":   {"StateItem", "FailedItem"},
+	"/v1/ratings":  {"RatingRow", "FailedRating"},
+	"/v1/readings": {"ReadingsResult", "FailedItem", "SeriesSummary"},
 }
 
 // checkParts checks the lines of a stream, and that states are complete unless the request selected properties.
@@ -235,7 +236,7 @@ func visit(schema *openapi3.Schema, text []byte) error {
 }
 
 // batches are the lists of a request whose items are answered one by one, with the lists of the answer.
-var batches = map[string]string{"points": "states", "conditions": "operating_points"}
+var batches = map[string]string{"points": "states", "conditions": "operating_points", "samples": "results"}
 
 // goodPart returns what of a request must fit the description when it was answered: without the members that are null,
 // which stand for members left out, and without the items of a batch that became problems.

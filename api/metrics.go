@@ -43,10 +43,10 @@ func newMetrics(r prometheus.Registerer, version string, catalogue *props.Catalo
 			NativeHistogramBucketFactor: 1.1, NativeHistogramMaxBucketNumber: 100, NativeHistogramMinResetDuration: time.Hour,
 		}, []string{"route", "method", "code"}),
 		calculations: prometheus.NewCounterVec(prometheus.CounterOpts{
-			Name: "dewmark_calculations_total", Help: "States, saturation rows and cycles computed, by what came of them.",
+			Name: "dewmark_calculations_total", Help: "States, saturation rows, cycles, machines and readings computed, by what came of them.",
 		}, []string{"kind", "outcome"}),
 		iterations: prometheus.NewHistogramVec(prometheus.HistogramOpts{
-			Name: "dewmark_solver_iterations", Help: "States that a solver asked the property core for until it had its answer.",
+			Name: "dewmark_solver_iterations", Help: "States that a solver asked the property core for until it had its answer; of a machine, evaluations of the whole.",
 			Buckets: prometheus.ExponentialBuckets(4, 2, 12),
 		}, []string{"kind"}),
 		batches: prometheus.NewHistogramVec(prometheus.HistogramOpts{

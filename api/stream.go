@@ -43,6 +43,46 @@ func (a *API) postStates(c *gin.Context) {
 // streamStates answers a stream of points, one line in, one line out, in memory that does not grow. It returns an error
 // while nothing is sent yet.
 func (a *API) streamStates(c *gin.Context) error {
+	var w *worker
+	defer func() {
+		if w != nil {
+			a.metrics.calculated("state", &w.account)
+		}
+	}()
+	return a.answerLines(c, func(first []byte) (*lineAnswers, error) {
+		var head statesHead
+		if err := a.read(first, &head); err != nil {
+			return nil, err
+		}
+		j, err := a.begin(&head.calculation)
+		if err != nil {
+			return nil, err
+		}
+		shown, err := selectFields(head.Properties)
+		if err != nil {
+			return nil, err
+		}
+		j.basis.Transport = transportBases(j.r, shown)
+		if err := j.announce(c, shown.kinds()); err != nil {
+			return nil, err
+		}
+		w = newWorker(j, shown)
+		w.stream = true
+		return &lineAnswers{line: func(out, text []byte, broken error, n int) ([]byte, error) {
+			return w.line(out, text, broken, place{"#/points", n}), nil
+		}}, nil
+	})
+}
+
+// lineAnswers answers the lines behind the head of a stream.
+type lineAnswers struct {
+	// line adds the answer to line n, or to the error that came instead: it is too long. An error of its own ends the stream.
+	line func(out, text []byte, broken error, n int) ([]byte, error)
+	end  func(out []byte) ([]byte, error) // adds what closes the stream; nil for nothing
+}
+
+// answerLines answers a stream whose first line goes to begin. It returns an error while nothing is sent yet.
+func (a *API) answerLines(c *gin.Context, begin func(first []byte) (*lineAnswers, error)) error {
 	if negotiate(c.GetHeader("Accept"), []string{mediaLines}) == "" {
 		return refusal(http.StatusNotAcceptable, "not-acceptable", "Accept does not admit "+mediaLines+", in which a stream is answered")
 	}
@@ -61,29 +101,14 @@ func (a *API) streamStates(c *gin.Context) error {
 	if err := t.start(); err != nil {
 		return err
 	}
-	var head statesHead
-	if err := a.read(first, &head); err != nil {
-		return err
-	}
-	j, err := a.begin(&head.calculation)
+	answers, err := begin(first)
 	if err != nil {
-		return err
-	}
-	shown, err := selectFields(head.Properties)
-	if err != nil {
-		return err
-	}
-	j.basis.Transport = transportBases(j.r, shown)
-	if err := j.announce(c, shown.kinds()); err != nil {
 		return err
 	}
 	_ = connection.EnableFullDuplex() // without it HTTP/1 would read all before the first answer
 	c.Header("Content-Type", mediaLines)
 	c.Status(http.StatusOK)
 
-	w := newWorker(j, shown)
-	w.stream = true
-	defer func() { a.metrics.calculated("state", &w.account) }()
 	var out []byte
 	// flush hands over what is done. It holds no slot, since the client may be slow to take it.
 	flush := func() error {
@@ -104,6 +129,11 @@ func (a *API) streamStates(c *gin.Context) error {
 		line, err := lines.next()
 		if errors.Is(err, io.EOF) {
 			a.metrics.batch(c, n)
+			if answers.end != nil {
+				if out, err = answers.end(out); err != nil {
+					panic(http.ErrAbortHandler)
+				}
+			}
 			_ = flush()
 			return nil
 		}
@@ -117,7 +147,11 @@ func (a *API) streamStates(c *gin.Context) error {
 		if t.resume() != nil {
 			panic(http.ErrAbortHandler) // the client is gone, or soon will be
 		}
-		out = append(w.line(out, line, err, place{"#/points", n}), '\n')
+		if out, err = answers.line(out, line, err, n); err != nil {
+			_ = c.Error(err) // for the request log
+			panic(http.ErrAbortHandler)
+		}
+		out = append(out, '\n')
 		if len(out) >= maxLine && flush() != nil {
 			return nil
 		}
