@@ -1,6 +1,7 @@
 package api
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"strings"
@@ -55,7 +56,7 @@ type machineCompressor struct {
 
 // compressorMap is a data sheet. All in it but the speed is in the units that it declares.
 type compressorMap struct {
-	Kind                 string      `json:"kind"` // default ten_coefficient
+	Kind                 string      `json:"kind"` // ten_coefficient, the default, or biquadratic
 	MassFlow             []float64   `json:"mass_flow" validate:"max=10"`
 	Capacity             []float64   `json:"capacity" validate:"max=10"`
 	Power                []float64   `json:"power" validate:"max=10"`
@@ -271,16 +272,14 @@ func (c *choices) fault(pointer, code, detail string) {
 	*c = append(*c, MemberError{Pointer: pointer, Code: code, Detail: detail})
 }
 
-// tenCoefficient is the kind of map that there is.
-const tenCoefficient = "ten_coefficient"
-
 func (r *compressorMap) si(c *choices, at string) machine.Map {
-	if r.Kind != "" && r.Kind != tenCoefficient {
-		c.fault(at+"/kind", "not_allowed", quote(r.Kind)+" is not known; allowed is "+tenCoefficient)
+	kind, ok := machine.ParseMapKind(cmp.Or(r.Kind, machine.TenCoefficient.String()))
+	if !ok {
+		c.fault(at+"/kind", "not_allowed", quote(r.Kind)+" is not known; allowed are "+strings.Join(machine.MapKinds(), ", "))
 	}
 	sheet := r.Units.resolve(c, at+"/units", r.MassFlow != nil, r.Capacity != nil, r.PressureAxis)
 	m := machine.Map{
-		MassFlow: r.MassFlow, Capacity: r.Capacity, Power: r.Power, PressureAxis: r.PressureAxis,
+		Kind: kind, MassFlow: r.MassFlow, Capacity: r.Capacity, Power: r.Power, PressureAxis: r.PressureAxis,
 		Units: sheet.si(), SuperheatFactor: r.SuperheatFactor, Speed: r.Speed,
 		SuctionSuperheat: sheet.difference(r.SuctionSuperheat), Subcooling: sheet.difference(r.Subcooling),
 		Envelope: vertices(c, at+"/envelope", r.Envelope, sheet.vertex(r.PressureAxis)),

@@ -159,7 +159,7 @@ func (r *fitRequest) si(u *units) (*sheet, []machine.RatedPoint, error) {
 // fitted returns the map as a machine takes it, all in the units of its own.
 func (r *fitRequest) fitted(fit *machine.MapFit, s *sheet, u *units) fittedMap {
 	m := fittedMap{
-		Kind: tenCoefficient, MassFlow: fit.MassFlow.Coefficients, Power: fit.Power.Coefficients, Units: r.MapUnits, PressureAxis: r.PressureAxis, Speed: r.Speed,
+		Kind: machine.TenCoefficient.String(), MassFlow: fit.MassFlow.Coefficients, Power: fit.Power.Coefficients, Units: r.MapUnits, PressureAxis: r.PressureAxis, Speed: r.Speed,
 	}
 	if x := r.SuctionSuperheat; x != nil {
 		m.SuctionSuperheat = new(tidy(u.in(kindTemperatureDifference, *x) / s.temperature.scale))

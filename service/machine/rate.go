@@ -2,6 +2,7 @@ package machine
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"runtime"
 	"slices"
@@ -88,7 +89,13 @@ func Rate(ctx context.Context, m *Machine, g *Grid, yield func(Row) error) error
 }
 
 // row computes one row.
-func (g *Grid) row(ctx context.Context, u *unit, i int) Row {
+func (g *Grid) row(ctx context.Context, u *unit, i int) (row Row) {
+	// A fault in one row must not end the process that serves all others.
+	defer func() {
+		if fault := recover(); fault != nil {
+			row.Err = fmt.Errorf("machine: row %d: %v", i, fault)
+		}
+	}()
 	k, row := g.condition(i)
 	if g.Admit != nil {
 		release, err := g.Admit(ctx)
