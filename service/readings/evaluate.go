@@ -107,7 +107,7 @@ func (w *work) listStates(r *Result) {
 			at.State = unknownState(w.points[p].T.Value, w.points[p].p.Value)
 		}
 		r.States = append(r.States, at)
-		if p == discharge && w.isIdeal {
+		if p == discharge && w.compresses {
 			r.States = append(r.States, StateAt{"2s", "isentropic end of compression", true, w.ideal})
 		}
 	}
@@ -140,8 +140,11 @@ func (w *work) draw(ctx context.Context, r *Result) error {
 		if f := w.pass(); f != noFailure {
 			return int(f)
 		}
-		for i := range results {
-			results[i] = w.figures[i].Value
+		for f := range results {
+			results[f] = w.figures[f].Value
+			if r.Figures[f].Known() && !w.figures[f].Known() {
+				return int(outsideModel)
+			}
 		}
 		return 0
 	}

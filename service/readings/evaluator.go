@@ -223,18 +223,13 @@ func (e *Evaluator) checkOptions(r *refusals) {
 	}
 	d := &o.Draws
 	d.Coverage = o.Coverage
-	if d.Most == 0 {
-		d.Most = uncertainty.DefaultMost
-	}
-	count := func(field string, v, least int) {
-		if !(least <= v && v <= uncertainty.DefaultMost) {
-			r.add(OutOfBounds, field, message("%s is out of bounds: it must be at least %s and at most %s", plain(float64(v)), plain(float64(least)), plain(uncertainty.DefaultMost)))
+	count := func(field string, v int) {
+		if v != 0 && !(leastDraws <= v && v <= MostDraws) {
+			r.add(OutOfBounds, field, message("%s is out of bounds: it must be at least %s and at most %s", plain(float64(v)), plain(leastDraws), plain(MostDraws)))
 		}
 	}
-	if d.Count != 0 {
-		count("draws.count", d.Count, leastDraws)
-	}
-	count("draws.most", d.Most, leastDraws)
+	count("draws.count", d.Count)
+	count("draws.most", d.Most)
 	if d.Digits < 0 || d.Digits > 2 {
 		r.add(OutOfBounds, "draws.digits", message("the significant digits of an uncertainty that count are 1 or 2"))
 	}
@@ -244,3 +239,6 @@ const (
 	lowestCoverage, highestCoverage = 0.5, 0.999
 	leastDraws                      = 1000
 )
+
+// MostDraws is the most random draws of one sample. Each keeps 8 bytes for every figure that is known.
+const MostDraws = 1_000_000

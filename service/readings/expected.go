@@ -97,6 +97,13 @@ func (x *expected) Expect(ctx context.Context, c *Conditions) (*Expectation, err
 		return nil, err
 	}
 	e := &Expectation{Features: x.features(p)}
+	// A change that the machine was told says nothing about it.
+	if k.Sink.OutletTemperature != nil {
+		e.Features[FeatureCondenserChange] = math.NaN()
+	}
+	if k.Source.OutletTemperature != nil {
+		e.Features[FeatureEvaporatorChange] = math.NaN()
+	}
 	e.Standard = x.doubts(&e.Features)
 	for i := range p.Breaches {
 		b := &p.Breaches[i]

@@ -132,6 +132,7 @@ type Options struct {
 	// Coverage is the probability that belongs to expanded uncertainties. 0: that of two standard uncertainties of a normal
 	// distribution, 95.45 %.
 	Coverage uncertainty.Coverage
-	// Draws are used by MonteCarlo. Its Coverage is taken from above.
+	// Draws are used by MonteCarlo: at least 1000 and at most [MostDraws]. Its Coverage is taken from above. Paths
+	// "draws.count", "draws.most" and "draws.digits".
 	Draws uncertainty.Draws
 }

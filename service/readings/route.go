@@ -77,10 +77,10 @@ func (w *work) size() failure {
 			}
 		}
 	}
-	w.balance()
 	for of := range sizedCount {
 		w.weigh(of)
 	}
+	w.balance()
 	return noFailure
 }
 
@@ -109,29 +109,29 @@ func (w *work) sized(of sizing) uncertainty.Linear {
 // no state of the refrigerant is needed for that, but heat gained and lost by pipes is neglected.
 func (w *work) balance() {
 	c := &w.calculus
-	known := func(of sizing) uncertainty.Linear {
+	set := func(of sizing, y uncertainty.Linear) {
+		w.routes[of][byBalance] = y
 		w.weigh(of)
-		return w.sized(of)
 	}
-	heating, cooling, power := known(heatingCapacity), known(coolingCapacity), known(compressorPower)
+	heating, cooling, power := w.sized(heatingCapacity), w.sized(coolingCapacity), w.sized(compressorPower)
 	inside := c.Complement(w.loss)
 	switch {
 	case !heating.Known():
 		heating = c.Sum(cooling, c.Product(inside, power))
-		w.routes[heatingCapacity][byBalance] = heating
+		set(heatingCapacity, heating)
 	case !cooling.Known():
 		cooling = c.Difference(heating, c.Product(inside, power))
-		w.routes[coolingCapacity][byBalance] = cooling
+		set(coolingCapacity, cooling)
 	case !power.Known():
 		power = c.Quotient(c.Difference(heating, cooling), inside)
-		w.routes[compressorPower][byBalance] = power
+		set(compressorPower, power)
 	}
-	if flow := known(massFlow); !flow.Known() && !w.evaluator.several {
-		flow = c.Quotient(heating, w.perKilo.release)
+	if !w.sized(massFlow).Known() && !w.evaluator.several {
+		flow := c.Quotient(heating, w.perKilo.release)
 		if !flow.Known() {
 			flow = c.Quotient(cooling, w.perKilo.uptake)
 		}
-		w.routes[massFlow][byBalance] = flow
+		set(massFlow, flow)
 	}
 }
 

@@ -8,31 +8,19 @@ import (
 )
 
 // work is the workspace of one sample. A pass computes its figures from the values of its inputs: the first pass, with
-// derivatives, decides what is known and how routes are weighted; passes with random inputs keep to that.
+// derivatives, decides what is known and how routes are weighted; passes with random inputs keep to its decisions.
 type work struct {
 	evaluator *Evaluator
 	sample    *Sample
+	located   [placeCount]located
 
 	calculus uncertainty.Calculus
 	inputs   uncertainty.Inputs
-	values   []float64 // of the inputs, in this pass
-	deciding bool      // the first pass
+	indices
+	values []float64 // of the inputs, in this pass
 
-	// Indices of inputs, or none.
-	index                           [readingCount]int
-	ambient, exchange, compression  int
-	defaultLoss, mapFactor          int
-	density, heatCapacity           [sideCount]int
-	shared                          []int
-	located                         [placeCount]located
-	standing                        [placeCount]standing
-	obstacles                       [placeCount]error // why a state is missing
-	flowing                         [sideCount]bool   // the stream's heat takes part
-	streamObstacles                 [sideCount]error
-	releases, takes, rises, isIdeal bool // differences of enthalpy that take part
-	mapTells                        bool
-	lossValue                       float64 // of the power, where no reading tells
-	weights                         [sizedCount][routeCount]float64
+	deciding bool // this is the first pass
+	decisions
 
 	points  [placeCount]point
 	ideal   props.State // isentropic end of the compression
@@ -41,6 +29,31 @@ type work struct {
 	heat    [sideCount]uncertainty.Linear
 	routes  [sizedCount][routeCount]uncertainty.Linear
 	figures [FigureCount]uncertainty.Linear
+}
+
+// indices tell where the inputs of a sample stand in its list; none for what is certain or not there.
+type indices struct {
+	index                 [readingCount]int // of the readings
+	ambient               int               // pressure
+	exchange, compression int               // factors of the property model
+	density, heatCapacity [sideCount]int    // factors of liquids
+	mapFactor             int
+	defaultLoss           int // where no reading tells the heat loss
+	shared                []int
+}
+
+// decisions are what the first pass finds out.
+type decisions struct {
+	standing        [placeCount]standing
+	obstacles       [placeCount]error // why a state is missing
+	flowing         [sideCount]bool   // the stream's heat takes part
+	streamObstacles [sideCount]error
+	// Differences of enthalpy that have the right sign: over the condenser, the evaporator, the compressor, and an isentropic
+	// compression.
+	releases, takes, rises, compresses bool
+	mapTells                           bool    // the machine's compressor tells a flow
+	lossValue                          float64 // heat loss where no reading tells it
+	weights                            [sizedCount][routeCount]float64
 }
 
 // failure is why a pass with random inputs has no result.
@@ -174,7 +187,7 @@ func (w *work) specifics() failure {
 	}
 	rise := c.Product(compression, c.Difference(h(discharge), h(suction)))
 	k.work = c.Quotient(rise, c.Complement(w.loss))
-	if w.points[suction].h.Known() && w.points[discharge].p.Known() && (w.deciding || w.isIdeal) {
+	if w.points[suction].h.Known() && w.points[discharge].p.Known() && (w.deciding || w.compresses) {
 		s, end, err := e.fluid.compressed(c, &w.points[suction], w.points[discharge].p)
 		switch {
 		case err == nil:
@@ -187,7 +200,7 @@ func (w *work) specifics() failure {
 	for _, d := range [...]struct {
 		value *uncertainty.Linear
 		part  *bool
-	}{{&k.release, &w.releases}, {&k.uptake, &w.takes}, {&k.work, &w.rises}, {&k.ideal, &w.isIdeal}} {
+	}{{&k.release, &w.releases}, {&k.uptake, &w.takes}, {&k.work, &w.rises}, {&k.ideal, &w.compresses}} {
 		right := d.value.Value > 0 // false where it is not known
 		if w.deciding {
 			*d.part = right

@@ -14,13 +14,13 @@ import (
 type Draws struct {
 	Seed     uint64
 	Count    int // exactly so many; 0: until the results are stable, at most Most
-	Most     int // 0 means 1 000 000
+	Most     int // 0 means DefaultMost
 	Digits   int // significant digits of a standard uncertainty that must be stable, 1 or 2; 0 means 2
 	Coverage Coverage
 }
 
 // DefaultMost is the most draws, unless a request says otherwise.
-const DefaultMost = 1_000_000
+const DefaultMost = 200_000
 
 // batch is the number of draws between two looks at the stability: at least 100/(1-p) and 10 000 (JCGM 101, 7.9.4).
 const batch = 10_000
@@ -73,7 +73,7 @@ func (in *Inputs) Propagate(ctx context.Context, d Draws, results, kinds int, tr
 	}
 	size := min(batch, (most+leastBatches-1)/leastBatches)
 	p := &Propagation{Failures: make([]int, kinds)}
-	t := newTally(results, min(most, 20*batch), d.Coverage)
+	t := newTally(results, min(most, 2*batch), d.Coverage)
 	x, y := make([]float64, len(in.List)), make([]float64, results)
 	for p.Draws < most && !p.Stable {
 		if err := context.Cause(ctx); err != nil {
