@@ -98,19 +98,27 @@ func (w *work) checkDischarge(r *Result) {
 // checkAgainstStreams compares with what the exchangers exchange heat with.
 func (w *work) checkAgainstStreams(r *Result) {
 	evaporation, condensation := r.Figure(FigureEvaporationTemperature), r.Figure(FigureCondensationTemperature)
-	if cold := w.streamMean(source); cold.Known() && evaporation.Known() && !(evaporation.Value < cold.Value) {
+	cold := w.streamMean(source)
+	if !cold.Known() { // one end still bounds it
+		cold, _, _ = w.ends(source)
+	}
+	if cold.Known() && evaporation.Known() && !(evaporation.Value < cold.Value) {
 		r.found(EvaporationAboveSource, FigureEvaporationTemperature.String(),
-			"the evaporation, %s, is not colder than the mean of the source, %s: wrong refrigerant, or gauge and absolute pressure mixed up",
+			"the evaporation, %s, is not colder than the source, %s: wrong refrigerant, or gauge and absolute pressure mixed up",
 			temperature(evaporation.Value), temperature(cold.Value))
 	}
-	if _, out, _ := w.ends(sink); out.Known() && condensation.Known() {
+	in, out, _ := w.ends(sink)
+	if !out.Known() {
+		out = in
+	}
+	if out.Known() && condensation.Known() {
 		glide := 0.0
 		if bubble := w.points[condenserOutlet].saturated; bubble.Known() {
 			glide = condensation.Value - bubble.Value
 		}
 		if !(condensation.Value > out.Value-glide) {
 			r.found(CondensationBelowSink, FigureCondensationTemperature.String(),
-				"the condensation, %s, is not warmer than the sink's outlet, %s, less a glide of %s: wrong refrigerant, or gauge and absolute pressure mixed up",
+				"the condensation, %s, is not warmer than the sink, %s, less a glide of %s: wrong refrigerant, or gauge and absolute pressure mixed up",
 				temperature(condensation.Value), temperature(out.Value), difference(glide))
 		}
 	}

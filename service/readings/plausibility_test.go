@@ -71,6 +71,11 @@ func TestPlausibility(t *testing.T) {
 			s.Set(readings.SourceInletTemperature, 273)
 			s.Set(readings.SourceOutletTemperature, 271)
 		}, readings.EvaporationAboveSource},
+		{"a source that enters colder than the evaporation", func(s *S) { s.Set(readings.SourceInletTemperature, 272) }, readings.EvaporationAboveSource},
+		{"a sink that enters hotter than the condensation", func(s *S) {
+			s.Set(readings.SinkInletTemperature, 320)
+			s.Unset(readings.SinkOutletTemperature)
+		}, readings.CondensationBelowSink},
 		{"a sink hotter than the condensation", func(s *S) {
 			s.Set(readings.SinkInletTemperature, 325)
 			s.Set(readings.SinkOutletTemperature, 330)

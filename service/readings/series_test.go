@@ -3,6 +3,7 @@ package readings_test
 import (
 	"math"
 	"math/rand/v2"
+	"runtime"
 	"testing"
 	"time"
 
@@ -244,5 +245,35 @@ func TestSeriesRefusals(t *testing.T) {
 	} {
 		_, err := readings.NewSeries(e, o)
 		refuses(t, err, field)
+	}
+}
+
+// A series of any length needs no more memory than a short one.
+func TestConstantMemory(t *testing.T) {
+	if testing.Short() {
+		t.Skip("40 000 samples")
+	}
+	s := series(t, readings.SeriesOptions{BaselinePeriod: time.Hour})
+	sample := heatPump(t, refrigerant(t, "R290"))
+	sample.Time = midnight
+	used := func(samples int) uint64 {
+		for range samples {
+			sample.Time = sample.Time.Add(10 * time.Second)
+			if _, err := s.Add(t.Context(), sample); err != nil {
+				t.Fatal(err)
+			}
+		}
+		runtime.GC()
+		var m runtime.MemStats
+		runtime.ReadMemStats(&m)
+		return m.HeapAlloc
+	}
+	short, long := used(10_000), used(30_000)
+	// Anything kept for each sample would be 30 000 times at least a float64.
+	if long > short+200_000 {
+		t.Errorf("%d bytes after 10 000 samples, %d after 40 000", short, long)
+	}
+	if sum := s.Summary(); sum.Samples != 40_000 {
+		t.Errorf("%d samples", sum.Samples)
 	}
 }

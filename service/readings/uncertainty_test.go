@@ -291,3 +291,20 @@ func TestCoverage(t *testing.T) {
 		}
 	}
 }
+
+// A reading known from few samples widens the interval: by Welch and Satterthwaite the degrees of freedom of a figure that
+// hangs on it alone are its own.
+func TestFewDegreesOfFreedom(t *testing.T) {
+	fluid := refrigerant(t, "R290")
+	u := certain(1e-9)
+	u[readings.SuctionTemperature] = readings.Uncertainty{Standard: new(0.3), DegreesOfFreedom: new(4.0)}
+	r := evaluate(t, evaluator(t, readings.Installation{Refrigerant: fluid, Uncertainties: u}, &readings.Options{Coverage: 0.95}), heatPump(t, fluid))
+	sh := r.Figure(readings.FigureSuperheat)
+	// Student's factor for 4 degrees of freedom at 95 % is 2.78 (JCGM 100, table G.2).
+	if !(math.Abs(sh.DegreesOfFreedom-4) < 1e-6) || !(math.Abs(sh.CoverageFactor-2.78) < 0.005) || !(math.Abs(sh.Expanded-2.78*0.3) < 0.002) {
+		t.Errorf("%+v", sh)
+	}
+	if cooling := r.Figure(readings.FigureSubcooling); !math.IsInf(cooling.DegreesOfFreedom, 1) || !(math.Abs(cooling.CoverageFactor-1.96) < 0.001) {
+		t.Errorf("%+v", cooling)
+	}
+}

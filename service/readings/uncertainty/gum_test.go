@@ -1,31 +1,40 @@
 package uncertainty
 
 import (
+	"encoding/csv"
 	"math"
+	"os"
+	"strconv"
+	"strings"
 	"testing"
 )
 
-// JCGM 100:2008, table G.2, all digits printed (from memory).
+// testdata/jcgm100_table_g2.csv, to half a unit of its last digit.
 func TestFactorTableG2(t *testing.T) {
-	for _, row := range []struct{ nu, p9545, p95, p99 float64 }{
-		{1, 13.97, 12.71, 63.66},
-		{2, 4.53, 4.30, 9.92},
-		{3, 3.31, 3.18, 5.84},
-		{4, 2.87, 2.78, 4.60},
-		{5, 2.65, 2.57, 4.03},
-		{6, 2.52, 2.45, 3.71},
-		{8, 2.37, 2.31, 3.36},
-		{10, 2.28, 2.23, 3.17},
-		{20, 2.13, 2.09, 2.85},
-		{50, 2.05, 2.01, 2.68},
-		{math.Inf(1), 2.000, 1.960, 2.576},
-	} {
-		for _, c := range []struct {
-			p    Coverage
-			want float64
-		}{{TwoStandard, row.p9545}, {0.95, row.p95}, {0.99, row.p99}} {
-			if got := c.p.Factor(row.nu); !(math.Abs(got-c.want) <= 0.0051) {
-				t.Errorf("%.4g at %g degrees of freedom: %.4f, the table has %.3f", float64(c.p), row.nu, got, c.want)
+	f, err := os.Open("testdata/jcgm100_table_g2.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	r := csv.NewReader(f)
+	r.Comment = '#'
+	rows, err := r.ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, row := range rows[1:] {
+		nu, err := strconv.ParseFloat(row[0], 64)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for i, p := range []Coverage{TwoStandard, 0.95, 0.99} {
+			want, err := strconv.ParseFloat(row[i+1], 64)
+			if err != nil {
+				t.Fatal(err)
+			}
+			digits := len(row[i+1]) - strings.Index(row[i+1], ".") - 1
+			if got := p.Factor(nu); !(math.Abs(got-want) <= 0.5*math.Pow(10, -float64(digits))) {
+				t.Errorf("%.4g at %g degrees of freedom: %.5f, the table has %s", float64(p), nu, got, row[i+1])
 			}
 		}
 	}
