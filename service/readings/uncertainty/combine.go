@@ -27,120 +27,135 @@ const dependent = 1e-9
 
 // Combine returns the weights of least variance that are not negative and add up to 1. For independent estimates they are
 // those by inverse variance; estimates that share inputs are weighted by the inverse of their covariance matrix (A. C.
-// Aitken, Proc. R. Soc. Edinb. 55 (1936) 42), as far as that leaves no weight negative. Estimates that are not known count
-// nothing.
+// Aitken, Proc. R. Soc. Edinb. 55 (1936) 42), as far as that leaves no weight negative. Estimates that are not known, or
+// whose variance is no finite number, count nothing.
 func (in *Inputs) Combine(estimates []Linear) Combination {
 	k := Combination{Weights: make([]float64, len(estimates))}
-	v := in.covariances(estimates)
-	best := -1
+	var known []Linear
+	var places []int
+	best, least := -1, math.Inf(1)
 	for i, y := range estimates {
-		if usable(y, v[i][i]) && (best < 0 || v[i][i] < v[best][best]) {
-			best = i
+		if !y.Known() {
+			continue
+		}
+		if variance := in.Covariance(y, y); variance <= math.MaxFloat64 {
+			if variance < least {
+				best, least = len(known), variance
+			}
+			known, places = append(known, y), append(places, i)
 		}
 	}
-	if best < 0 {
+	switch {
+	case best < 0:
+		return k
+	case len(known) == 1 || least == 0:
+		k.Weights[places[best]] = 1
 		return k
 	}
-	k.Weights[best] = 1
-	kept := []int{best}
-	if !(v[best][best] > 0) {
-		return k
+	m := mix{v: in.covariances(known), w: make([]float64, len(known)), kept: append(make([]int, 0, len(known)), best)}
+	m.w[best] = 1
+	m.improve()
+	k.ChiSquared, k.Degrees = m.agreement(known)
+	for j, i := range places {
+		k.Weights[i] = m.w[j]
 	}
-	// An active set method for a quadratic with bounds, as C. L. Lawson and R. J. Hanson, Solving Least Squares Problems
-	// (1974), chapter 23: take in the estimate that promises most, and leave out those whose weight falls to zero.
-	for range 4 * len(estimates) {
-		next := promising(estimates, v, k.Weights, kept)
-		if next < 0 {
-			break
-		}
-		kept = append(kept, next)
-		for {
-			var f factor
-			if !f.build(v, kept) {
-				kept = kept[:len(kept)-1] // the new one depends on the others
-				break
-			}
-			target := f.weights()
-			step, out := 1.0, -1
-			for j, i := range kept {
-				if w := k.Weights[i]; target[j] <= 0 && w/(w-target[j]) < step {
-					step, out = w/(w-target[j]), j
-				}
-			}
-			for j, i := range kept {
-				k.Weights[i] += step * (target[j] - k.Weights[i])
-			}
-			if out < 0 {
-				break
-			}
-			k.Weights[kept[out]] = 0
-			kept = slices.Delete(kept, out, out+1)
-		}
-	}
-	k.agree(estimates, v, kept)
 	return k
 }
 
-// usable reports whether an estimate is known and its variance a finite number.
-func usable(y Linear, variance float64) bool { return y.Known() && variance <= math.MaxFloat64 }
-
-// covariances returns the covariance matrix of the estimates that are known.
-func (in *Inputs) covariances(estimates []Linear) [][]float64 {
-	v := make([][]float64, len(estimates))
-	room := make([]float64, len(estimates)*len(estimates))
+// covariances returns the covariance matrix of results.
+func (in *Inputs) covariances(y []Linear) [][]float64 {
+	n := len(y)
+	v, room := make([][]float64, n), make([]float64, n*n)
 	for i := range v {
-		v[i] = room[i*len(v) : (i+1)*len(v)]
+		v[i] = room[i*n : (i+1)*n]
 		for j := range i + 1 {
-			if estimates[i].Known() && estimates[j].Known() {
-				v[i][j] = in.Covariance(estimates[i], estimates[j])
-				v[j][i] = v[i][j]
-			}
+			v[i][j] = in.Covariance(y[i], y[j])
+			v[j][i] = v[i][j]
 		}
 	}
 	return v
 }
 
-// promising returns the estimate outside those kept that lowers the variance fastest, or -1.
-func promising(estimates []Linear, v [][]float64, w []float64, kept []int) int {
+// mix is a weighted mean of estimates on its way to the least variance.
+type mix struct {
+	v    [][]float64 // covariance matrix
+	w    []float64   // weights
+	kept []int       // estimates whose weight is not 0
+}
+
+// improve is an active set method for a quadratic with bounds, as in C. L. Lawson and R. J. Hanson, Solving Least Squares
+// Problems (1974), chapter 23: it takes in the estimate that promises most, and leaves out those whose weight falls to zero.
+func (m *mix) improve() {
+	for range 4 * len(m.w) { // each estimate comes in about once
+		next := m.promising()
+		if next < 0 {
+			return
+		}
+		m.kept = append(m.kept, next)
+		for {
+			var f factor
+			if !f.build(m.v, m.kept) {
+				m.kept = m.kept[:len(m.kept)-1] // the new one depends on the others
+				return
+			}
+			target := f.weights()
+			step, out := 1.0, -1
+			for j, i := range m.kept {
+				if w := m.w[i]; target[j] <= 0 && w/(w-target[j]) < step {
+					step, out = w/(w-target[j]), j
+				}
+			}
+			for j, i := range m.kept {
+				m.w[i] += step * (target[j] - m.w[i])
+			}
+			if out < 0 {
+				break
+			}
+			m.w[m.kept[out]] = 0
+			m.kept = slices.Delete(m.kept, out, out+1)
+		}
+	}
+}
+
+// promising returns the estimate outside the mean that would lower its variance fastest, or -1.
+func (m *mix) promising() int {
 	lean := func(i int) (sum float64) { // covariance of estimate i with the mean
-		for _, j := range kept {
-			sum += v[i][j] * w[j]
+		for _, j := range m.kept {
+			sum += m.v[i][j] * m.w[j]
 		}
 		return sum
 	}
 	var variance float64
-	for _, i := range kept {
-		variance += w[i] * lean(i)
+	for _, i := range m.kept {
+		variance += m.w[i] * lean(i)
 	}
 	next, least := -1, variance*(1-dependent)
-	for i, y := range estimates {
-		if usable(y, v[i][i]) && !slices.Contains(kept, i) {
-			if l := lean(i); l < least {
-				next, least = i, l
-			}
+	for i := range m.w {
+		if l := lean(i); l < least && !slices.Contains(m.kept, i) {
+			next, least = i, l
 		}
 	}
 	return next
 }
 
-// agree finds how well the estimates that have a weight agree.
-func (k *Combination) agree(estimates []Linear, v [][]float64, kept []int) {
+// agreement returns the sum of squares by which the estimates in the mean miss it, and its degrees of freedom.
+func (m *mix) agreement(y []Linear) (chi float64, degrees int) {
 	var f factor
-	if !f.build(v, kept) {
-		return
+	if !f.build(m.v, m.kept) {
+		return 0, 0
 	}
 	var mean float64
-	for _, i := range kept {
-		mean += k.Weights[i] * estimates[i].Value
+	for _, i := range m.kept {
+		mean += m.w[i] * y[i].Value
 	}
-	off := make([]float64, len(kept))
-	for j, i := range kept {
-		off[j] = estimates[i].Value - mean
+	off := make([]float64, len(m.kept))
+	for j, i := range m.kept {
+		off[j] = y[i].Value - mean
 	}
 	for j, x := range f.solve(off) {
-		k.ChiSquared += off[j] * x
+		chi += off[j] * x
 	}
-	k.Degrees = len(kept) - 1
+	return chi, len(m.kept) - 1
 }
 
 // factor is the Cholesky factor of a covariance matrix.

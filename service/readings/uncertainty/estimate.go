@@ -48,20 +48,33 @@ func (in *Inputs) Estimate(y Linear, p Coverage, room []Share) (Estimate, []Shar
 		e.Expanded = e.CoverageFactor * e.Standard
 		return e, room
 	}
-	from := len(room)
 	variance := e.Standard * e.Standard
-	for i := range in.List {
-		x := &in.List[i]
-		if c := y.slopes[i]; c != 0 {
-			room = append(room, Share{x.Name, c, x.Standard, c * x.Standard * in.leaning(y, i) / variance, x.Assumed})
-		}
-	}
-	e.Budget = room[from:len(room):len(room)]
-	slices.SortStableFunc(e.Budget, func(a, b Share) int { return cmp.Compare(b.Share, a.Share) })
+	e.Budget, room = in.budget(y, variance, room)
 	e.DegreesOfFreedom = in.degrees(y, variance)
 	e.CoverageFactor = p.Factor(e.DegreesOfFreedom)
 	e.Expanded = e.CoverageFactor * e.Standard
 	return e, room
+}
+
+// budget returns the shares of a variance, the largest first.
+func (in *Inputs) budget(y Linear, variance float64, room []Share) (budget, rest []Share) {
+	type part struct {
+		share float64
+		i     int
+	}
+	parts := make([]part, 0, 48) // sorting these moves no names; more inputs than most samples have
+	for i := range in.List {
+		if c := y.slopes[i]; c != 0 {
+			parts = append(parts, part{c * in.List[i].Standard * in.leaning(y, i) / variance, i})
+		}
+	}
+	slices.SortStableFunc(parts, func(a, b part) int { return cmp.Compare(b.share, a.share) })
+	from := len(room)
+	for _, k := range parts {
+		x := &in.List[k.i]
+		room = append(room, Share{x.Name, y.slopes[k.i], x.Standard, k.share, x.Assumed})
+	}
+	return room[from:len(room):len(room)], room
 }
 
 // leaning returns the covariance of a result with input i over the input's standard uncertainty.
