@@ -257,7 +257,8 @@ func (t *ratingTable) begin() error {
 		}
 		o.text("sink_reference", t.sinkReference())
 		o.name("rows")
-		t.buffer = append(o.b, '[')
+		o.b = append(o.b, '[')
+		t.buffer = o.b
 		h.Set("Content-Type", mediaJSON)
 	default:
 		// The cautions of the first row stand for those that all rows have.

@@ -32,8 +32,7 @@ func TestEveryReadingHasAMember(t *testing.T) {
 	var s sample
 	var u uncertainties
 	fill := func(v reflect.Value) {
-		for i := range v.NumField() {
-			f := v.Field(i)
+		for _, f := range v.Fields() {
 			f.Set(reflect.New(f.Type().Elem()))
 		}
 	}
@@ -54,8 +53,8 @@ func TestEveryReadingHasAMember(t *testing.T) {
 		value := 0.5
 		path := strings.Split(r.String(), ".")
 		var sent any = value
-		for i := len(path) - 1; i >= 0; i-- {
-			sent = jsonObject{path[i]: sent}
+		for _, name := range slices.Backward(path) {
+			sent = jsonObject{name: sent}
 		}
 		text, err := json.Marshal(sent)
 		if err != nil {
