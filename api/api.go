@@ -1,5 +1,5 @@
 // Package api serves dewmark over HTTP: routes, request and response schemas, validation, problem details, units at the
-// edge, metrics and limits. It computes nothing itself: states come from props, cycles from service/cycle.
+// edge, metrics and limits. It computes nothing itself: states come from props, cycles, machines and readings from service.
 //
 // Every calculating endpoint is a pure function of its request, so that the same request gives the same bytes.
 package api
