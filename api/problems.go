@@ -218,11 +218,12 @@ func (v voice) ambiguous(e *props.AmbiguousError) *Problem {
 		pair = append(pair, props.Given{Property: p, Value: p.Of(&e.Solutions[0])})
 	}
 	detail := fmt.Sprintf("%d states of %s have %s", len(e.Solutions), e.Refrigerant, v.pairText(pair...))
-	if len(v.given) == 0 { // deep in a calculation, where the request has no phase to give
+	switch {
+	case len(v.given) == 0: // deep in a calculation, where the request has no phase to give
 		detail += ": " + strings.Join(phases, ", ")
-	} else if len(phases) == len(e.Solutions) {
+	case len(phases) == len(e.Solutions):
 		detail += "; say which is meant with phase: " + strings.Join(phases, ", ")
-	} else {
+	default:
 		detail += ", some of one phase; see solutions, and name the one that is meant by other properties"
 	}
 	p := unprocessable("ambiguous-state", "Several states have these properties", detail, MemberError{Pointer: v.at + "/phase", Code: "ambiguous", Detail: detail})

@@ -33,8 +33,10 @@ func (r *Pure) TemperaturePressure(T, p float64) (State, error) {
 		ps, liquid, vapour := r.curve.At(T)
 		if math.Abs(p-ps) <= saturationTie*ps {
 			d := r.domeOf(T, p, liquid*r.M, vapour*r.M)
-			return State{}, &AmbiguousError{Refrigerant: r.rec.ID, Pair: [2]Property{Temperature, Pressure},
-				Solutions: []State{r.domeState(&d, 0), r.domeState(&d, 1)}}
+			return State{}, &AmbiguousError{
+				Refrigerant: r.rec.ID, Pair: [2]Property{Temperature, Pressure},
+				Solutions: []State{r.domeState(&d, 0), r.domeState(&d, 1)},
+			}
 		}
 		return r.solveDensity(&iso, p, r.subcritical(&iso, p, ps, liquid*r.M, vapour*r.M))
 	}

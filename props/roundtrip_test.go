@@ -134,8 +134,8 @@ func recovered(t *testing.T, r *props.Pure, s props.State, a, b props.Given) boo
 	var spreadT, spreadRho float64
 	for _, e := range [][2]float64{{4e-15, 0}, {-4e-15, 0}, {0, 4e-15}, {0, -4e-15}} {
 		x, y := a, b
-		x.Value += e[0] * scale(a, s)
-		y.Value += e[1] * scale(b, s)
+		x.Value += e[0] * scale(a)
+		y.Value += e[1] * scale(b)
 		if moved, err := r.States(x, y); err == nil {
 			mT, mRho := miss(moved, s)
 			spreadT, spreadRho = math.Max(spreadT, mT), math.Max(spreadRho, mRho)
@@ -149,7 +149,7 @@ func recovered(t *testing.T, r *props.Pure, s props.State, a, b props.Given) boo
 }
 
 // scale is the size of the numbers from which a property is summed.
-func scale(g props.Given, s props.State) float64 {
+func scale(g props.Given) float64 {
 	switch g.Property {
 	case props.Enthalpy, props.InternalEnergy:
 		return math.Abs(g.Value) + 1e5

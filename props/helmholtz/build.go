@@ -199,13 +199,13 @@ func planPowers(exponents []float64) powerTable {
 			return i
 		}
 		quarters := t*4 == math.Trunc(t*4) && math.Abs(t) <= 64
-		switch {
-		case t == 0.5 || t == 0.25:
+		switch t {
+		case 0.5, 0.25:
 			a := need(2 * t)
 			i := put(t)
 			p.roots = append(p.roots, powerStep{i, a, 0})
 			return i
-		case t == -0.25 || t == -0.5 || t == -1:
+		case -0.25, -0.5, -1:
 			a := need(-t)
 			i := put(t)
 			p.inverses = append(p.inverses, powerStep{i, a, 0})

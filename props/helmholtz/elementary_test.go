@@ -29,7 +29,7 @@ func TestElementary(t *testing.T) {
 	if !(worstLog < 4.5e-16) {
 		t.Errorf("log off by %.1e", worstLog)
 	}
-	for _, x := range []float64{0, -0.0, 699.9, -699.9, 701, -701, -1e300, 1e300, math.Inf(1), math.Inf(-1)} {
+	for _, x := range []float64{0, math.Copysign(0, -1), 699.9, -699.9, 701, -701, -1e300, 1e300, math.Inf(1), math.Inf(-1)} {
 		if got, want := exp(x), math.Exp(x); math.Abs(got-want) > 4.5e-16*want && want > 1e-300 {
 			t.Errorf("exp(%g) = %g, want %g", x, got, want)
 		}

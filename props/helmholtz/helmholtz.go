@@ -181,7 +181,7 @@ func New(c Coefficients) (*Equation, error) {
 			}
 			return b.exponential(x, x[3], g)
 		}},
-		{"double_exponential", r.DoubleExponential, 5, 5, func(x []float64) error { return b.doubleExponential(x) }},
+		{"double_exponential", r.DoubleExponential, 5, 5, b.doubleExponential},
 		{"gaussian", r.Gaussian, 7, 7, func(x []float64) error { return b.gaussian(x, tauBell, 0) }},
 		{"associating", r.Associating, 8, 8, func(x []float64) error { return b.gaussian(x, tauInvert, x[7]) }},
 		{"nonanalytic", r.NonAnalytic, 8, 8, func(x []float64) error {

@@ -62,12 +62,3 @@ func (c *series) at(x float64) float64 {
 	even, odd = even*y+c[0], odd*y+c[1]
 	return even + x*odd
 }
-
-// slope evaluates the derivative of the polynomial.
-func (c *series) slope(x float64) float64 {
-	d := float64(degree) * c[degree]
-	for j := degree - 1; j > 0; j-- {
-		d = d*x + float64(j)*c[j]
-	}
-	return d
-}
