@@ -1,6 +1,10 @@
 package props
 
-import "math"
+import (
+	"math"
+
+	"dewmark/props/internal/roots"
+)
 
 // qualityLine calls found with every state of quality x whose property y, density included, is v. Along a line of
 // constant quality none of them need be monotonic: the enthalpy of saturated vapour, for one, has a maximum.
@@ -24,7 +28,7 @@ func (r *Pure) qualityLine(x float64, y Property, v float64, found func(State)) 
 		}
 	}
 	n := 0
-	allRoots(r.curveTemperatures(), func(T float64) (float64, float64) {
+	roots.All(r.curveTemperatures(), func(T float64) (float64, float64) {
 		have := value(T)
 		lowest, highest = math.Min(lowest, have), math.Max(highest, have)
 		const h = 1e-6

@@ -4,6 +4,8 @@ import (
 	"errors"
 	"math"
 	"slices"
+
+	"dewmark/props/internal/roots"
 )
 
 // EnthalpyEntropy returns the state at h in J/kg and s in J/(kg K). The pair has one solution at most.
@@ -60,7 +62,7 @@ func (r *Pure) isentrope(s float64, y Property, v float64) (State, error) {
 	if !(a <= 0 && b >= 0) {
 		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: y.Of(&low), Max: y.Of(&at), Limit: LimitAttainable}
 	}
-	lnP, err := bracketed(lo, a, hi, b, miss)
+	lnP, err := roots.Bracketed(lo, a, hi, b, miss)
 	if err != nil {
 		return State{}, err
 	}
@@ -229,7 +231,7 @@ func (r *Pure) enthalpyEnergy(h, u float64, found func(State)) error {
 		lowest, highest = math.Min(lowest, s.U), math.Max(highest, s.U)
 		return s.U - u, wide.slopeAtEnthalpy(lnP, h)
 	}
-	allRoots(grid, miss, func(lnP float64) {
+	roots.All(grid, miss, func(lnP float64) {
 		s, err := r.PressureEnthalpy(r.pressure(lnP), h)
 		if err != nil {
 			return

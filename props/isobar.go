@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"dewmark/props/helmholtz"
+	"dewmark/props/internal/roots"
 )
 
 // PressureEnthalpy returns the state at p in Pa and h in J/kg. The pair has one solution at most.
@@ -175,7 +176,7 @@ func (r *Pure) searchIsobar(p float64, y Property, v, lo, hi float64, side Phase
 	if !(a <= 0 && b >= 0) {
 		return f, r.unattainable(p, y, v, a+v, b+v)
 	}
-	T, err := bracketed(lo, a, hi, b, miss)
+	T, err := roots.Bracketed(lo, a, hi, b, miss)
 	if err != nil {
 		return f, err
 	}

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"dewmark/props/helmholtz"
+	"dewmark/props/internal/roots"
 )
 
 // isochore returns the state at density rho with the caloric property y equal to v. Along an isochore all three rise
@@ -20,7 +21,7 @@ func (r *Pure) isochore(rho float64, y Property, v float64) (State, error) {
 	if !(low <= v && v <= high) {
 		return State{}, &RangeError{Refrigerant: r.rec.ID, Property: y, Value: v, Min: low, Max: high, Limit: LimitAttainable}
 	}
-	T, _ := bracketed(lo, low-v, hi, high-v, func(T float64) (float64, error) { return r.valueAt(T, rho, y) - v, nil })
+	T, _ := roots.Bracketed(lo, low-v, hi, high-v, func(T float64) (float64, error) { return r.valueAt(T, rho, y) - v, nil })
 	return r.TemperatureDensity(T, rho)
 }
 
@@ -84,7 +85,7 @@ func (r *Pure) pressureDensity(p, rho float64, found func(State)) error {
 		return math.Log(f.rho / rho), -f.pT / (f.rho * f.pRho)
 	}
 	n := 0
-	allRoots(temperatures(lo, hi), miss, func(T float64) {
+	roots.All(temperatures(lo, hi), miss, func(T float64) {
 		f, ok := r.pressureOnIsochore(T, p, rho)
 		if !ok {
 			return

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"dewmark/props/helmholtz"
+	"dewmark/props/internal/roots"
 )
 
 // TemperatureDensity returns the state at T in K and rho in kg/m3.
@@ -126,18 +127,18 @@ func (r *Pure) isotherm(T float64, y Property, v float64, found func(State)) err
 	}
 	thin, dense := thinnest*r.curve.RhoCritical*r.M, r.reach().DensityMax
 	if T >= r.curve.TCritical {
-		allRoots(r.densities(thin, dense), miss, single)
+		roots.All(r.densities(thin, dense), miss, single)
 	} else {
 		p, liquid, vapour := r.curve.At(T)
 		liquid, vapour = liquid*r.M, vapour*r.M
 		d := r.domeOf(T, p, liquid, vapour)
 		if dense > liquid {
-			allRoots(r.densities(liquid, dense), miss, single)
+			roots.All(r.densities(liquid, dense), miss, single)
 		}
 		if x := d.quality(y, v); 0 <= x && x <= 1 {
 			found(r.domeState(&d, x))
 		}
-		allRoots(r.densities(math.Min(thin, vapour/2), vapour), miss, single)
+		roots.All(r.densities(math.Min(thin, vapour/2), vapour), miss, single)
 	}
 	if y != Entropy { // which grows without end as a gas thins
 		end, _ := miss(thin)

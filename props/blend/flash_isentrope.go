@@ -3,6 +3,8 @@ package blend
 import (
 	"errors"
 	"math"
+
+	"dewmark/props/internal/roots"
 )
 
 // lowestPressure is where solvers that walk along pressure begin, Pa: far below what any vacuum pump reaches.
@@ -55,7 +57,7 @@ func (s *solver) isentrope(entropy float64, of Property, value float64) (result,
 		}
 		return result{}, s.unattainable(of, value, a+value, b+value)
 	}
-	lnP, err := bracketed(lo, a, hi, b, miss)
+	lnP, err := roots.Bracketed(lo, a, hi, b, miss)
 	if err != nil {
 		return result{}, err
 	}

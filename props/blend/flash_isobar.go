@@ -1,6 +1,10 @@
 package blend
 
-import "math"
+import (
+	"math"
+
+	"dewmark/props/internal/roots"
+)
 
 // edgeTie is the share of the way across the envelope within which a state counts as lying on its edge.
 const edgeTie = 1e-10
@@ -168,7 +172,7 @@ func (s *solver) isobarSearch(p float64, of Property, value, lo, hi float64, sd 
 		}
 		return result{}, s.unattainable(of, value, s.floor(p, of), q.value(of))
 	}
-	T, err := bracketed(lo, a, hi, b, miss)
+	T, err := roots.Bracketed(lo, a, hi, b, miss)
 	if err != nil {
 		return result{}, err
 	}

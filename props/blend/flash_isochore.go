@@ -3,6 +3,8 @@ package blend
 import (
 	"math"
 	"sort"
+
+	"dewmark/props/internal/roots"
 )
 
 // edgeAtRho returns the point of the envelope where the bulk has density rho, of which there is one: the bulk thins out
@@ -64,7 +66,7 @@ func (s *solver) isochore(v float64, of Property, value float64) (result, error)
 	if !(bottom <= 0 && top >= 0) {
 		return result{}, s.unattainable(of, value, bottom+value, top+value)
 	}
-	T, err := bracketed(lo, bottom, hi, top, single)
+	T, err := roots.Bracketed(lo, bottom, hi, top, single)
 	if err != nil {
 		return result{}, err
 	}
@@ -135,7 +137,7 @@ func (s *solver) isochoreTwoPhase(v float64, of Property, value float64, edge *s
 		}
 		return r.value(of) - value, nil
 	}
-	T, err := bracketed(Tmin, first-value, edge.T, edge.bulk.value(of)-value, miss)
+	T, err := roots.Bracketed(Tmin, first-value, edge.T, edge.bulk.value(of)-value, miss)
 	if err != nil {
 		return result{}, err
 	}

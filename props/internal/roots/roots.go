@@ -1,10 +1,11 @@
-package props
+// Package roots finds zeros of functions of one variable within brackets.
+package roots
 
 import "math"
 
-// bracketed solves f(x) = 0 between a and b, where f has opposite signs, by the Illinois variant of regula falsi with
+// Bracketed solves f(x) = 0 between a and b, where f has opposite signs, by the Illinois variant of regula falsi with
 // bisection whenever three steps have not halved the bracket. It stops at rounding, or when f fails.
-func bracketed(a, fa, b, fb float64, f func(float64) (float64, error)) (float64, error) {
+func Bracketed(a, fa, b, fb float64, f func(float64) (float64, error)) (float64, error) {
 	const limit = 200
 	best, least := a, math.Abs(fa)
 	if math.Abs(fb) < least {
@@ -19,8 +20,13 @@ func bracketed(a, fa, b, fb float64, f func(float64) (float64, error)) (float64,
 			}
 			width = math.Abs(b - a)
 		}
-		if least == 0 || x == a || x == b || math.Abs(b-a) <= 4e-16*math.Abs(b) {
+		if least == 0 || math.Abs(b-a) <= 4e-16*math.Abs(b) {
 			break
+		}
+		if x == a || x == b { // the step is lost in rounding, next to a root or because f is far steeper at one end
+			if x = a + (b-a)/2; x == a || x == b {
+				break
+			}
 		}
 		fx, err := f(x)
 		if err != nil {
@@ -39,11 +45,11 @@ func bracketed(a, fa, b, fb float64, f func(float64) (float64, error)) (float64,
 	return best, nil
 }
 
-// allRoots calls found with every zero of the continuous function f between the first and the last value of the
+// All calls found with every zero of the continuous function f between the first and the last value of the
 // rising grid. f returns its value and its slope, or NaN for a slope that it does not know. Between neighbours one zero
 // is seen, or two when f turns back once in between; the grid must be fine enough for that. Where f is NaN there is
 // nothing to find.
-func allRoots(grid []float64, f func(x float64) (v, slope float64), found func(x float64)) {
+func All(grid []float64, f func(x float64) (v, slope float64), found func(x float64)) {
 	value := func(x float64) float64 { v, _ := f(x); return v }
 	plain := func(x float64) (float64, error) { return value(x), nil }
 	var x0, f0, x1, f1, d1 float64
@@ -61,7 +67,7 @@ func allRoots(grid []float64, f func(x float64) (v, slope float64), found func(x
 			found(x2)
 		case run < 2 || f1 == 0:
 		case (f1 < 0) != (f2 < 0):
-			x, _ := bracketed(x1, f1, x2, f2, plain)
+			x, _ := Bracketed(x1, f1, x2, f2, plain)
 			found(x)
 		case !math.IsNaN(d1) && !math.IsNaN(d2):
 			ahead = (d1 < 0) == (f1 > 0) && (d2 < 0) != (f2 > 0)
@@ -69,9 +75,9 @@ func allRoots(grid []float64, f func(x float64) (v, slope float64), found func(x
 			from, ahead = x0, math.Abs(f1) < math.Abs(f0) && math.Abs(f1) < math.Abs(f2)
 		}
 		if ahead {
-			if xm, fm, crosses := turning(from, x2, value); crosses {
-				a, _ := bracketed(from, value(from), xm, fm, plain)
-				b, _ := bracketed(xm, fm, x2, f2, plain)
+			if xm, fm, crosses := Turning(from, x2, value); crosses {
+				a, _ := Bracketed(from, value(from), xm, fm, plain)
+				b, _ := Bracketed(xm, fm, x2, f2, plain)
 				found(a)
 				if b != a {
 					found(b)
@@ -82,9 +88,9 @@ func allRoots(grid []float64, f func(x float64) (v, slope float64), found func(x
 	}
 }
 
-// turning looks for the extremum of f towards zero between a and b by golden section and reports whether f crosses
+// Turning looks for the extremum of f towards zero between a and b by golden section and reports whether f crosses
 // zero on the way.
-func turning(a, b float64, f func(float64) float64) (x, fx float64, crosses bool) {
+func Turning(a, b float64, f func(float64) float64) (x, fx float64, crosses bool) {
 	const golden = 0.3819660112501051
 	negative := f(a) < 0
 	c, d := a+golden*(b-a), b-golden*(b-a)
