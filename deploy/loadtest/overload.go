@@ -19,65 +19,62 @@ const (
 	recovery    = 60 * time.Second // until the memory counts
 )
 
-// overload asks for ten times of what the service can do, at a steady rate that does not wait for answers.
+// overload asks for ten times of what the service can do, at a steady rate that does not wait for answers: first with short
+// questions, then with long work, which waits in a queue of its own.
 func overload(ctx context.Context, s *settings) (*report, error) {
 	r := newReport("what", "measured", "goal", "")
+	for _, q := range []question{bestCycle, rating} {
+		if err := s.overloadWith(ctx, r, &q); err != nil {
+			return r, fmt.Errorf("%s: %w", q.name, err)
+		}
+	}
+	return r, nil
+}
+
+func (s *settings) overloadWith(ctx context.Context, r *report, q *question) error {
 	p, err := s.start(ctx, launch{})
 	if err != nil {
-		return r, err
+		return err
 	}
 	defer p.end(r)
 	if err := p.quiet(ctx); err != nil {
-		return r, err
+		return err
 	}
 	before, err := p.resources(ctx)
 	if err != nil {
-		return r, err
+		return err
 	}
-	q := rating
 	short := *s
 	short.time = 5 * time.Second
-	full, err := short.measure(ctx, p, &q, connections)
+	full, err := short.measure(ctx, p, q, connections)
 	if err != nil {
-		return r, err
+		return err
 	}
-	alone, err := short.measure(ctx, p, &q, 1)
+	alone, err := short.measure(ctx, p, q, 1)
 	if err != nil {
-		return r, err
+		return err
 	}
 	capacity := float64(full.Requests) / full.Seconds
-	r.row("capacity, "+q.name, fmt.Sprintf("%.0f requests a second", capacity), "", "")
+	r.row("**"+q.name+"**: capacity", fmt.Sprintf("%.0f requests a second", capacity), "", "")
 	r.row("p50 without load", fmt.Sprintf("%.2f ms", 1e3*alone.P50), "", "")
 
-	f := flood(ctx, p.address, &q, excess*capacity, s.time)
+	f := flood(ctx, p.address, q, excess*capacity, s.time)
 	r.row("asked", fmt.Sprintf("%.0f requests a second for %v; %d sent, %d held back by the generator", excess*capacity, s.time, f.sent, f.held), "", "")
-	var statuses []string
-	for _, status := range slices.Sorted(maps.Keys(f.statuses)) {
-		statuses = append(statuses, fmt.Sprintf("%d: %d", status, f.statuses[status]))
-		if status != http.StatusOK && status != http.StatusTooManyRequests && status != http.StatusServiceUnavailable {
-			r.fail("%d answers of status %d", f.statuses[status], status)
-		}
-	}
-	for cause, n := range f.broken {
-		statuses = append(statuses, fmt.Sprintf("%s: %d", cause, n))
-		r.fail("%d requests without an answer: %s", n, cause)
-	}
-	r.row("answers by status", strings.Join(statuses, ", "), "200, 429, 503", map[bool]string{true: "met", false: "missed"}[len(r.failed) == 0])
-	if f.hinted < f.statuses[http.StatusServiceUnavailable]+f.statuses[http.StatusTooManyRequests] {
-		r.fail("only %d refusals say when to try again", f.hinted)
-	}
-	p99 := quantile(f.accepted, 0.99).Seconds()
+	statuses, fine := f.judge(r)
+	r.row("answers by status", statuses, "200, 429, 503", map[bool]string{true: "met", false: "missed"}[fine])
+	p50, p99 := quantile(f.accepted, 0.5).Seconds(), quantile(f.accepted, 0.99).Seconds()
+	r.row("p50 of the accepted", fmt.Sprintf("%.1f ms", 1e3*p50), "", "")
 	r.row("p99 of the accepted", fmt.Sprintf("%.1f ms, %.1f times the p50 without load", 1e3*p99, p99/alone.P50), "20 times", goal(p99/alone.P50, 20))
 
 	s.note("waiting %v for the memory", recovery)
 	select {
 	case <-time.After(recovery):
 	case <-ctx.Done():
-		return r, ctx.Err()
+		return ctx.Err()
 	}
 	after, err := p.resources(ctx)
 	if err != nil {
-		return r, err
+		return err
 	}
 	growth := after.memory/before.memory - 1
 	r.row("resident memory a minute later", fmt.Sprintf("%.1f MB, %.1f MB before: %+.0f %%", after.memory, before.memory, 100*growth), "+20 %", goal(growth, 0.2))
@@ -85,7 +82,29 @@ func overload(ctx context.Context, s *settings) (*report, error) {
 	if after.goroutines > before.goroutines+100 {
 		r.fail("%.0f goroutines are left over", after.goroutines-before.goroutines)
 	}
-	return r, nil
+	return nil
+}
+
+// judge lists the answers by status and reports whether all are what overload may bring.
+func (f *flooded) judge(r *report) (statuses string, fine bool) {
+	var all []string
+	fine = true
+	for _, status := range slices.Sorted(maps.Keys(f.statuses)) {
+		all = append(all, fmt.Sprintf("%d: %d", status, f.statuses[status]))
+		if status != http.StatusOK && status != http.StatusTooManyRequests && status != http.StatusServiceUnavailable {
+			r.fail("%d answers of status %d", f.statuses[status], status)
+			fine = false
+		}
+	}
+	for cause, n := range f.broken {
+		all = append(all, fmt.Sprintf("%s: %d", cause, n))
+		r.fail("%d requests without an answer: %s", n, cause)
+		fine = false
+	}
+	if unhinted := f.statuses[http.StatusServiceUnavailable] + f.statuses[http.StatusTooManyRequests] - f.hinted; unhinted > 0 {
+		r.fail("%d refusals do not say when to try again", unhinted)
+	}
+	return strings.Join(all, ", "), fine
 }
 
 // resources are what a service holds.

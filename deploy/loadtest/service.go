@@ -126,7 +126,7 @@ func (p *service) follow(logs io.Reader, listening chan<- struct{}) {
 	for lines := bufio.NewScanner(logs); lines.Scan(); {
 		p.log.add(lines.Text())
 		var record struct{ Msg, Address string }
-		if json.Unmarshal(lines.Bytes(), &record) != nil || heard {
+		if heard || json.Unmarshal(lines.Bytes(), &record) != nil { // a slow reader of the log would slow the service
 			continue
 		}
 		switch record.Msg {
