@@ -69,6 +69,9 @@ func (s series) check(expr string) error {
 			if !ok {
 				return fmt.Errorf("%s has no label %s: %s", a.name, m[0], expr)
 			}
+			if _, err := strconv.Atoi(m[2]); m[1] == "=" && err == nil && (m[0] == "le" || m[0] == "quantile") {
+				return fmt.Errorf("%s=%q is %q in OpenMetrics: %s", m[0], m[2], m[2]+".0", expr)
+			}
 			if m[1] == "=" && slices.Contains([]string{"route", "kind", "outcome", "reason", "result", "le", "quantile"}, m[0]) && values != nil && !slices.Contains(values, m[2]) {
 				return fmt.Errorf("no series of %s has %s=%q, only %q: %s", a.name, m[0], m[2], values, expr)
 			}
@@ -97,6 +100,7 @@ func TestCheck(t *testing.T) {
 		{`sum by (le) (up)`, "a label le"},
 		{`x_bucket{le="0.5"}`, `no series of x_bucket has le="0.5"`},
 		{`x_bucket{route="/v1/cycle"}`, "no series"},
+		{`x_bucket{le="1"}`, "OpenMetrics"},
 		{`1 + 2`, "asks for nothing"},
 	} {
 		if err := s.check(tt.expr); (err == nil) != (tt.says == "") || err != nil && !strings.Contains(err.Error(), tt.says) {

@@ -66,7 +66,7 @@ func cpuTime(pid int) (time.Duration, error) {
 	return time.Duration(user+system) * clockTick, err
 }
 
-// memory returns a figure of /proc/PID/status in MB, such as VmRSS or RssAnon.
+// memory returns a figure of /proc/PID/status in MB, such as VmRSS, RssAnon or VmHWM, the most so far.
 func memory(pid int, name string) (float64, error) {
 	text, err := os.ReadFile(fmt.Sprintf("/proc/%d/status", pid))
 	if err != nil {
