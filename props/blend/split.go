@@ -194,7 +194,11 @@ func (s *solver) constrain(row []float64, residual *float64, c constraint, vl, v
 		row[n+2] = (vl*liquid.sT + vv*vapour.sT) / s.m.whole.R
 		*residual = (vl*liquid.s + vv*vapour.s - c.value) / s.m.whole.R
 	}
-	return math.Abs(*residual) / (10 * equilibriumTolerance)
+	tolerance := 10 * equilibriumTolerance
+	if c.of == Enthalpy || c.of == Entropy || c.of == InternalEnergy {
+		tolerance = equilibriumTolerance / 10 // close to an edge a trace of heat is all the vapour there is
+	}
+	return math.Abs(*residual) / tolerance
 }
 
 // extensive fills in the derivatives of a property of both phases that come through the concentrations; c returns
