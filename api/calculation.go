@@ -153,8 +153,41 @@ func (j *job) head(o *object, kinds []kind) error {
 
 // tail writes the members that a response ends with.
 func (j *job) tail(o *object) error {
-	if err := o.value("basis", j.basis); err != nil {
+	o.name("basis")
+	var err error
+	if o.b, err = j.basis.encode(o.b); err != nil {
 		return err
 	}
-	return o.value("cautions", j.cautions)
+	o.list("cautions", len(j.cautions), func(i int, c *object) {
+		c.text("code", j.cautions[i].Code)
+		c.text("detail", j.cautions[i].Detail)
+	})
+	return nil
 }
+
+// encode appends the basis to b.
+func (s *basis) encode(b []byte) ([]byte, error) {
+	o := begin(b)
+	o.text("refrigerant", s.Refrigerant)
+	o.text("model", s.Model)
+	o.text("source", s.Source)
+	o.text("datum", s.Datum)
+	o.flag("extrapolated", s.Extrapolated)
+	o.text("version", s.Version)
+	if s.blendBasis != nil {
+		if err := o.members(s.blendBasis); err != nil {
+			return nil, err
+		}
+	}
+	if len(s.Transport) > 0 {
+		o.list("transport", len(s.Transport), func(i int, t *object) {
+			t.text("property", s.Transport[i].Property)
+			t.text("method", s.Transport[i].Method)
+			t.text("source", s.Transport[i].Source)
+		})
+	}
+	return o.end(), nil
+}
+
+// MarshalJSON writes a basis that stands inside other members.
+func (s basis) MarshalJSON() ([]byte, error) { return s.encode(nil) }

@@ -14,6 +14,12 @@ type chunk struct {
 
 // chunks answers points in their order. It returns the cause when ctx ends first: nobody waits then.
 func (j *job) chunks(ctx context.Context, points []point, shown *selection) ([]chunk, error) {
+	if len(points) <= chunkSize {
+		if err := breathe(ctx); err != nil {
+			return nil, err
+		}
+		return []chunk{j.chunk(points, 0, shown)}, nil
+	}
 	chunks := make([]chunk, (len(points)+chunkSize-1)/chunkSize)
 	err := inParallel(ctx, len(chunks), func(i int) {
 		first := i * chunkSize

@@ -48,8 +48,7 @@ func (r *cycleResponse) encode(b []byte) ([]byte, error) {
 	if err := o.members(&r.cycleHead); err != nil {
 		return nil, err
 	}
-	o.name("states")
-	o.b = appendStates(o.b, r.states)
+	writeStates(&o, r.states)
 	if err := o.members(&r.cycleAccounts); err != nil {
 		return nil, err
 	}
@@ -209,22 +208,16 @@ func (j *job) cycleStates(s *cycle.Solution, upper []*job, into *account) []cycl
 	return states
 }
 
-// appendStates adds states as an array.
-func appendStates(b []byte, states []cycleState) []byte {
-	b = append(b, '[')
-	for i := range states {
-		if i > 0 {
-			b = append(b, ',')
-		}
-		s, item := &states[i], begin(b)
+// writeStates adds the member states.
+func writeStates(o *object, states []cycleState) {
+	o.list("states", len(states), func(i int, item *object) {
+		s := &states[i]
 		item.text("label", s.label)
 		item.text("place", s.place)
 		item.text("refrigerant", s.refrigerant)
 		item.number("mass_flow", s.massFlow)
-		s.state.write(&item)
-		b = item.end()
-	}
-	return append(b, ']')
+		s.state.write(item)
+	})
 }
 
 // repeat passes on the cautions of the solver, but for what is said already.

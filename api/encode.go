@@ -32,6 +32,26 @@ func (o *object) number(name string, x float64) {
 	o.b = appendNumber(o.b, x)
 }
 
+// list writes an array of n objects.
+func (o *object) list(name string, n int, write func(i int, item *object)) {
+	o.name(name)
+	o.b = append(o.b, '[')
+	for i := range n {
+		if i > 0 {
+			o.b = append(o.b, ',')
+		}
+		item := begin(o.b)
+		write(i, &item)
+		o.b = item.end()
+	}
+	o.b = append(o.b, ']')
+}
+
+func (o *object) flag(name string, yes bool) {
+	o.name(name)
+	o.b = strconv.AppendBool(o.b, yes)
+}
+
 func (o *object) text(name, text string) {
 	o.name(name)
 	o.b = appendText(o.b, text)

@@ -10,6 +10,7 @@ import (
 	"io"
 	"mime"
 	"net/http"
+	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -265,10 +266,16 @@ func (a *API) read(text []byte, v any) error {
 
 // body reads the body of a request up to the limit. A large one needs a place among the batches.
 func (a *API) body(c *gin.Context) ([]byte, error) {
-	tooLarge := refusal(http.StatusRequestEntityTooLarge, "body-too-large",
-		fmt.Sprintf("the body may have %d bytes at most; send larger batches as application/x-ndjson", a.maxBody))
-	if c.Request.ContentLength > a.maxBody {
-		return nil, tooLarge
+	size := c.Request.ContentLength // -1 where the client does not tell
+	if size > a.maxBody {
+		return nil, a.tooLarge()
+	}
+	if 0 <= size && size <= longBody {
+		body := make([]byte, size)
+		if _, err := io.ReadFull(c.Request.Body, body); err != nil {
+			return nil, errCutBody
+		}
+		return body, nil
 	}
 	bounded := http.MaxBytesReader(c.Writer, c.Request.Body, a.maxBody)
 	body, err := io.ReadAll(io.LimitReader(bounded, longBody+1))
@@ -281,16 +288,26 @@ func (a *API) body(c *gin.Context) ([]byte, error) {
 		body = append(body, rest...)
 	}
 	if _, ok := errors.AsType[*http.MaxBytesError](err); ok {
-		return nil, tooLarge
+		return nil, a.tooLarge()
 	}
 	if err != nil {
-		return nil, malformed("#", "the body could not be read to its end")
+		return nil, errCutBody
 	}
 	return body, nil
 }
 
+func (a *API) tooLarge() *Problem {
+	return refusal(http.StatusRequestEntityTooLarge, "body-too-large",
+		fmt.Sprintf("the body may have %d bytes at most; send larger batches as application/x-ndjson", a.maxBody))
+}
+
+var errCutBody = malformed("#", "the body could not be read to its end")
+
 // wantMedia refuses a body that is not of one of the media types.
 func wantMedia(c *gin.Context, media ...string) error {
+	if slices.Contains(media, c.GetHeader("Content-Type")) {
+		return nil // as nearly all requests have it
+	}
 	have, params, err := mime.ParseMediaType(c.GetHeader("Content-Type"))
 	charset := params["charset"]
 	for _, m := range media {

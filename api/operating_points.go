@@ -193,8 +193,7 @@ func (p *pointItem) encode(b []byte) ([]byte, error) {
 	if err := o.members(&p.head); err != nil {
 		return nil, err
 	}
-	o.name("states")
-	o.b = appendStates(o.b, p.states)
+	writeStates(&o, p.states)
 	if err := o.members(&p.accounts); err != nil {
 		return nil, err
 	}

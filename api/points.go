@@ -112,7 +112,7 @@ func (w *worker) try(p *point, at place) *Problem {
 func (w *worker) show(s props.State) {
 	w.states++
 	w.solved.surround(w.r, s, w.shown)
-	if w.shown.transport {
+	if len(w.shown.transport) > 0 {
 		w.solved.transport = w.transported(s)
 	}
 	if w.shown.derived {

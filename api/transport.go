@@ -111,12 +111,8 @@ type transportBasis struct {
 // transportBases lists the recommended models of the properties that shown shows.
 func transportBases(r props.Refrigerant, shown *selection) []transportBasis {
 	var bases []transportBasis
-	if !shown.transport {
-		return nil
-	}
-	for _, p := range transportProperties {
-		wanted := shown.has(memberOf(p)) || p != transport.SurfaceTension && shown.has("prandtl_number")
-		if records := r.TransportRecords(p); wanted && len(records) > 0 {
+	for _, p := range shown.transport {
+		if records := r.TransportRecords(p); len(records) > 0 {
 			bases = append(bases, transportBasis{memberOf(p), string(records[0].Method), records[0].Source})
 		}
 	}

@@ -264,7 +264,7 @@ var powerUnits = []unit{
 	{code: "75.kgf.m/s", scale: 75 * gn},
 }
 
-// units converts between the wire and SI for one request.
+// units converts between the wire and SI. It does not change once made.
 type units struct {
 	of      [kindCount]*unit
 	ambient float64 // Pa, what gauge pressures count from
@@ -285,6 +285,22 @@ var systems = []string{"SI", "IP"}
 // of temperature and pressure follow the temperature and the pressure unless they have a code of their own. It returns a
 // [*Problem] for an unknown kind or code, and for gauge pressures whose ambient pressure is not known.
 func newUnits(codes map[string]string, where *site) (*units, error) {
+	if len(codes) == 0 && where == nil {
+		return standardUnits, nil
+	}
+	return resolveUnits(codes, where)
+}
+
+// standardUnits are those of a request that names none.
+var standardUnits = func() *units {
+	u, err := resolveUnits(nil, nil)
+	if err != nil {
+		panic("api: " + err.Error())
+	}
+	return u
+}()
+
+func resolveUnits(codes map[string]string, where *site) (*units, error) {
 	var faults []MemberError
 	fault := func(member, code, detail string) {
 		faults = append(faults, MemberError{Pointer: "#/" + member, Code: code, Detail: detail})

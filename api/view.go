@@ -86,16 +86,17 @@ var firstTransportField, firstSaturationField, firstDerivedField = fieldNamed("v
 // selection is what a request wants to see of a state besides its phase.
 type selection struct {
 	saturation bool  // some field needs the saturation around the state
-	transport  bool  // some field is a transport property
 	derived    bool  // some field is a derivative
 	liquid     bool  // the composition of the liquid of a blend, where there is one
 	vapour     bool  // likewise of the vapour
 	fields     []int // of stateFields, rising
+
+	transport []transport.Property // the transport properties that the fields rest on
 }
 
 // everything selects all members but the derivatives.
 var everything = func() *selection {
-	s := &selection{saturation: true, transport: true, liquid: true, vapour: true}
+	s := &selection{saturation: true, transport: transportProperties, liquid: true, vapour: true}
 	for i := 1; i < firstDerivedField; i++ {
 		s.fields = append(s.fields, i)
 	}
@@ -134,7 +135,11 @@ func selectFields(names []string) (*selection, error) {
 			s.fields = append(s.fields, i)
 			s.derived = s.derived || i >= firstDerivedField
 			s.saturation = s.saturation || i >= firstSaturationField && i < firstDerivedField
-			s.transport = s.transport || i >= firstTransportField && i < firstSaturationField
+		}
+	}
+	for _, p := range transportProperties {
+		if s.has(memberOf(p)) || p != transport.SurfaceTension && s.has("prandtl_number") {
+			s.transport = append(s.transport, p)
 		}
 	}
 	return s, invalid(faults)

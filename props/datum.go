@@ -1,7 +1,23 @@
 package props
 
-// withDatum returns the view of f that counts from d.
+// withDatum returns the view of f that counts from d. It is made once and shared.
 func (f *fluid) withDatum(d Datum) (*Pure, error) {
+	if int(d) >= len(f.views) {
+		return f.makeView(d)
+	}
+	if v := f.views[d].Load(); v != nil {
+		return v, nil
+	}
+	v, err := f.makeView(d)
+	if err == nil {
+		f.views[d].Store(v)
+	}
+	return v, err
+}
+
+// makeView returns a [*DatumError] where f has no such datum.
+
+func (f *fluid) makeView(d Datum) (*Pure, error) {
 	r := f.view()
 	if d == DefaultDatum {
 		d = IIR

@@ -35,7 +35,8 @@ type fluid struct {
 	flow         *transport.Model
 	build        sync.Once
 	made         atomic.Pointer[saturation.Curve]
-	starts       starts // above the critical pressure
+	starts       starts                                // above the critical pressure
+	views        [TriplePoint + 1]atomic.Pointer[Pure] // by datum, those that were wanted
 }
 
 func newFluid(rec data.Record) (*fluid, error) {
