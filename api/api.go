@@ -32,6 +32,7 @@ type Options struct {
 	Logger    *slog.Logger
 	Version   string           // of the service; part of every answer
 	Now       func() time.Time // clock of the request log and the deadlines; default time.Now
+	LogLost   func() int       // records that Logger has dropped so far, for a metric; default none
 
 	MaxBody       int64 // bytes of a JSON request; default DefaultMaxBody
 	MaxPoints     int   // items of a batch; default DefaultMaxPoints
@@ -39,7 +40,7 @@ type Options struct {
 	MaxConcurrent int   // short questions computed at once; default four a processor
 
 	MaxQueue   int           // requests that wait for a slot of each kind before others are turned away; default DefaultMaxQueue
-	MaxBatches int           // long batches in memory; default DefaultMaxBatches
+	MaxBatches int           // long batches in memory; default eight for each processor that computes them
 	MaxStreams int           // streams open; default DefaultMaxStreams
 	Deadline   time.Duration // for one calculation, not for a stream; default DefaultDeadline
 
@@ -117,7 +118,7 @@ func New(o Options) (*API, error) {
 		a.now = time.Now
 	}
 	var err error
-	if a.metrics, err = newMetrics(o.Registry, o.Version, o.Catalogue, &a.admission); err != nil {
+	if a.metrics, err = newMetrics(&o, &a.admission); err != nil {
 		return nil, err
 	}
 	a.mixtures = newMixtures(cmp.Or(o.MaxMixtures, DefaultMaxMixtures), a.metrics)

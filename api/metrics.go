@@ -9,8 +9,6 @@ import (
 	"github.com/prometheus/client_golang/prometheus"
 	"github.com/prometheus/client_golang/prometheus/collectors"
 	"go.opentelemetry.io/otel/trace"
-
-	"dewmark/props"
 )
 
 // metrics are what the service tells Prometheus about itself. Label values come from closed sets.
@@ -32,7 +30,8 @@ type metrics struct {
 	ready prometheus.Gauge
 }
 
-func newMetrics(r prometheus.Registerer, version string, catalogue *props.Catalogue, adm *admission) (*metrics, error) {
+func newMetrics(o *Options, adm *admission) (*metrics, error) {
+	catalogue := o.Catalogue
 	m := &metrics{
 		requests: prometheus.NewCounterVec(prometheus.CounterOpts{
 			Name: "dewmark_http_requests_total", Help: "HTTP requests answered.",
@@ -83,7 +82,7 @@ func newMetrics(r prometheus.Registerer, version string, catalogue *props.Catalo
 	}
 	build := prometheus.NewGauge(prometheus.GaugeOpts{
 		Name: "dewmark_build_info", Help: "Always 1; its labels name the build.",
-		ConstLabels: prometheus.Labels{"version": version, "goversion": runtime.Version(), "goarch": runtime.GOARCH},
+		ConstLabels: prometheus.Labels{"version": o.Version, "goversion": runtime.Version(), "goarch": runtime.GOARCH},
 	})
 	build.Set(1)
 	gauge := func(name, help string, value func() int) prometheus.Collector {
@@ -92,10 +91,18 @@ func newMetrics(r prometheus.Registerer, version string, catalogue *props.Catalo
 	for _, reason := range refusalReasons {
 		m.refused.WithLabelValues(reason) // from zero on, so that the first one is an increase
 	}
+	logLost := prometheus.NewCounterFunc(prometheus.CounterOpts{
+		Name: "dewmark_log_records_dropped_total", Help: "Records of the log that were dropped because they could not be written in time.",
+	}, func() float64 {
+		if o.LogLost == nil {
+			return 0
+		}
+		return float64(o.LogLost())
+	})
 	var errs []error
 	for _, c := range []prometheus.Collector{
 		m.requests, m.latency, m.calculations, m.iterations, m.batches, m.refused, m.ready, build,
-		mixtureRequests, m.mixturesKept,
+		mixtureRequests, m.mixturesKept, logLost,
 		m.queued, m.inFlight, m.refrigerants,
 		gauge("dewmark_calculations_in_progress", "Slots for computing that are taken.", func() int { return len(adm.short.slots) + len(adm.long.slots) }),
 		gauge("dewmark_calculations_limit", "Slots for computing.", func() int { return cap(adm.short.slots) + cap(adm.long.slots) }),
@@ -106,7 +113,7 @@ func newMetrics(r prometheus.Registerer, version string, catalogue *props.Catalo
 		gauge("dewmark_streams_in_progress", "Streams open.", func() int { return len(adm.streams) }),
 		collectors.NewGoCollector(), collectors.NewProcessCollector(collectors.ProcessCollectorOpts{}),
 	} {
-		errs = append(errs, r.Register(c))
+		errs = append(errs, o.Registry.Register(c))
 	}
 	return m, errors.Join(errs...)
 }

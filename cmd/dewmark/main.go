@@ -52,7 +52,10 @@ func run(ctx context.Context, args []string, stdin io.Reader, stdout, stderr io.
 	var err error
 	switch name {
 	case "serve":
-		code, err = exitOther, serveCommand(ctx, args, stderr)
+		log := newJournal(stderr)
+		defer log.close()
+		stderr = log // for the failure below too, so that it cannot wait for a reader either
+		code, err = exitOther, serveCommand(ctx, args, log)
 	case "call":
 		code, err = callCommand(ctx, args, stdin, stdout, stderr)
 	case "probe":

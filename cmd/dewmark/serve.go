@@ -6,7 +6,6 @@ import (
 	"errors"
 	"flag"
 	"fmt"
-	"io"
 	"log/slog"
 	"net"
 	"net/http"
@@ -27,6 +26,7 @@ type settings struct {
 	listen, adminListen string
 	drainDelay, drain   time.Duration
 	logLevel            slog.Level
+	logLost             func() int // no flag: records of the log that were dropped
 	limits
 	load
 	access
@@ -57,7 +57,7 @@ type load struct {
 func (l *load) register(flags *flag.FlagSet) {
 	flags.IntVar(&l.maxConcurrent, "max-concurrent", 0, "short `questions` computed at once; 0 for four a processor")
 	flags.IntVar(&l.maxQueue, "max-queue", api.DefaultMaxQueue, "`requests` that wait to be computed before others get a 503")
-	flags.IntVar(&l.maxBatches, "max-batches", api.DefaultMaxBatches, "long `batches` under way before others get a 503")
+	flags.IntVar(&l.maxBatches, "max-batches", 0, "long `batches` under way before others get a 503; 0 for eight a processor")
 	flags.IntVar(&l.maxStreams, "max-streams", api.DefaultMaxStreams, "`streams` open before others get a 503")
 	flags.DurationVar(&l.deadline, "deadline", api.DefaultDeadline, "`time` for one calculation, after which it ends with a 503")
 	flags.Float64Var(&l.rate, "rate", 0, "`requests` a second of one client before it gets a 429; 0 for no limit")
@@ -77,9 +77,9 @@ func (l *load) apply(o *api.Options) {
 
 const defaultListen = "127.0.0.1:8080"
 
-func serveCommand(ctx context.Context, args []string, stderr io.Writer) error {
-	var s settings
-	flags := newFlags("serve", "", stderr)
+func serveCommand(ctx context.Context, args []string, log *journal) error {
+	s := settings{logLost: log.lost}
+	flags := newFlags("serve", "", log)
 	flags.StringVar(&s.listen, "listen", defaultListen, "`address` that clients use")
 	flags.StringVar(&s.adminListen, "admin-listen", "127.0.0.1:9090", "`address` of /metrics and the profiler; empty for none")
 	s.access.register(flags)
@@ -94,7 +94,7 @@ func serveCommand(ctx context.Context, args []string, stderr io.Writer) error {
 	if err := s.check(); err != nil {
 		return err
 	}
-	return s.serve(ctx, slog.New(slog.NewJSONHandler(stderr, &slog.HandlerOptions{Level: s.logLevel})))
+	return s.serve(ctx, slog.New(log.handler(s.logLevel)))
 }
 
 // check refuses a zero where it does not stand for anything. The API would take it for its default.
@@ -106,7 +106,6 @@ func (s *settings) check() error {
 		{"max-body", s.maxBody == 0},
 		{"max-points", s.maxPoints == 0},
 		{"max-queue", s.maxQueue == 0},
-		{"max-batches", s.maxBatches == 0},
 		{"max-streams", s.maxStreams == 0},
 		{"deadline", s.deadline == 0},
 	} {
@@ -139,7 +138,7 @@ func (s *settings) serve(ctx context.Context, log *slog.Logger) (err error) {
 		return err
 	}
 	defer endTracing()
-	a, err := newAPI(log, s.limits.apply, s.load.apply, guard.apply, func(o *api.Options) { o.Tracer = tracer })
+	a, err := newAPI(log, s.limits.apply, s.load.apply, guard.apply, func(o *api.Options) { o.Tracer, o.LogLost = tracer, s.logLost })
 	if err != nil {
 		return err
 	}
