@@ -6,6 +6,7 @@ import (
 	"errors"
 	"net/http"
 	"runtime"
+	"sync"
 	"sync/atomic"
 	"time"
 
@@ -29,7 +30,6 @@ type admission struct {
 // The default limits of admission.
 const (
 	DefaultMaxQueue   = 100
-	DefaultMaxBatches = 16
 	DefaultMaxStreams = 64
 	DefaultDeadline   = 20 * time.Second
 )
@@ -38,7 +38,7 @@ func newAdmission(o *Options) admission {
 	return admission{
 		short:    newPool(cmp.Or(o.MaxConcurrent, defaultSlots())),
 		long:     newPool(longSlots()),
-		batches:  make(chan struct{}, cmp.Or(o.MaxBatches, DefaultMaxBatches)),
+		batches:  make(chan struct{}, cmp.Or(o.MaxBatches, batchesPerSlot*longSlots())),
 		streams:  make(chan struct{}, cmp.Or(o.MaxStreams, DefaultMaxStreams)),
 		queue:    cmp.Or(o.MaxQueue, DefaultMaxQueue),
 		deadline: cmp.Or(o.Deadline, DefaultDeadline),
@@ -52,18 +52,77 @@ func defaultSlots() int { return 4 * runtime.GOMAXPROCS(0) }
 func longSlots() int { return max(1, runtime.GOMAXPROCS(0)*3/4) }
 
 const (
+	batchesPerSlot = 8 // so that the last one does not wait for long, and little memory is taken
+
 	longItems = 64          // a batch of more states, or of what costs as much, is long work
 	longBody  = 64 << 10    // bytes; so is a larger body, whatever it holds
 	queueWait = time.Second // nobody waits longer for a slot to begin
+)
+
+// A burst may fill the queue, since it passes. But where requests keep coming faster than they are answered the queue never
+// empties, and each would wait for as long as the queue is. Then the queue is cut to what passes within a short time, which
+// keeps as many processors busy and answers soon, until none has to be turned away any more (after Nichols and Jacobson,
+// Controlling Queue Delay, ACM Queue 10(5), 2012).
+const (
+	burst  = 100 * time.Millisecond // a queue that has not been empty for so long is no burst
+	target = 5 * time.Millisecond   // what those who wait then should wait
 )
 
 // pool holds slots. Those who wait get them in the order they came.
 type pool struct {
 	slots   chan struct{}
 	waiting atomic.Int64
+
+	mu       sync.Mutex
+	cut      bool          // the queue
+	empty    time.Time     // when nobody waited last
+	turned   time.Time     // when somebody was turned away last, or the queue was cut
+	granted  time.Time     // when somebody who waited began last
+	interval time.Duration // between two such moments, of late
 }
 
 func newPool(size int) *pool { return &pool{slots: make(chan struct{}, size)} }
+
+// room returns how many may wait, most at the most.
+func (p *pool) room(now time.Time, most int) int {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if p.waiting.Load() == 0 {
+		p.empty = now
+	}
+	switch {
+	case p.cut && now.Sub(p.turned) > burst:
+		p.cut, p.empty = false, now
+	case !p.cut && now.Sub(p.empty) > burst:
+		p.cut, p.turned = true, now
+	}
+	if !p.cut || p.interval <= 0 {
+		return most
+	}
+	return min(most, max(cap(p.slots), int(target/p.interval)))
+}
+
+// grant notes that somebody who has waited since then may begin, unless that was for too long.
+func (p *pool) grant(then, now time.Time) (late bool) {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if p.cut && now.Sub(then) > 2*target {
+		p.turned = now
+		return true
+	}
+	if since := now.Sub(p.granted); since < burst {
+		p.interval += (since - p.interval) / 8
+	}
+	p.granted = now
+	return false
+}
+
+// turnedAway notes that there was no room for somebody.
+func (p *pool) turnedAway(now time.Time) {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	p.turned = now
+}
 
 // try takes a slot that is free.
 func (p *pool) try() bool {
@@ -94,13 +153,12 @@ func (p *pool) release() { <-p.slots }
 
 // ticket is the right of one request to compute. It belongs to the goroutine of the request. A nil ticket bounds nothing.
 type ticket struct {
-	a      *API
-	ctx    context.Context // ends with the client's patience or at the deadline
-	cancel context.CancelCauseFunc
-	clock  *time.Timer // rings at the deadline
-	pool   *pool
-	held   bool // a slot of pool
-	batch  bool // a place among the batches
+	a        *API
+	ctx      context.Context // ends with the client's patience or at the deadline
+	deadline *deadline       // ctx, once the calculation is admitted
+	pool     *pool
+	held     bool // a slot of pool
+	batch    bool // a place among the batches
 }
 
 const ticketKey = "ticket"
@@ -112,6 +170,14 @@ func ticketOf(c *gin.Context) *ticket {
 	v, _ := c.Get(ticketKey)
 	t, _ := v.(*ticket)
 	return t
+}
+
+// contextOf is the context of the calculation that a request asks for.
+func contextOf(c *gin.Context) context.Context {
+	if t := ticketOf(c); t != nil {
+		return t.ctx
+	}
+	return c.Request.Context()
 }
 
 // The reasons for which requests are turned away, as metrics name them.
@@ -147,7 +213,7 @@ func busy(detail string) *Problem {
 // limit gives a request a ticket, with which [API.decode] admits it once its body is read, and takes back what the handler
 // still holds in the end.
 func (a *API) limit(c *gin.Context) {
-	t := &ticket{a: a, ctx: c.Request.Context(), cancel: func(error) {}, pool: a.admission.short}
+	t := &ticket{a: a, ctx: c.Request.Context(), pool: a.admission.short}
 	c.Set(ticketKey, t)
 	defer t.close()
 	c.Next()
@@ -169,10 +235,8 @@ func (a *API) admit(c *gin.Context) error {
 	if t == nil {
 		return nil
 	}
-	ctx, cancel := context.WithCancelCause(c.Request.Context())
-	t.ctx, t.cancel = context.WithValue(ctx, ticketContextKey{}, t), cancel
-	t.clock = time.AfterFunc(a.admission.deadline, func() { cancel(errDeadline) })
-	c.Request = c.Request.WithContext(t.ctx)
+	t.deadline = newDeadline(c.Request.Context(), t, a.admission.deadline, a.now)
+	t.ctx = t.deadline
 	return t.start()
 }
 
@@ -183,10 +247,9 @@ func (t *ticket) close() {
 		t.batch = false
 		<-t.a.admission.batches
 	}
-	if t.clock != nil {
-		t.clock.Stop()
+	if t.deadline != nil {
+		t.deadline.close()
 	}
-	t.cancel(context.Canceled)
 }
 
 // start takes a slot, waiting for it among few others and not for long.
@@ -194,25 +257,41 @@ func (t *ticket) start() error {
 	if t == nil || t.held {
 		return nil
 	}
+	// Once it has a slot, a calculation lets others go first: those who came at the same time shall see that the slot is
+	// taken, or with a single processor they would find it free again one after the other, and none would be turned away.
+	// Turning away takes so little that calculations hardly feel it, but those turned away would feel the calculations.
 	if t.pool.try() {
 		t.held = true
 		event(t.ctx, "computing")
+		runtime.Gosched()
 		return nil
 	}
 	a := t.a
 	event(t.ctx, "waiting")
-	if t.pool.waiting.Load() >= int64(a.admission.queue) {
+	from := a.now()
+	room := a.admission.queue
+	if t.pool == a.admission.short { // long work is bounded by its places
+		room = t.pool.room(from, room)
+	}
+	if t.pool.waiting.Load() >= int64(room) {
+		t.pool.turnedAway(from)
 		return a.turnAway(refusedQueueFull, busy("too many calculations are under way"))
 	}
-	from := a.now()
 	ctx, cancel := context.WithTimeoutCause(t.ctx, queueWait, errQueueWait)
 	defer cancel()
 	err := t.pool.wait(ctx)
-	a.metrics.queued.Observe(a.now().Sub(from).Seconds())
-	if errors.Is(err, errQueueWait) {
-		return a.turnAway(refusedQueueWait, busy("no other calculation ended soon enough for this one to begin"))
+	runtime.Gosched()
+	now := a.now()
+	a.metrics.queued.Observe(now.Sub(from).Seconds())
+	t.held = err == nil
+	if t.held && t.pool.grant(from, now) && t.pool == a.admission.short {
+		t.pause()
+		err = errQueueWait
 	}
-	if t.held = err == nil; t.held {
+	if errors.Is(err, errQueueWait) {
+		return a.turnAway(refusedQueueWait, busy("other calculations did not end soon enough for this one to begin"))
+	}
+	if t.held {
 		event(t.ctx, "computing")
 	}
 	return err
@@ -320,8 +399,8 @@ func (t *ticket) share() (admit func(context.Context) (release func(), err error
 
 // renew gives a request its whole time again, because who gets a table row by row sees that it goes on.
 func (t *ticket) renew() {
-	if t != nil && t.clock != nil {
-		t.clock.Reset(t.a.admission.deadline)
+	if t != nil && t.deadline != nil {
+		t.deadline.extend(t.a.admission.deadline)
 	}
 }
 

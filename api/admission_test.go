@@ -121,6 +121,71 @@ func TestQueue(t *testing.T) {
 	})
 }
 
+// A burst may wait for as long as it takes within a second. When more keeps coming than can be answered, nobody waits for
+// much longer than the target, and the processor is kept busy all the same.
+func TestQueueUnderLastingOverload(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		const cost = 2 * time.Millisecond
+		a := newAPI(t, func(o *Options) { o.MaxConcurrent, o.MaxQueue = 1, 100 })
+		a.engine.GET("/work", a.limit, a.admitAtOnce, a.handle(func(*gin.Context) (any, error) {
+			time.Sleep(cost)
+			return health{"ok", "devel"}, nil
+		}))
+		var mu sync.Mutex
+		var all sync.WaitGroup
+		ask := func(done func(status int, took time.Duration)) {
+			all.Go(func() {
+				start := time.Now()
+				status := serve(a.Handler(), httptest.NewRequest("GET", "/work", nil)).Code
+				mu.Lock()
+				defer mu.Unlock()
+				done(status, time.Since(start))
+			})
+		}
+		for range 50 {
+			ask(func(status int, took time.Duration) {
+				if status != 200 {
+					t.Errorf("one of a burst of 50 got %d after %v", status, took)
+				}
+			})
+		}
+		all.Wait()
+
+		served, turnedAway, late := 0, 0, 0
+		var longest time.Duration
+		begun := time.Now()
+		for time.Since(begun) < 2*time.Second { // ten times of what can be done
+			lasting := time.Since(begun) > 2*burst
+			ask(func(status int, took time.Duration) {
+				switch {
+				case status != 200:
+					turnedAway++
+				case lasting && took > 3*target+cost:
+					late++
+					longest = max(longest, took)
+					fallthrough
+				default:
+					served++
+				}
+			})
+			time.Sleep(cost / 10)
+		}
+		all.Wait()
+		if late > 0 {
+			t.Errorf("%d answers came late, after %v at most", late, longest)
+		}
+		if want := int(2 * time.Second / cost); served < want*9/10 || turnedAway < 8*want {
+			t.Errorf("%d served and %d turned away; at most %d could be served", served, turnedAway, want)
+		}
+		ask(func(status int, took time.Duration) {
+			if status != 200 || took != cost {
+				t.Errorf("after the overload: %d after %v", status, took)
+			}
+		})
+		all.Wait()
+	})
+}
+
 // A client that goes away while it waits leaves the queue.
 func TestQueueForgetsTheGone(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
@@ -154,7 +219,7 @@ func TestDeadline(t *testing.T) {
 		a.engine.GET("/slow", a.limit, a.admitAtOnce, a.handle(func(c *gin.Context) (any, error) {
 			for {
 				time.Sleep(time.Second)
-				if err := breathe(c.Request.Context()); err != nil {
+				if err := breathe(contextOf(c)); err != nil {
 					return nil, err
 				}
 			}

@@ -5,6 +5,8 @@ import (
 	"encoding/json"
 	"math"
 	"strconv"
+	"strings"
+	"unicode/utf8"
 )
 
 // object writes a JSON object member by member. It serves states, which are too many for reflection.
@@ -112,11 +114,18 @@ func appendNumber(b []byte, x float64) []byte {
 
 // appendText writes a JSON string.
 func appendText(b []byte, text string) []byte {
+	wide := false
 	for i := range len(text) {
-		if c := text[i]; c < ' ' || c == '"' || c == '\\' || c >= 0x7f {
+		c := text[i]
+		if c < ' ' || c == '"' || c == '\\' {
 			b, _ = appendValue(b, text) // a string cannot fail
 			return b
 		}
+		wide = wide || c >= utf8.RuneSelf
+	}
+	if wide && (!utf8.ValidString(text) || strings.ContainsAny(text, "\u2028\u2029")) {
+		b, _ = appendValue(b, text)
+		return b
 	}
 	b = append(b, '"')
 	b = append(b, text...)

@@ -10,7 +10,6 @@ import (
 	"io"
 	"mime"
 	"net/http"
-	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -185,8 +184,8 @@ func encode(b []byte, v any) ([]byte, error) {
 	return b, err
 }
 
-// slowest is the bytes a second that a client must take of a large answer.
-const slowest = 64 << 10
+// slowest is the bytes a second that a client must take of a large answer: a megabit.
+const slowest = 128 << 10
 
 func send(c *gin.Context, status int, media string, body []byte) {
 	c.Header("Content-Type", media)
@@ -210,7 +209,10 @@ const statusClientGone = 499
 // fail answers with the problem that err is.
 func (a *API) fail(c *gin.Context, err error) {
 	if errors.Is(err, context.Canceled) || errors.Is(err, context.DeadlineExceeded) { // which of them is the cause?
-		err = cmp.Or(context.Cause(c.Request.Context()), err)
+		err = cmp.Or(context.Cause(contextOf(c)), err)
+	}
+	if errors.Is(err, context.DeadlineExceeded) {
+		err = errDeadline
 	}
 	_ = c.Error(err) // for the request log
 	if errors.Is(err, context.Canceled) {
@@ -243,8 +245,8 @@ func (a *API) problem(p *Problem) gin.HandlerFunc {
 
 // decode reads the JSON body of a request into v and checks it.
 func (a *API) decode(c *gin.Context, v any) error {
-	if err := wantMedia(c, mediaJSON); err != nil {
-		return err
+	if !hasMedia(c, mediaJSON) {
+		return otherMedia(c, mediaJSON)
 	}
 	body, err := a.body(c)
 	if err != nil {
@@ -303,21 +305,22 @@ func (a *API) tooLarge() *Problem {
 
 var errCutBody = malformed("#", "the body could not be read to its end")
 
-// wantMedia refuses a body that is not of one of the media types.
-func wantMedia(c *gin.Context, media ...string) error {
-	if slices.Contains(media, c.GetHeader("Content-Type")) {
-		return nil // as nearly all requests have it
+// hasMedia reports whether the body is of that media type, in UTF-8.
+func hasMedia(c *gin.Context, want string) bool {
+	given := c.GetHeader("Content-Type")
+	if given == want {
+		return true // as nearly all clients write it
 	}
-	have, params, err := mime.ParseMediaType(c.GetHeader("Content-Type"))
+	media, params, err := mime.ParseMediaType(given)
 	charset := params["charset"]
-	for _, m := range media {
-		if err == nil && have == m && (charset == "" || strings.EqualFold(charset, "utf-8")) {
-			return nil
-		}
-	}
+	return err == nil && media == want && (charset == "" || strings.EqualFold(charset, "utf-8"))
+}
+
+// otherMedia refuses a body that is of none of the media types that a resource reads.
+func otherMedia(c *gin.Context, read ...string) error {
 	detail := "the body has no Content-Type"
-	if got := c.GetHeader("Content-Type"); got != "" {
-		detail = "Content-Type " + quote(got) + " is not read here"
+	if given := c.GetHeader("Content-Type"); given != "" {
+		detail = "Content-Type " + quote(given) + " is not read here"
 	}
-	return refusal(http.StatusUnsupportedMediaType, "unsupported-media-type", detail+"; send "+strings.Join(media, " or ")+" in UTF-8")
+	return refusal(http.StatusUnsupportedMediaType, "unsupported-media-type", detail+"; send "+strings.Join(read, " or ")+" in UTF-8")
 }

@@ -63,12 +63,12 @@ func causesOf(c *gin.Context) []string {
 	return causes
 }
 
-// levelFor keeps probes and good answers out of a log at the default level.
+// levelFor keeps probes, good answers and what overload turns away out of a log at the default level. Metrics count them.
 func levelFor(route string, status int) slog.Level {
 	switch {
-	case route == "/readyz" || route == "/livez":
+	case route == "/readyz" || route == "/livez" || status == http.StatusServiceUnavailable || status == http.StatusTooManyRequests:
 		return slog.LevelDebug
-	case status >= http.StatusInternalServerError && status != http.StatusServiceUnavailable:
+	case status >= http.StatusInternalServerError:
 		return slog.LevelError
 	case status >= http.StatusBadRequest:
 		return slog.LevelInfo

@@ -80,7 +80,7 @@ func (a *API) operatingPoints(c *gin.Context) (any, error) {
 			voice: voice{units: j.units, r: j.r}, condition: place{"#/conditions", i}.String(), oneMap: req.Machine.Compressor.Map != nil,
 		})
 	}
-	if err := inParallel(c.Request.Context(), len(points), func(i int) { answer(c.Request.Context(), i) }); err != nil {
+	if err := inParallel(contextOf(c), len(points), func(i int) { answer(contextOf(c), i) }); err != nil {
 		return nil, err
 	}
 	var all account

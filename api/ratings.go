@@ -114,7 +114,7 @@ func (a *API) rate(c *gin.Context) error {
 		voice: machineVoice{voice: voice{units: j.units, r: j.r}, condition: "#", oneMap: req.Machine.Compressor.Map != nil},
 	}
 	defer func() { a.metrics.calculated("rating", &t.all) }()
-	ctx := c.Request.Context()
+	ctx := contextOf(c)
 	if err = machine.Rate(ctx, m, g, func(row machine.Row) error {
 		if row.Point != nil {
 			a.metrics.iterations.WithLabelValues("operating_point").Observe(float64(row.Point.Evaluations))

@@ -470,7 +470,7 @@ func (a *API) readings(c *gin.Context) (any, error) {
 		samples[i], items[i].problem = in.sample(&req.Samples[i], place{"#/samples", i}.String())
 	}
 	resp := &readingsResponse{installation: in, items: items}
-	ctx := c.Request.Context()
+	ctx := contextOf(c)
 	if req.Series == nil {
 		err = inParallel(ctx, len(samples), func(i int) {
 			in.alone(ctx, &items[i], req.Samples[i].ID, samples[i], place{"#/samples", i}.String())

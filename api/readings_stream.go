@@ -141,7 +141,7 @@ func (s *readingsSeries) answer(ctx context.Context, b []byte, id string, sample
 
 // postReadings answers POST /v1/readings in the form of the request.
 func (a *API) postReadings(c *gin.Context) {
-	if wantMedia(c, mediaLines) != nil {
+	if !hasMedia(c, mediaLines) {
 		a.handle(a.readings)(c)
 		return
 	}
@@ -173,7 +173,7 @@ func (a *API) streamReadings(c *gin.Context) error {
 		if err := in.announce(c, in.kinds()); err != nil {
 			return nil, err
 		}
-		ctx := c.Request.Context()
+		ctx := contextOf(c)
 		return &lineAnswers{
 			line: func(out, text []byte, broken error, n int) ([]byte, error) {
 				at := place{"#/samples", n}.String()

@@ -92,7 +92,7 @@ func (a *API) saturation(c *gin.Context) (any, error) {
 	rows := make([]saturationRow, len(points))
 	for i, p := range points {
 		if i%chunkSize == 0 {
-			if err := breathe(c.Request.Context()); err != nil {
+			if err := breathe(contextOf(c)); err != nil {
 				return nil, err
 			}
 		}

@@ -66,7 +66,7 @@ func (a *API) states(c *gin.Context) (any, error) {
 		return nil, err
 	}
 	resp := &statesResponse{job: j, kinds: shown.kinds()}
-	if resp.chunks, err = j.chunks(c.Request.Context(), req.Points, shown); err != nil {
+	if resp.chunks, err = j.chunks(contextOf(c), req.Points, shown); err != nil {
 		return nil, err
 	}
 	var all account

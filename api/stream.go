@@ -31,7 +31,7 @@ const headHeader = "Dewmark-Head"
 
 // postStates answers POST /v1/states in the form of the request.
 func (a *API) postStates(c *gin.Context) {
-	if wantMedia(c, mediaLines) != nil {
+	if !hasMedia(c, mediaLines) {
 		a.handle(a.states)(c)
 		return
 	}

@@ -110,7 +110,7 @@ type transportBasis struct {
 
 // transportBases lists the recommended models of the properties that shown shows.
 func transportBases(r props.Refrigerant, shown *selection) []transportBasis {
-	var bases []transportBasis
+	bases := make([]transportBasis, 0, len(shown.transport))
 	for _, p := range shown.transport {
 		if records := r.TransportRecords(p); len(records) > 0 {
 			bases = append(bases, transportBasis{memberOf(p), string(records[0].Method), records[0].Source})

@@ -35,7 +35,11 @@ func fairness(ctx context.Context, s *settings) (*report, error) {
 			r.fail("%s: %d of %d single states were not answered: %v %v", what, other, f.sent, f.statuses, f.broken)
 		}
 	}
-	row("alone", flood(ctx, p.address, &oneState, 200, s.time))
+	alone, err := flood(ctx, p.address, &oneState, 200, s.time)
+	if err != nil {
+		return r, err
+	}
+	row("alone", alone)
 
 	streaming, stop := context.WithCancel(ctx)
 	defer stop()
@@ -52,10 +56,13 @@ func fairness(ctx context.Context, s *settings) (*report, error) {
 		})
 	}
 	begun := time.Now()
-	f := flood(ctx, p.address, &oneState, 200, s.time)
+	f, err := flood(ctx, p.address, &oneState, 200, s.time)
 	rate := float64(points.Load()) / time.Since(begun).Seconds()
 	stop()
 	all.Wait()
+	if err != nil {
+		return r, err
+	}
 	row(fmt.Sprintf("beside %d streams of %d points, which had %.0f points a second together", streams, streamed, rate), f)
 	return r, nil
 }

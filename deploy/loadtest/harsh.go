@@ -28,10 +28,15 @@ func freeAddresses(ctx context.Context) (public, admin string, err error) {
 
 // refused sends requests that the service refuses and logs, and returns how many were answered.
 func refused(ctx context.Context, p *service, n int) int {
-	client := &http.Client{Timeout: time.Second}
+	request, err := (&question{"refused", "/v1/states", `{"refrigerant": "R290", "points": 1}`}).wire(ctx, p.address)
+	if err != nil {
+		return 0
+	}
+	l := &line{patience: time.Second}
+	defer l.close()
 	answered := 0
 	for failures := 0; n > 0 && failures < 5; n-- {
-		status, _, err := send(ctx, client, p.address, &question{"refused", "/v1/states", `{"refrigerant": "R290", "points": 1}`})
+		status, _, err := l.ask(ctx, p.address, request)
 		switch {
 		case err != nil:
 			failures++
