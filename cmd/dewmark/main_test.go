@@ -5,11 +5,15 @@ import (
 	"bytes"
 	"context"
 	"encoding/json"
+	"flag"
 	"io"
 	"net/http"
+	"reflect"
 	"strings"
 	"testing"
 	"time"
+
+	"dewmark/api"
 )
 
 // command runs a command line.
@@ -65,6 +69,8 @@ func TestUsage(t *testing.T) {
 		{[]string{"--max-points", "-1", "--listen", "127.0.0.1:0"}, 2, "negative"},
 		{[]string{"--deadline", "0s"}, 2, "--deadline must be above zero"},
 		{[]string{"--max-queue", "0"}, 2, "--max-queue must be above zero"},
+		{[]string{"--max-mixtures", "0"}, 2, "--max-mixtures must be above zero"},
+		{[]string{"--max-mixtures", "-1"}, 2, "negative"},
 		{[]string{"--drain-delay", "-1s"}, 2, "must not be negative"},
 		{[]string{"brew"}, 2, `unknown command "brew"`},
 		{[]string{"probe", "--listen", "127.0.0.1"}, 1, "missing port"},
@@ -95,6 +101,34 @@ func TestEnvironment(t *testing.T) {
 	t.Setenv("DEWMARK_MAX_POINTS", "many")
 	if code, _, stderr := command(t, body, "call", "POST", "/v1/states"); code != 2 || !strings.Contains(stderr, `DEWMARK_MAX_POINTS="many"`) {
 		t.Errorf("nonsense: exit %d, %s", code, stderr)
+	}
+}
+
+// Each flag of the load reaches the option that it is named after.
+func TestLoadFlags(t *testing.T) {
+	var l load
+	flags := newFlags("serve", "", io.Discard)
+	l.register(flags)
+	args := []string{
+		"--max-concurrent", "1", "--max-queue", "2", "--max-batches", "3", "--max-streams", "4", "--max-mixtures", "5",
+		"--deadline", "6s", "--rate", "7", "--burst", "8", "--trusted-proxies", "192.0.2.1, 198.51.100.0/24",
+	}
+	if err := parse(flags, args, 0); err != nil {
+		t.Fatal(err)
+	}
+	var got api.Options
+	l.apply(&got)
+	want := api.Options{
+		MaxConcurrent: 1, MaxQueue: 2, MaxBatches: 3, MaxStreams: 4, MaxMixtures: 5,
+		Deadline: 6 * time.Second, Rate: 7, Burst: 8, TrustedProxies: []string{"192.0.2.1", "198.51.100.0/24"},
+	}
+	flags.VisitAll(func(f *flag.Flag) {
+		if f.Value.String() == f.DefValue {
+			t.Errorf("--%s is not tried", f.Name)
+		}
+	})
+	if !reflect.DeepEqual(got, want) {
+		t.Errorf("%+v, want %+v", got, want)
 	}
 }
 

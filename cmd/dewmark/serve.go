@@ -47,11 +47,11 @@ func (l *limits) apply(o *api.Options) { o.MaxBody, o.MaxPoints = l.maxBody, l.m
 
 // load are the flags that bound what runs at once.
 type load struct {
-	maxConcurrent, maxQueue, maxBatches, maxStreams int
-	deadline                                        time.Duration
-	rate                                            float64
-	burst                                           int
-	trustedProxies                                  string
+	maxConcurrent, maxQueue, maxBatches, maxStreams, maxMixtures int
+	deadline                                                     time.Duration
+	rate                                                         float64
+	burst                                                        int
+	trustedProxies                                               string
 }
 
 func (l *load) register(flags *flag.FlagSet) {
@@ -59,6 +59,7 @@ func (l *load) register(flags *flag.FlagSet) {
 	flags.IntVar(&l.maxQueue, "max-queue", api.DefaultMaxQueue, "`requests` that wait to be computed before others get a 503")
 	flags.IntVar(&l.maxBatches, "max-batches", 0, "long `batches` under way before others get a 503; 0 for eight a processor")
 	flags.IntVar(&l.maxStreams, "max-streams", api.DefaultMaxStreams, "`streams` open before others get a 503")
+	flags.IntVar(&l.maxMixtures, "max-mixtures", api.DefaultMaxMixtures, "`mixtures` by fractions kept for later requests, of some 0.15 MB each")
 	flags.DurationVar(&l.deadline, "deadline", api.DefaultDeadline, "`time` for one calculation, after which it ends with a 503")
 	flags.Float64Var(&l.rate, "rate", 0, "`requests` a second of one client before it gets a 429; 0 for no limit")
 	flags.IntVar(&l.burst, "burst", 0, "`requests` that a client may send at once after a pause; 0 for those of a second")
@@ -67,7 +68,7 @@ func (l *load) register(flags *flag.FlagSet) {
 
 func (l *load) apply(o *api.Options) {
 	o.MaxConcurrent, o.MaxQueue, o.MaxBatches, o.MaxStreams = l.maxConcurrent, l.maxQueue, l.maxBatches, l.maxStreams
-	o.Deadline, o.Rate, o.Burst = l.deadline, l.rate, l.burst
+	o.MaxMixtures, o.Deadline, o.Rate, o.Burst = l.maxMixtures, l.deadline, l.rate, l.burst
 	for proxy := range strings.SplitSeq(l.trustedProxies, ",") {
 		if proxy = strings.TrimSpace(proxy); proxy != "" {
 			o.TrustedProxies = append(o.TrustedProxies, proxy)
@@ -107,6 +108,7 @@ func (s *settings) check() error {
 		{"max-points", s.maxPoints == 0},
 		{"max-queue", s.maxQueue == 0},
 		{"max-streams", s.maxStreams == 0},
+		{"max-mixtures", s.maxMixtures == 0},
 		{"deadline", s.deadline == 0},
 	} {
 		if limit.zero {
