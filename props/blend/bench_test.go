@@ -29,7 +29,7 @@ func BenchmarkTemperaturePressure(b *testing.B) {
 		name string
 		T, p float64
 	}{{"vapour", 290, 300e3}, {"liquid", 260, 2e6}} {
-		for _, name := range []string{"R32", "R125", "R134a", "R1234yf", "R290", "R600a"} {
+		for _, name := range []string{"R32", "R125", "R134a", "R1234yf", "R1234ze(E)", "R744"} {
 			r := pure(b, name)
 			b.Run(state.name+"/"+name, func(b *testing.B) {
 				b.ReportAllocs()
