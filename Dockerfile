@@ -10,9 +10,12 @@ ARG VERSION=devel
 # Static, stripped and without build paths: the same sources and Go release give the same bytes.
 RUN CGO_ENABLED=0 GOFLAGS=-buildvcs=false go build -tags nomsgpack -trimpath \
     -ldflags "-s -w -buildid= -X main.version=${VERSION}" -o /dewmark ./cmd/dewmark
+# The licences of what the binary holds of others, most of which ask to go along with it.
+RUN go run ./deploy/licences /dewmark >/licences.txt
 
 FROM scratch
 COPY --from=build /dewmark /dewmark
+COPY --from=build /licences.txt /licences.txt
 COPY LICENSE /LICENSE
 # Any id without an account: nothing is written, so the root file system may be read-only.
 USER 65532:65532
