@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"context"
 	"errors"
+	"math"
 	"net/http"
 	"runtime"
 	"sync"
@@ -65,7 +66,7 @@ const (
 // Controlling Queue Delay, ACM Queue 10(5), 2012).
 const (
 	burst  = 100 * time.Millisecond // a queue that has not been empty for so long is no burst
-	target = 5 * time.Millisecond   // what those who wait then should wait
+	target = 8 * time.Millisecond   // what those who wait then should wait
 )
 
 // pool holds slots. Those who wait get them in the order they came.
@@ -96,17 +97,22 @@ func (p *pool) room(now time.Time, most int) int {
 	case !p.cut && now.Sub(p.empty) > burst:
 		p.cut, p.turned = true, now
 	}
-	if !p.cut || p.interval <= 0 {
-		return most
-	}
-	return min(most, max(cap(p.slots), int(target/p.interval)))
+	return min(most, p.briefly())
 }
 
-// grant notes that somebody who has waited since then may begin, unless that was for too long.
+// briefly returns how many may wait for as long as the queue is not cut, or else about as many as begin within the target.
+func (p *pool) briefly() int {
+	if !p.cut || p.interval <= 0 {
+		return math.MaxInt
+	}
+	return max(cap(p.slots), int(target/p.interval))
+}
+
+// grant notes that somebody who has waited since then may begin, unless that was for long and too many others wait.
 func (p *pool) grant(then, now time.Time) (late bool) {
 	p.mu.Lock()
 	defer p.mu.Unlock()
-	if p.cut && now.Sub(then) > 2*target {
+	if now.Sub(then) > target && int(p.waiting.Load()) > p.briefly() {
 		p.turned = now
 		return true
 	}

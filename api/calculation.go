@@ -134,7 +134,8 @@ func (j *job) conclude(a *account, shown *selection) {
 
 // view returns a state in the caller's units and enters what is to be said of it.
 func (j *job) view(s props.State, shown *selection, into *account) stateView {
-	w := newWorker(j, shown)
+	w := takeWorker(j, shown)
+	defer w.giveBack()
 	w.show(s)
 	into.add(&w.account)
 	return w.view

@@ -1,6 +1,9 @@
 package api
 
-import "context"
+import (
+	"context"
+	"slices"
+)
 
 // chunkSize is how many points a goroutine takes at a time: enough that handing over costs nothing beside them, few enough
 // that the cores end together.
@@ -8,7 +11,7 @@ const chunkSize = 64
 
 // chunk is the answer to some points in a row.
 type chunk struct {
-	text []byte // their items, parted by commas
+	text *[]byte // their items, parted by commas, in a buffer to be given back
 	account
 }
 
@@ -30,13 +33,16 @@ func (j *job) chunks(ctx context.Context, points []point, shown *selection) ([]c
 
 // chunk answers some points, the first of which is number first.
 func (j *job) chunk(points []point, first int, shown *selection) chunk {
-	w := newWorker(j, shown)
-	text := make([]byte, 0, len(points)*(64+32*len(shown.fields)))
+	w := takeWorker(j, shown)
+	defer w.giveBack()
+	buffer := takeBuffer()
+	text := slices.Grow(*buffer, len(points)*(64+32*len(shown.fields)))
 	for i := range points {
 		if i > 0 {
 			text = append(text, ',')
 		}
 		text = w.item(text, &points[i], place{"#/points", first + i})
 	}
-	return chunk{text, w.account}
+	*buffer = text
+	return chunk{buffer, w.account}
 }

@@ -195,8 +195,9 @@ func accountsOf(s *cycle.Solution, u *units) cycleAccounts {
 
 // cycleStates returns the states around the circuit and enters what is to be said of them.
 func (j *job) cycleStates(s *cycle.Solution, upper []*job, into *account) []cycleState {
-	var states []cycleState
-	for _, at := range s.States {
+	states := make([]cycleState, 0, len(s.States))
+	for i := range s.States {
+		at := &s.States[i]
 		of := j
 		if len(upper) > 0 && at.Refrigerant == cycle.Refrigerant(upper[0].r) {
 			of = upper[0]

@@ -63,7 +63,7 @@ type token struct {
 	text []byte // as it stands in the body, quotes included
 }
 
-// selfDecoder is a value that comes in forms of its own.
+// selfDecoder is a struct, map or slice that comes in forms of its own.
 type selfDecoder interface {
 	// decode reads the value that starts with t, as [decoder.assign] does.
 	decode(d *decoder, t token) error
@@ -80,8 +80,12 @@ func (d *decoder) value(target reflect.Value) error {
 
 // assign stores the value that starts with t.
 func (d *decoder) assign(target reflect.Value, t token) error {
-	if own, ok := reflect.TypeAssert[selfDecoder](target.Addr()); ok {
-		return own.decode(d, t)
+	switch target.Kind() {
+	case reflect.Struct, reflect.Map, reflect.Slice:
+		if own, ok := reflect.TypeAssert[selfDecoder](target.Addr()); ok {
+			return own.decode(d, t)
+		}
+	default: // has one form
 	}
 	switch target.Kind() {
 	case reflect.Pointer:

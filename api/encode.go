@@ -114,22 +114,35 @@ func appendNumber(b []byte, x float64) []byte {
 
 // appendText writes a JSON string.
 func appendText(b []byte, text string) []byte {
-	wide := false
+	marks, wide := 0, false
 	for i := range len(text) {
-		c := text[i]
-		if c < ' ' || c == '"' || c == '\\' {
-			b, _ = appendValue(b, text) // a string cannot fail
-			return b
+		switch c := text[i]; {
+		case c < ' ':
+			return appendEscaped(b, text)
+		case c == '"' || c == '\\':
+			marks++
+		case c >= utf8.RuneSelf:
+			wide = true
 		}
-		wide = wide || c >= utf8.RuneSelf
 	}
 	if wide && (!utf8.ValidString(text) || strings.ContainsAny(text, "\u2028\u2029")) {
-		b, _ = appendValue(b, text)
-		return b
+		return appendEscaped(b, text)
 	}
 	b = append(b, '"')
+	for ; marks > 0; marks-- {
+		i := strings.IndexAny(text, `"\`)
+		b = append(b, text[:i]...)
+		b = append(b, '\\', text[i])
+		text = text[i+1:]
+	}
 	b = append(b, text...)
 	return append(b, '"')
+}
+
+// appendEscaped is appendText for text that needs more than backslashes.
+func appendEscaped(b []byte, text string) []byte {
+	b, _ = appendValue(b, text) // a string cannot fail
+	return b
 }
 
 // known returns a pointer to x for a member that is null when x is not a number.

@@ -149,20 +149,32 @@ var buffers = sync.Pool{New: func() any { return new([]byte) }}
 // largestKept is the capacity up to which a buffer goes back to the pool.
 const largestKept = 1 << 20
 
+// takeBuffer returns an empty buffer from the pool.
+func takeBuffer() *[]byte {
+	buffer := buffers.Get().(*[]byte)
+	*buffer = (*buffer)[:0]
+	return buffer
+}
+
+// giveBack returns a buffer to the pool, after which nobody may use it.
+func giveBack(buffer *[]byte) {
+	if cap(*buffer) <= largestKept {
+		buffers.Put(buffer)
+	}
+}
+
 // write encodes v before it sends anything, so that a value that cannot be written becomes a 500 and not half an answer.
 func (a *API) write(c *gin.Context, status int, media string, v any) error {
-	buffer := buffers.Get().(*[]byte)
-	body, err := encode((*buffer)[:0], v)
+	buffer := takeBuffer()
+	body, err := encode(*buffer, v)
 	if err == nil {
 		if t, ok := v.(typed); ok {
 			media = t.mediaType()
 		}
 		send(c, status, media, body)
 	}
-	if cap(body) <= largestKept {
-		*buffer = body
-		buffers.Put(buffer)
-	}
+	*buffer = body
+	giveBack(buffer)
 	return err
 }
 
@@ -195,8 +207,10 @@ func send(c *gin.Context, status int, media string, body []byte) {
 		t.pause() // who reads slowly holds no slot
 		event(t.ctx, "computed")
 	}
-	allowed := patience/2 + time.Duration(len(body)/slowest)*time.Second
-	_ = http.NewResponseController(c.Writer).SetWriteDeadline(time.Now().Add(allowed)) // recorders of tests cannot
+	if len(body) > longBody { // less goes to the network at once
+		allowed := patience/2 + time.Duration(len(body)/slowest)*time.Second
+		_ = http.NewResponseController(c.Writer).SetWriteDeadline(time.Now().Add(allowed)) // recorders of tests cannot
+	}
 	_, err := c.Writer.Write(body)
 	if err != nil {
 		_ = c.Error(err) // for the request log; the client is gone
@@ -308,8 +322,8 @@ var errCutBody = malformed("#", "the body could not be read to its end")
 // hasMedia reports whether the body is of that media type, in UTF-8.
 func hasMedia(c *gin.Context, want string) bool {
 	given := c.GetHeader("Content-Type")
-	if given == want {
-		return true // as nearly all clients write it
+	if given == mediaJSON || given == mediaLines {
+		return given == want // nearly all clients write it so
 	}
 	media, params, err := mime.ParseMediaType(given)
 	charset := params["charset"]

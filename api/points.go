@@ -5,6 +5,7 @@ import (
 	"math"
 	"slices"
 	"strings"
+	"sync"
 
 	"dewmark/props"
 )
@@ -20,6 +21,22 @@ type worker struct {
 }
 
 func newWorker(j *job, shown *selection) *worker { return &worker{job: j, shown: shown} }
+
+// workers are large for what one state costs.
+var workers = sync.Pool{New: func() any { return new(worker) }}
+
+// takeWorker is newWorker for one that is given back.
+func takeWorker(j *job, shown *selection) *worker {
+	w := workers.Get().(*worker)
+	w.job, w.shown = j, shown
+	return w
+}
+
+// giveBack returns the worker to the pool, after which nobody may use it.
+func (w *worker) giveBack() {
+	*w = worker{}
+	workers.Put(w)
+}
 
 // given is a property that a request fixes, under the name that the request has for it.
 type given struct {

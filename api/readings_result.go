@@ -174,7 +174,8 @@ var pressureField = fieldNamed("pressure")
 func (in *installation) writeStates(o *object, states []readings.StateAt) {
 	o.name("states")
 	o.b = append(o.b, '[')
-	w := newWorker(in.job, in.states)
+	w := takeWorker(in.job, in.states)
+	defer w.giveBack()
 	for i := range states {
 		if i > 0 {
 			o.b = append(o.b, ',')

@@ -119,7 +119,8 @@ func (r *statesResponse) encode(b []byte) ([]byte, error) {
 		if i > 0 {
 			o.b = append(o.b, ',')
 		}
-		o.b = append(o.b, r.chunks[i].text...)
+		o.b = append(o.b, *r.chunks[i].text...)
+		giveBack(r.chunks[i].text)
 	}
 	o.b = append(o.b, ']')
 	err := r.tail(&o)

@@ -17,6 +17,7 @@ type Model struct {
 	viscosity    []viscosityRecord // by rank
 	conductivity []conductivityRecord
 	tension      []tensionRecord
+	records      [SurfaceTension + 1][]*Record // of all of them
 
 	// The general methods that stand in at a pole, and that mixtures use. They may be the recommended records themselves.
 	scaledViscosity    *viscosityRecord
@@ -72,6 +73,15 @@ func (m *Model) read(records json.RawMessage, references []*Model) error {
 	if m.scaledViscosity == nil || m.scaledConductivity == nil || m.scaledConductivity.critical == nil {
 		return errors.New("no entropy_scaling record with use_in_mixtures for viscosity or thermal conductivity")
 	}
+	for i := range m.viscosity {
+		m.records[Viscosity] = append(m.records[Viscosity], &m.viscosity[i].Record)
+	}
+	for i := range m.conductivity {
+		m.records[ThermalConductivity] = append(m.records[ThermalConductivity], &m.conductivity[i].Record)
+	}
+	for i := range m.tension {
+		m.records[SurfaceTension] = append(m.records[SurfaceTension], &m.tension[i].Record)
+	}
 	return nil
 }
 
@@ -92,22 +102,10 @@ func readAll[R any](in []json.RawMessage, p Property, read func(json.RawMessage)
 
 // Records returns the descriptions of the records of p in order of preference. The caller must not modify them.
 func (m *Model) Records(p Property) []*Record {
-	var out []*Record
-	switch p {
-	case Viscosity:
-		for i := range m.viscosity {
-			out = append(out, &m.viscosity[i].Record)
-		}
-	case ThermalConductivity:
-		for i := range m.conductivity {
-			out = append(out, &m.conductivity[i].Record)
-		}
-	case SurfaceTension:
-		for i := range m.tension {
-			out = append(out, &m.tension[i].Record)
-		}
+	if int(p) >= len(m.records) {
+		return nil
 	}
-	return out
+	return m.records[p]
 }
 
 // State returns the state at T in K and rho in mol/m3 from the equation of state of the refrigerant. A caller that has
