@@ -41,7 +41,7 @@ type machineRequest struct {
 // the units: revolutions or supply frequency, as the swept volume and the maps count.
 type machineCompressor struct {
 	Map                  *compressorMap    `json:"map"`
-	Maps                 []compressorMap   `json:"maps" validate:"max=100"`
+	Maps                 []compressorMap   `json:"maps" validate:"max=100,dive"`
 	SweptVolume          *float64          `json:"swept_volume"`
 	IsentropicEfficiency []float64         `json:"isentropic_efficiency" validate:"max=3"` // coefficients in the pressure ratio
 	VolumetricEfficiency []float64         `json:"volumetric_efficiency" validate:"max=3"`
@@ -51,7 +51,7 @@ type machineCompressor struct {
 	Speed                *float64          `json:"speed"`
 	SpeedMin             *float64          `json:"speed_min"`
 	SpeedMax             *float64          `json:"speed_max"`
-	Envelopes            []envelopeRequest `json:"envelopes" validate:"max=100"`
+	Envelopes            []envelopeRequest `json:"envelopes" validate:"max=100,dive"`
 }
 
 // compressorMap is a data sheet. All in it but the speed is in the units that it declares.

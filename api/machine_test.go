@@ -411,3 +411,18 @@ func TestMachineMetrics(t *testing.T) {
 		t.Errorf("%v, want %v", got, want)
 	}
 }
+
+// What is in a list is held against its bounds as what is not.
+func TestBoundsOfItems(t *testing.T) {
+	a := testAPI(t)
+	for body, pointer := range map[string]string{
+		`{"machine": {"refrigerant": "R290", "compressor": {}, "evaporator": {}, "condenser": {}}, "conditions": [{"id": "` + strings.Repeat("x", 129) + `"}]}`:                                  "#/conditions/0/id",
+		`{"machine": {"refrigerant": "R290", "compressor": {"maps": [{"kind": "ten_coefficient", "power": [1,2,3,4,5,6,7,8,9,10,11]}]}, "evaporator": {}, "condenser": {}}, "conditions": [{}]}`: "#/machine/compressor/maps/0/power",
+		`{"machine": {"refrigerant": "R290", "compressor": {"envelopes": [{"source": "` + strings.Repeat("x", 257) + `"}]}, "evaporator": {}, "condenser": {}}, "conditions": [{}]}`:             "#/machine/compressor/envelopes/0/source",
+	} {
+		answer := do(t, a.Handler(), "POST", "/v1/operating-points", body)
+		if answer.Code != 422 || !strings.Contains(answer.Body.String(), `"`+pointer+`"`) {
+			t.Errorf("%s: %d %s", pointer, answer.Code, answer.Body)
+		}
+	}
+}

@@ -11,7 +11,7 @@ import (
 // operatingPointsRequest asks where a machine settles.
 type operatingPointsRequest struct {
 	machineHead
-	Conditions []condition `json:"conditions" validate:"required,min=1"`
+	Conditions []condition `json:"conditions" validate:"required,min=1,dive"`
 }
 
 // condition is what a machine finds around it, and what it is asked to do.

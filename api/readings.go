@@ -35,7 +35,7 @@ type readingsHead struct {
 	Naming           string          `json:"naming"` // of the points of samples
 	Uncertainties    *uncertainties  `json:"uncertainties"`
 	Correlations     []correlation   `json:"correlations" validate:"max=100"`
-	Shared           []sharedError   `json:"shared_errors" validate:"max=20"`
+	Shared           []sharedError   `json:"shared_errors" validate:"max=20,dive"`
 	ShellConductance *float64        `json:"shell_conductance"`
 	SweptVolume      *float64        `json:"swept_volume"`
 	ModelUncertainty *float64        `json:"model_uncertainty"`
