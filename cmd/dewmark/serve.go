@@ -153,6 +153,7 @@ func (s *settings) serve(ctx context.Context, log *slog.Logger) (err error) {
 		go func() { failed <- srv.serve() }()
 	}
 	go warm(ctx, log, a)
+	go newTrimmer().run(ctx)
 	select {
 	case err = <-failed:
 	case <-ctx.Done():
