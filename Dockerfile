@@ -8,7 +8,7 @@ RUN go mod download
 COPY . .
 ARG VERSION=devel
 # Static, stripped and without build paths: the same sources and Go release give the same bytes.
-RUN CGO_ENABLED=0 GOFLAGS=-buildvcs=false go build -tags nomsgpack -trimpath \
+RUN CGO_ENABLED=0 GOFLAGS=-buildvcs=false go build -tags nomsgpack,validator_novalidatefn -trimpath \
     -ldflags "-s -w -buildid= -X main.version=${VERSION}" -o /dewmark ./cmd/dewmark
 # The licences of what the binary holds of others, most of which ask to go along with it.
 RUN go run ./deploy/licences /dewmark >/licences.txt
