@@ -71,8 +71,9 @@ const (
 
 // pool holds slots. Those who wait get them in the order they came.
 type pool struct {
-	slots   chan struct{}
-	waiting atomic.Int64
+	slots      chan struct{}
+	processors int
+	waiting    atomic.Int64
 
 	mu       sync.Mutex
 	cut      bool          // the queue
@@ -82,7 +83,9 @@ type pool struct {
 	interval time.Duration // between two such moments, of late
 }
 
-func newPool(size int) *pool { return &pool{slots: make(chan struct{}, size)} }
+func newPool(size int) *pool {
+	return &pool{slots: make(chan struct{}, size), processors: runtime.GOMAXPROCS(0)}
+}
 
 // room returns how many may wait, most at the most.
 func (p *pool) room(now time.Time, most int) int {
@@ -156,6 +159,15 @@ func (p *pool) wait(ctx context.Context) error {
 }
 
 func (p *pool) release() { <-p.slots }
+
+// yield lets others go before a calculation that has just got its slot and would take the last processor: those who came at
+// the same time shall see that the slot is taken. Otherwise each would find it free again after the one before, and none
+// would be turned away. That takes so little that calculations hardly feel it.
+func (p *pool) yield() {
+	if len(p.slots) >= p.processors {
+		runtime.Gosched()
+	}
+}
 
 // ticket is the right of one request to compute. It belongs to the goroutine of the request. A nil ticket bounds nothing.
 type ticket struct {
@@ -263,13 +275,10 @@ func (t *ticket) start() error {
 	if t == nil || t.held {
 		return nil
 	}
-	// Once it has a slot, a calculation lets others go first: those who came at the same time shall see that the slot is
-	// taken, or with a single processor they would find it free again one after the other, and none would be turned away.
-	// Turning away takes so little that calculations hardly feel it, but those turned away would feel the calculations.
 	if t.pool.try() {
 		t.held = true
 		event(t.ctx, "computing")
-		runtime.Gosched()
+		t.pool.yield()
 		return nil
 	}
 	a := t.a
@@ -286,7 +295,7 @@ func (t *ticket) start() error {
 	ctx, cancel := context.WithTimeoutCause(t.ctx, queueWait, errQueueWait)
 	defer cancel()
 	err := t.pool.wait(ctx)
-	runtime.Gosched()
+	t.pool.yield()
 	now := a.now()
 	a.metrics.queued.Observe(now.Sub(from).Seconds())
 	t.held = err == nil

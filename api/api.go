@@ -69,6 +69,7 @@ type API struct {
 	version   string
 	metrics   *metrics
 	lists     lists
+	bases     sync.Map // of []byte by props.Refrigerant: encoded bases, see [job.appendBasis]
 	mixtures  *mixtures
 	water     func() (*secondary.Liquid, error) // made when it is first wanted
 	ready     atomic.Bool

@@ -1,9 +1,11 @@
 package api
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"strings"
+	"sync"
 
 	"dewmark/props"
 )
@@ -45,6 +47,9 @@ type job struct {
 	units       *units
 	basis       basis
 	cautions    []caution
+
+	bases *sync.Map // where the basis may be encoded already; nil where it is the request's own
+	usual bool      // the basis is that of any answer with all members
 }
 
 // begin resolves what a request says of its refrigerant, datum and units.
@@ -67,6 +72,8 @@ func (a *API) begin(c *calculation) (*job, error) {
 	}}
 	if id.Kind == props.KindBlend {
 		j.components, j.basis.blendBasis = componentsOf(r), blendBasisOf(&id)
+	} else if !c.Extrapolate {
+		j.bases = &a.bases
 	}
 	if c.Refrigerant.mixture != nil {
 		j.basis.Source = "composition of the request"
@@ -127,6 +134,7 @@ func (j *job) conclude(a *account, shown *selection) {
 		j.caution("extrapolated", fmt.Sprintf("%d of %d states lie outside the validity of the equation of state and are marked; their uncertainty is not known", a.outside, a.states))
 	}
 	j.basis.Transport = transportBases(j.r, shown)
+	j.usual = j.bases != nil && shown == everything
 	for i := range a.reservations {
 		j.cautions = append(j.cautions, a.reservations[i].say(j.units, a.states))
 	}
@@ -156,7 +164,7 @@ func (j *job) head(o *object, kinds []kind) error {
 func (j *job) tail(o *object) error {
 	o.name("basis")
 	var err error
-	if o.b, err = j.basis.encode(o.b); err != nil {
+	if o.b, err = j.appendBasis(o.b); err != nil {
 		return err
 	}
 	o.list("cautions", len(j.cautions), func(i int, c *object) {
@@ -164,6 +172,22 @@ func (j *job) tail(o *object) error {
 		c.text("detail", j.cautions[i].Detail)
 	})
 	return nil
+}
+
+// appendBasis appends the basis to b. That of a pure refrigerant with all members is encoded once.
+func (j *job) appendBasis(b []byte) ([]byte, error) {
+	if !j.usual {
+		return j.basis.encode(b)
+	}
+	if kept, ok := j.bases.Load(j.r); ok {
+		return append(b, kept.([]byte)...), nil
+	}
+	start := len(b)
+	b, err := j.basis.encode(b)
+	if err == nil {
+		j.bases.Store(j.r, bytes.Clone(b[start:]))
+	}
+	return b, err
 }
 
 // encode appends the basis to b.

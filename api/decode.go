@@ -28,6 +28,7 @@ func decodeJSON(body []byte, v any) error {
 		return malformed("#", "the body is not UTF-8 text")
 	}
 	d := decoder{body: body, valid: json.Valid(body)}
+	d.path = d.room[:0]
 	err := d.value(reflect.ValueOf(v).Elem())
 	switch {
 	case err != nil:
@@ -48,6 +49,7 @@ type decoder struct {
 	path   []step // to the value being read
 	inside int    // levels below path, in a value that is read over
 	faults []MemberError
+	room   [8]step // what path begins with
 }
 
 // step is one part of a JSON pointer: a member's name, or the index of an element of an array.
@@ -184,7 +186,7 @@ func (d *decoder) texts(target reflect.Value) error {
 
 // array reads elements up to the closing bracket.
 func (d *decoder) array(target reflect.Value) error {
-	target.Set(reflect.MakeSlice(target.Type(), 0, 0))
+	target.Set(reflect.MakeSlice(target.Type(), 0, 1))
 	n := 0
 	return d.list(']', func() error {
 		d.path[len(d.path)-1] = step{index: n, array: true}

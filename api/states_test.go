@@ -1,6 +1,7 @@
 package api
 
 import (
+	"bytes"
 	"encoding/json"
 	"fmt"
 	"math"
@@ -412,6 +413,32 @@ func TestCalculationsArePure(t *testing.T) {
 		for range 8 {
 			if again := <-done; again != first {
 				t.Errorf("%s: another answer:\n%s\n%s", path, first, again)
+			}
+		}
+	}
+}
+
+// The basis of an answer does not depend on what was asked before it.
+func TestBasisIsItsOwn(t *testing.T) {
+	shared := newAPI(t, nil)
+	for range 2 {
+		for _, request := range []string{
+			`{"refrigerant": "R290", "points": [{"temperature": 5, "pressure": 400}]}`,
+			`{"refrigerant": "R290", "points": [{"temperature": 5, "pressure": 400}], "properties": ["viscosity"]}`,
+			`{"refrigerant": "R290", "points": [{"temperature": 5, "pressure": 400}], "properties": ["density"]}`,
+			`{"refrigerant": "r-290", "datum": "NBP", "points": [{"temperature": 5, "pressure": 400}]}`,
+			`{"refrigerant": "R290", "extrapolate": true, "points": [{"temperature": 380, "pressure": 400}]}`,
+			`{"refrigerant": "R600a", "points": [{"temperature": 5, "pressure": 100}]}`,
+			`{"refrigerant": "R454B", "points": [{"temperature": 5, "pressure": 400}]}`,
+		} {
+			basis := func(a *API) (v struct{ Basis json.RawMessage }) {
+				if w := do(t, a.Handler(), "POST", "/v1/states", request); json.Unmarshal(w.Body.Bytes(), &v) != nil || v.Basis == nil {
+					t.Errorf("%s: %d %s", request, w.Code, w.Body)
+				}
+				return v
+			}
+			if got, want := basis(shared), basis(newAPI(t, nil)); !bytes.Equal(got.Basis, want.Basis) {
+				t.Errorf("%s: basis %s, alone %s", request, got.Basis, want.Basis)
 			}
 		}
 	}

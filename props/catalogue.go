@@ -22,7 +22,8 @@ type Catalogue struct {
 	library *blend.Library
 	blends  map[string]string // designation by folded name
 	fluids  []*fluid          // in natural order of designation
-	byName  map[string]*fluid
+	byName  map[string]*fluid // by folded name
+	exact   map[string]*fluid // by designation, as most write it
 }
 
 // NewCatalogue reads the embedded coefficient files. The saturation curve of a refrigerant is made when it is first
@@ -32,13 +33,14 @@ func NewCatalogue() (*Catalogue, error) {
 	if err != nil {
 		return nil, err
 	}
-	c := &Catalogue{byName: map[string]*fluid{}}
+	c := &Catalogue{byName: map[string]*fluid{}, exact: map[string]*fluid{}}
 	for _, r := range records {
 		f, err := newFluid(r)
 		if err != nil {
 			return nil, err
 		}
 		c.fluids = append(c.fluids, f)
+		c.exact[r.ID] = f
 		for _, name := range append([]string{r.ID, r.Name}, r.Aliases...) {
 			key := foldName(name)
 			if other, taken := c.byName[key]; taken && other != f {
@@ -87,6 +89,9 @@ func (c *Catalogue) PureDesignations() []string {
 // forgiving: case, spaces, hyphens and brackets do not matter, trade prefixes such as HFC and common names are known.
 // It returns an [*UnknownRefrigerantError] or a [*DatumError].
 func (c *Catalogue) Refrigerant(name string, datum Datum) (Refrigerant, error) {
+	if _, pure := c.exact[name]; pure {
+		return view(c.Pure(name, datum))
+	}
 	if designation, ok := c.blends[foldName(name)]; ok {
 		b, err := c.library.Blend(designation, datum)
 		if err != nil {
@@ -94,7 +99,11 @@ func (c *Catalogue) Refrigerant(name string, datum Datum) (Refrigerant, error) {
 		}
 		return c.newBlend(b)
 	}
-	r, err := c.Pure(name, datum)
+	return view(c.Pure(name, datum))
+}
+
+// view keeps a nil pointer from becoming a Refrigerant that is not nil.
+func view(r *Pure, err error) (Refrigerant, error) {
 	if err != nil {
 		return nil, err
 	}
@@ -103,7 +112,10 @@ func (c *Catalogue) Refrigerant(name string, datum Datum) (Refrigerant, error) {
 
 // Pure is [Catalogue.Refrigerant] for a refrigerant that is not a blend.
 func (c *Catalogue) Pure(name string, datum Datum) (*Pure, error) {
-	f, ok := c.byName[foldName(name)]
+	f, ok := c.exact[name]
+	if !ok {
+		f, ok = c.byName[foldName(name)]
+	}
 	if !ok {
 		return nil, &UnknownRefrigerantError{Name: name, Suggestions: c.near(name, true)}
 	}
