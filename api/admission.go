@@ -46,8 +46,9 @@ func newAdmission(o *Options) admission {
 	}
 }
 
-// defaultSlots is more than there are processors, so that one question that takes long does not hold up the next ones.
-func defaultSlots() int { return 4 * runtime.GOMAXPROCS(0) }
+// defaultSlots is more than there are processors, so that one question that takes long does not hold up the next ones, but
+// not by much: all that compute at once wait for each other.
+func defaultSlots() int { return 2 * runtime.GOMAXPROCS(0) }
 
 // longSlots leaves a quarter of the processors, one at least where there are several, to short questions.
 func longSlots() int { return max(1, runtime.GOMAXPROCS(0)*3/4) }

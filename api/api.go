@@ -37,7 +37,7 @@ type Options struct {
 	MaxBody       int64 // bytes of a JSON request; default DefaultMaxBody
 	MaxPoints     int   // items of a batch; default DefaultMaxPoints
 	MaxMixtures   int   // mixtures by fractions kept for later requests; default DefaultMaxMixtures
-	MaxConcurrent int   // short questions computed at once; default four a processor
+	MaxConcurrent int   // short questions computed at once; default two a processor
 
 	MaxQueue   int           // requests that wait for a slot of each kind before others are turned away; default DefaultMaxQueue
 	MaxBatches int           // long batches in memory; default eight for each processor that computes them
