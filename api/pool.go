@@ -1,0 +1,119 @@
+package api
+
+import (
+	"context"
+	"math"
+	"runtime"
+	"sync"
+	"sync/atomic"
+	"time"
+)
+
+// A burst may fill the queue, since it passes. But where requests keep coming faster than they are answered the queue never
+// empties, and each would wait for as long as the queue is. Then the queue is cut to what passes within a short time, which
+// keeps as many processors busy and answers soon, until none has to be turned away any more (after Nichols and Jacobson,
+// Controlling Queue Delay, ACM Queue 10(5), 2012).
+const (
+	burst  = 100 * time.Millisecond // a queue that has not been empty for so long is no burst
+	target = 8 * time.Millisecond   // what those who wait then should wait
+)
+
+// pool holds slots. Those who wait get them in the order they came.
+type pool struct {
+	slots      chan struct{}
+	processors int
+	waiting    atomic.Int64
+
+	mu       sync.Mutex
+	cut      bool          // the queue
+	empty    time.Time     // when nobody waited last
+	turned   time.Time     // when somebody was turned away last, or the queue was cut
+	granted  time.Time     // when somebody who waited began last
+	interval time.Duration // between two such moments, of late
+}
+
+func newPool(size int) *pool {
+	return &pool{slots: make(chan struct{}, size), processors: runtime.GOMAXPROCS(0)}
+}
+
+// room returns how many may wait, most at the most.
+func (p *pool) room(now time.Time, most int) int {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if p.waiting.Load() == 0 {
+		p.empty = now
+	}
+	switch {
+	case p.cut && now.Sub(p.turned) > burst:
+		p.cut, p.empty = false, now
+	case !p.cut && now.Sub(p.empty) > burst:
+		p.cut, p.turned = true, now
+	}
+	return min(most, p.briefly())
+}
+
+// briefly returns how many may wait for as long as the queue is not cut, or else about as many as begin within the target.
+func (p *pool) briefly() int {
+	if !p.cut || p.interval <= 0 {
+		return math.MaxInt
+	}
+	return max(cap(p.slots), int(target/p.interval))
+}
+
+// grant notes that somebody who has waited since then may begin, unless that was for long and too many others wait.
+func (p *pool) grant(then, now time.Time) (late bool) {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	if now.Sub(then) > target && int(p.waiting.Load()) > p.briefly() {
+		p.turned = now
+		return true
+	}
+	if since := now.Sub(p.granted); since < burst {
+		p.interval += (since - p.interval) / 8
+	}
+	p.granted = now
+	return false
+}
+
+// turnedAway notes that there was no room for somebody.
+func (p *pool) turnedAway(now time.Time) {
+	p.mu.Lock()
+	defer p.mu.Unlock()
+	p.turned = now
+}
+
+// try takes a slot that is free.
+func (p *pool) try() bool {
+	if p.waiting.Load() > 0 {
+		return false
+	}
+	select {
+	case p.slots <- struct{}{}:
+		return true
+	default:
+		return false
+	}
+}
+
+// wait takes a slot as soon as there is one. It returns the cause when ctx ends first.
+func (p *pool) wait(ctx context.Context) error {
+	p.waiting.Add(1)
+	defer p.waiting.Add(-1)
+	select {
+	case p.slots <- struct{}{}:
+		return nil
+	case <-ctx.Done():
+		return context.Cause(ctx)
+	}
+}
+
+func (p *pool) release() { <-p.slots }
+
+// yield lets others go before a calculation that has just got its slot and would take the last processor: those who came at
+// the same time shall see that the slot is taken. Otherwise each would find it free again after the one before, and none
+// would be turned away. That takes so little that calculations hardly feel it.
+func (p *pool) yield() {
+	if len(p.slots) >= p.processors {
+		runtime.Gosched()
+	}
+}
