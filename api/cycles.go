@@ -28,7 +28,7 @@ func (a *API) cycles(c *gin.Context) (any, error) {
 		return nil, err
 	}
 	var all account
-	solution, err := cycle.Solve(question)
+	solution, err := cycle.Solve(contextOf(c), question)
 	if err != nil {
 		p := voice{units: j.units, at: "#", r: j.r}.problem(err)
 		all.count(p, false)

@@ -55,7 +55,7 @@ func TestCautions(t *testing.T) {
 	} {
 		r := heatPump(t)
 		k.change(r)
-		s, err := cycle.Solve(r)
+		s, err := cycle.Solve(t.Context(), r)
 		if err != nil {
 			t.Errorf("%s: %v", k.name, err)
 			continue

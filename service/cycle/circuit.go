@@ -1,6 +1,7 @@
 package cycle
 
 import (
+	"context"
 	"math"
 
 	"dewmark/props"
@@ -69,6 +70,8 @@ const (
 // after it means nothing.
 type circuit struct {
 	plan
+
+	ctx context.Context
 
 	fluid        model // of the circuit that is being put together
 	refrigerants [sideCount]Refrigerant

@@ -170,7 +170,7 @@ func TestSingleStageAccountsClose(t *testing.T) {
 		fluid := refrigerant(t, name, props.DefaultDatum)
 		for range trials {
 			r := randomSingleStage(rng, fluid)
-			s, err := cycle.Solve(r)
+			s, err := cycle.Solve(t.Context(), r)
 			if e, ok := errors.AsType[*cycle.RefusedError](err); ok {
 				refused++
 				for _, f := range e.Refusals {

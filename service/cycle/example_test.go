@@ -1,6 +1,7 @@
 package cycle_test
 
 import (
+	"context"
 	"fmt"
 
 	"dewmark/props"
@@ -19,7 +20,7 @@ func ExampleSolve() {
 		fmt.Println(err)
 		return
 	}
-	s, err := cycle.Solve(&cycle.Request{
+	s, err := cycle.Solve(context.Background(), &cycle.Request{
 		Refrigerant:  propane,
 		Layout:       cycle.SingleStage,
 		Purpose:      cycle.Heating,

@@ -106,7 +106,7 @@ func heatPump(t testing.TB) *cycle.Request {
 
 func solve(t testing.TB, r *cycle.Request) *cycle.Solution {
 	t.Helper()
-	s, err := cycle.Solve(r)
+	s, err := cycle.Solve(t.Context(), r)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -58,7 +58,7 @@ func FuzzSolve(f *testing.F) {
 		if r.Layout == cycle.Ejector {
 			r.Ejector = &cycle.EjectorGeometry{MotiveEfficiency: &share, SuctionPressureDrop: &drop}
 		}
-		s, err := cycle.Solve(r)
+		s, err := cycle.Solve(t.Context(), r)
 		if e, ok := errors.AsType[*cycle.RefusedError](err); ok {
 			for _, x := range e.Refusals {
 				if x.Message.String() == "" || x.Code == "" {

@@ -160,7 +160,7 @@ func TestLayoutRefusals(t *testing.T) {
 		checkRefusal(t, k.refusal, r)
 	}
 	for name, request := range base { // what the rows above change for the worse is right as it is
-		if _, err := cycle.Solve(request(t)); err != nil {
+		if _, err := cycle.Solve(t.Context(), request(t)); err != nil {
 			t.Errorf("%s: %v", name, err)
 		}
 	}
@@ -201,7 +201,7 @@ func TestLayoutCautions(t *testing.T) {
 			return r
 		}, cycle.OptimumAtLimit, "gas_cooler.optimise"},
 	} {
-		s, err := cycle.Solve(k.request(t))
+		s, err := cycle.Solve(t.Context(), k.request(t))
 		if err != nil {
 			t.Errorf("%s: %v", k.name, err)
 			continue

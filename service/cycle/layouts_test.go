@@ -181,7 +181,7 @@ func TestLayoutAccountsClose(t *testing.T) {
 			reasons := map[string]int{}
 			for range trials {
 				r := layout.make(t, rng)
-				s, err := cycle.Solve(r)
+				s, err := cycle.Solve(t.Context(), r)
 				if e, ok := errors.AsType[*cycle.RefusedError](err); ok {
 					f := e.Refusals[0]
 					reasons[fmt.Sprintf("%s %s %s", f.Code, f.Field, f.Component)]++

@@ -45,7 +45,7 @@ const (
 func (c *circuit) meanEvaporation() {
 	e := &c.evaporation
 	miss := func(p float64) float64 {
-		if c.refused != nil {
+		if !c.goesOn() {
 			return nan
 		}
 		c.meanTrial = p

@@ -38,7 +38,9 @@ func (c *circuit) search(field string, low, high, step float64, at func(p float6
 	try := func(p float64) float64 {
 		count++
 		c.optima, c.refused = c.optima[:found], nil
-		at(p)
+		if c.goesOn() {
+			at(p)
+		}
 		if c.refused != nil {
 			refused = c.refused
 			return math.Inf(-1)

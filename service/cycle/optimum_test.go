@@ -95,7 +95,7 @@ func TestOptimumBeatsAScan(t *testing.T) {
 			for i := range scanPoints {
 				p := low * math.Pow(high/low, (float64(i)+0.5)/scanPoints)
 				k.set(r, p)
-				if trial, err := cycle.Solve(r); err == nil && trial.Performance.COPHeating > best {
+				if trial, err := cycle.Solve(t.Context(), r); err == nil && trial.Performance.COPHeating > best {
 					best, at = trial.Performance.COPHeating, p
 				}
 			}
@@ -131,7 +131,7 @@ func TestBothPressuresSearched(t *testing.T) {
 		for middle := 30e5; middle < 70e5; middle += 1e5 {
 			setHigh(r, high)
 			setIntermediate(r, middle)
-			if trial, err := cycle.Solve(r); err == nil {
+			if trial, err := cycle.Solve(t.Context(), r); err == nil {
 				best = max(best, trial.Performance.COPHeating)
 			}
 		}
@@ -214,7 +214,7 @@ func BenchmarkLayouts(b *testing.B) {
 			o := solve(b, r).Optima[0]
 			b.Run("optimised", func(b *testing.B) {
 				for b.Loop() {
-					if _, err := cycle.Solve(r); err != nil {
+					if _, err := cycle.Solve(b.Context(), r); err != nil {
 						b.Fatal(err)
 					}
 				}
@@ -222,7 +222,7 @@ func BenchmarkLayouts(b *testing.B) {
 			k.set(r, o.Pressure)
 			b.Run("given", func(b *testing.B) {
 				for b.Loop() {
-					if _, err := cycle.Solve(r); err != nil {
+					if _, err := cycle.Solve(b.Context(), r); err != nil {
 						b.Fatal(err)
 					}
 				}

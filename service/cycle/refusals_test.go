@@ -114,7 +114,7 @@ func TestRefusals(t *testing.T) {
 
 func checkRefusal(t *testing.T, k refusal, r *cycle.Request) {
 	t.Helper()
-	s, err := cycle.Solve(r)
+	s, err := cycle.Solve(t.Context(), r)
 	e, ok := errors.AsType[*cycle.RefusedError](err)
 	if !ok || s != nil {
 		t.Errorf("%s: got %v and %v, want a refusal", k.name, s, err)
@@ -136,7 +136,7 @@ func TestAllFieldsAreNamed(t *testing.T) {
 	r.Evaporation.Superheat = new(-1.0)
 	r.Compressor.IsentropicEfficiency = new(2.0)
 	r.Size.Heating = new(-5.0)
-	_, err := cycle.Solve(r)
+	_, err := cycle.Solve(t.Context(), r)
 	e, ok := errors.AsType[*cycle.RefusedError](err)
 	if !ok || len(e.Refusals) != 3 {
 		t.Fatalf("got %v, want three refusals", err)
@@ -147,7 +147,7 @@ func TestAllFieldsAreNamed(t *testing.T) {
 func TestRefusalCarriesTheCause(t *testing.T) {
 	r := heatPump(t)
 	r.Evaporation.Temperature = new(80.0)
-	_, err := cycle.Solve(r)
+	_, err := cycle.Solve(t.Context(), r)
 	e, ok := errors.AsType[*props.RangeError](err)
 	if !ok || e.Property != props.Temperature || e.Value != 80 {
 		t.Errorf("got %v, want the range of the temperature", err)
@@ -157,7 +157,7 @@ func TestRefusalCarriesTheCause(t *testing.T) {
 func TestMessageSpeaksTheCallersUnits(t *testing.T) {
 	r := heatPump(t)
 	r.Condensation.Temperature = new(370.0)
-	_, err := cycle.Solve(r)
+	_, err := cycle.Solve(t.Context(), r)
 	e, ok := errors.AsType[*cycle.RefusedError](err)
 	if !ok {
 		t.Fatal(err)

@@ -193,7 +193,7 @@ func BenchmarkSingleStage(b *testing.B) {
 			r.Evaporation.Reference, r.Condensation.Reference = k.reference, k.reference
 			b.ReportAllocs()
 			for b.Loop() {
-				if _, err := cycle.Solve(r); err != nil {
+				if _, err := cycle.Solve(b.Context(), r); err != nil {
 					b.Fatal(err)
 				}
 			}

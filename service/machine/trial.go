@@ -113,7 +113,7 @@ func (t *trial) at(x unknowns) (settled, error) {
 	if err := t.compress(&s); err != nil {
 		return s, err
 	}
-	if s.solution, err = cycle.Solve(&t.request); err != nil {
+	if s.solution, err = t.solve(); err != nil {
 		return s, err
 	}
 	if err := t.exchange(&s); err != nil {
@@ -121,6 +121,15 @@ func (t *trial) at(x unknowns) (settled, error) {
 	}
 	s.mismatch = unknowns{s.evaporator.mismatch(s.levels[low]), s.condenser.mismatch(s.levels[high])}
 	return s, nil
+}
+
+// solve computes the cycle of the request.
+func (t *trial) solve() (*cycle.Solution, error) {
+	s, err := cycle.Solve(t.ctx, &t.request)
+	if err != nil && t.ctx.Err() != nil {
+		err = &stopped{context.Cause(t.ctx)}
+	}
+	return s, err
 }
 
 // place finds evaporation and condensation.
@@ -251,7 +260,7 @@ func (t *trial) probe(f *flanges) (ratios [2]float64, err error) {
 	t.isentropic, t.volumetric, t.isentropic2, t.volumetric2 = 0.7, 1, 0.7, 1
 	t.flow = 1
 	t.request.Size = &t.flowSize
-	s, err := cycle.Solve(&t.request)
+	s, err := t.solve()
 	if err != nil {
 		return ratios, err
 	}

@@ -14,7 +14,7 @@ import (
 func workedCondenser(t *testing.T) (in, out *cycle.StateAt, s *side) {
 	t.Helper()
 	r := refrigerant(t, "R134a")
-	solution, err := cycle.Solve(&cycle.Request{
+	solution, err := cycle.Solve(t.Context(), &cycle.Request{
 		Refrigerant: r, Layout: cycle.SingleStage, Purpose: cycle.Heating,
 		Evaporation:  cycle.Evaporation{Temperature: new(263.15), Superheat: new(5.0)},
 		Condensation: cycle.Condensation{Temperature: new(318.15), Subcooling: new(5.0)},

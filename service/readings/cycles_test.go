@@ -102,7 +102,7 @@ func TestSolvedCyclesComeBack(t *testing.T) {
 	for done < cycles && refused < 10*cycles {
 		name := names[rng.IntN(len(names))]
 		request := randomCycle(rng, refrigerant(t, name))
-		s, err := cycle.Solve(request)
+		s, err := cycle.Solve(t.Context(), request)
 		if err != nil || wet(s) {
 			refused++
 			continue

@@ -21,7 +21,7 @@ func found(r *readings.Result, code readings.FindingCode) *readings.Finding {
 // consistentHeatPump is a sample of a solved cycle, so that every route agrees.
 func consistentHeatPump(t testing.TB, name string) *readings.Sample {
 	t.Helper()
-	s, err := cycle.Solve(&cycle.Request{
+	s, err := cycle.Solve(t.Context(), &cycle.Request{
 		Refrigerant: refrigerant(t, name), Layout: cycle.SingleStage, Purpose: cycle.Heating,
 		Evaporation:  cycle.Evaporation{Temperature: new(273.15), Superheat: new(8.0)},
 		Condensation: cycle.Condensation{Temperature: new(318.15), Subcooling: new(5.0)},

@@ -13,7 +13,7 @@ import (
 // worked is a solved cycle with both its streams: a sample that has every reading, and what it must say.
 func worked(t testing.TB) (*readings.Sample, *cycle.Solution) {
 	t.Helper()
-	s, err := cycle.Solve(&cycle.Request{
+	s, err := cycle.Solve(t.Context(), &cycle.Request{
 		Refrigerant: refrigerant(t, "R134a"), Layout: cycle.SingleStage, Purpose: cycle.Cooling,
 		Evaporation:  cycle.Evaporation{Temperature: new(276.15), Superheat: new(7.0)},
 		Condensation: cycle.Condensation{Temperature: new(315.15), Subcooling: new(6.0)},

@@ -218,7 +218,7 @@ func TestCoverage(t *testing.T) {
 		request.Evaporation.Superheat = new(5 + 8*rng.Float64())
 		request.Condensation.Subcooling = new(4 + 8*rng.Float64())
 		request.SuctionLine, request.DischargeLine, request.LiquidLine = cycle.SuctionLine{}, cycle.DischargeLine{}, cycle.LiquidLine{}
-		s, err := cycle.Solve(request)
+		s, err := cycle.Solve(t.Context(), request)
 		if err != nil || wet(s) {
 			continue
 		}
