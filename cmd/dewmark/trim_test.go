@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"sync/atomic"
 	"testing"
 	"testing/synctest"
 	"time"
@@ -11,16 +12,16 @@ import (
 // minute at most.
 func TestTrim(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
-		var allocated uint64
-		released := 0
-		trimmer := &trimmer{func() uint64 { return allocated }, func() { released++ }}
+		var allocated, released atomic.Uint64
+		trimmer := &trimmer{allocated.Load, func() { released.Add(1) }}
 		ctx, stop := context.WithCancel(t.Context())
 		defer stop()
 		go trimmer.run(ctx)
+		time.Sleep(time.Second / 2) // so that no allocation meets a look
 		pass := func(d time.Duration, perSecond uint64) {
 			for range d / time.Second {
 				time.Sleep(time.Second)
-				allocated += perSecond
+				allocated.Add(perSecond)
 			}
 			synctest.Wait()
 		}
@@ -28,7 +29,7 @@ func TestTrim(t *testing.T) {
 			what      string
 			time      time.Duration
 			perSecond uint64
-			want      int // times that memory is given back
+			want      uint64 // times that memory is given back
 		}{
 			{"load", 10 * time.Minute, 50 << 20, 0},
 			{"idle after it", 2 * trimEvery, 0, 1},
@@ -37,14 +38,14 @@ func TestTrim(t *testing.T) {
 			{"little load", 10 * time.Minute, 1 << 20, 0},
 			{"idle after that", 2 * trimEvery, 0, 1},
 		} {
-			before := released
-			if pass(tt.time, tt.perSecond); released-before != tt.want {
-				t.Errorf("%s: memory given back %d times, not %d", tt.what, released-before, tt.want)
+			before := released.Load()
+			if pass(tt.time, tt.perSecond); released.Load()-before != tt.want {
+				t.Errorf("%s: memory given back %d times, not %d", tt.what, released.Load()-before, tt.want)
 			}
 		}
-		before := released
-		if pass(10*time.Minute, 250<<10); released == before || released-before > 10 {
-			t.Errorf("a trickle for ten minutes: memory given back %d times", released-before)
+		before := released.Load()
+		if pass(10*time.Minute, 250<<10); released.Load() == before || released.Load()-before > 10 {
+			t.Errorf("a trickle for ten minutes: memory given back %d times", released.Load()-before)
 		}
 	})
 }
