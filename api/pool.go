@@ -15,7 +15,7 @@ import (
 // Controlling Queue Delay, ACM Queue 10(5), 2012).
 const (
 	burst  = 100 * time.Millisecond // a queue that has not been empty for so long is no burst
-	target = 8 * time.Millisecond   // what those who wait then should wait
+	target = 6 * time.Millisecond   // what those who wait then should wait
 )
 
 // pool holds slots. Those who wait get them in the order they came.
