@@ -181,10 +181,7 @@ func (t *ticket) start() error {
 		t.pool.turnedAway(from)
 		return a.turnAway(refusedQueueFull, busy("too many calculations are under way"))
 	}
-	ctx, cancel := context.WithTimeoutCause(t.ctx, queueWait, errQueueWait)
-	defer cancel()
-	err := t.pool.wait(ctx)
-	t.pool.yield()
+	err := t.pool.wait(t.ctx, queueWait)
 	now := a.now()
 	a.metrics.queued.Observe(now.Sub(from).Seconds())
 	t.held = err == nil
@@ -214,7 +211,7 @@ func (t *ticket) resume() error {
 	if t == nil || t.held {
 		return nil
 	}
-	err := t.pool.wait(t.ctx)
+	err := t.pool.wait(t.ctx, 0)
 	t.held = err == nil
 	return err
 }
@@ -294,7 +291,7 @@ func (t *ticket) share() (admit func(context.Context) (release func(), err error
 	t.pause()
 	p := t.pool
 	return func(ctx context.Context) (func(), error) {
-		if err := p.wait(ctx); err != nil {
+		if err := p.wait(ctx, 0); err != nil {
 			return nil, err
 		}
 		return p.release, nil

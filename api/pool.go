@@ -95,13 +95,28 @@ func (p *pool) try() bool {
 	}
 }
 
-// wait takes a slot as soon as there is one. It returns the cause when ctx ends first.
-func (p *pool) wait(ctx context.Context) error {
+// wait takes a slot as soon as there is one. It returns the cause when ctx ends first, and errQueueWait when patience, unless
+// it is zero, does.
+func (p *pool) wait(ctx context.Context, patience time.Duration) error {
 	p.waiting.Add(1)
 	defer p.waiting.Add(-1)
+	runtime.Gosched() // most that compute are done then, and nothing need be made to wait with
 	select {
 	case p.slots <- struct{}{}:
+		p.yield()
 		return nil
+	default:
+	}
+	var over <-chan time.Time
+	if patience > 0 {
+		over = time.After(patience)
+	}
+	select {
+	case p.slots <- struct{}{}:
+		p.yield()
+		return nil
+	case <-over:
+		return errQueueWait
 	case <-ctx.Done():
 		return context.Cause(ctx)
 	}
