@@ -43,10 +43,6 @@ func (s *settings) overloadWith(ctx context.Context, r *report, q *question) err
 	if err := p.quiet(ctx); err != nil {
 		return err
 	}
-	before, err := p.resources(ctx)
-	if err != nil {
-		return err
-	}
 	short := *s
 	short.time = 5 * time.Second
 	full, err := short.measure(ctx, p, q, connections)
@@ -58,6 +54,11 @@ func (s *settings) overloadWith(ctx context.Context, r *report, q *question) err
 		return err
 	}
 	capacity := float64(full.Requests-full.Errors) / full.Seconds // of the long ones a few are turned away
+	// Idle is as it is after ordinary work: code and buffers that any request needs are no remains of a flood.
+	before, err := s.recovered(ctx, p)
+	if err != nil {
+		return err
+	}
 	r.row("**"+q.name+"**: capacity", fmt.Sprintf("%.0f requests a second", capacity), "", "")
 	r.row("p50 without load", fmt.Sprintf("%.2f ms", 1e3*alone.P50), "", "")
 
@@ -81,13 +82,7 @@ func (s *settings) overloadWith(ctx context.Context, r *report, q *question) err
 	r.row("p50 of the accepted", fmt.Sprintf("%.1f ms; p95 %.1f ms", 1e3*p50, 1e3*quantile(f.accepted, 0.95).Seconds()), "", "")
 	r.row("p99 of the accepted", fmt.Sprintf("%.1f ms, %.1f times the p50 without load", 1e3*p99, p99/alone.P50), "20 times", goal(p99/alone.P50, 20))
 
-	s.note("waiting %v for the memory", recovery)
-	select {
-	case <-time.After(recovery):
-	case <-ctx.Done():
-		return ctx.Err()
-	}
-	after, err := p.resources(ctx)
+	after, err := s.recovered(ctx, p)
 	if err != nil {
 		return err
 	}
@@ -98,6 +93,17 @@ func (s *settings) overloadWith(ctx context.Context, r *report, q *question) err
 		r.fail("%.0f goroutines are left over", after.goroutines-before.goroutines)
 	}
 	return nil
+}
+
+// recovered waits and returns what a service holds then.
+func (s *settings) recovered(ctx context.Context, p *service) (resources, error) {
+	s.note("waiting %v for the memory", recovery)
+	select {
+	case <-time.After(recovery):
+		return p.resources(ctx)
+	case <-ctx.Done():
+		return resources{}, ctx.Err()
+	}
 }
 
 // judge lists the answers by status and reports whether all are what overload may bring.
