@@ -26,23 +26,42 @@ func BenchmarkExp(b *testing.B) {
 
 var sink float64
 
-// BenchmarkResidual sets the isotherm and evaluates the residual part with all its derivatives.
+// BenchmarkResidual sets the isotherm of an equation that has no ideal part and evaluates the residual part with all its
+// derivatives.
 func BenchmarkResidual(b *testing.B) {
 	for _, s := range benchmarked {
-		eq := equation(b, s.id).eq
-		b.Run(s.id, func(b *testing.B) {
-			b.ReportAllocs()
-			T, sum := s.T, 0.0
-			for b.Loop() {
-				var iso helmholtz.Isotherm
-				iso.Set(eq, T)
-				r := iso.Residual(s.rho)
-				sum += r.A + r.TT
-				T += 1e-9
-			}
-			sink = sum
+		of := equation(b, s.id)
+		eq, err := helmholtz.New(helmholtz.Coefficients{
+			GasConstant: of.GasConstant, ReducingTemperature: of.Reducing.Temperature, ReducingDensity: of.Reducing.Density, Residual: of.Residual,
 		})
+		if err != nil {
+			b.Fatal(err)
+		}
+		benchmarkWhole(b, eq, s.id, s.T, s.rho)
 	}
+}
+
+// BenchmarkBothParts is BenchmarkResidual with the ideal part.
+func BenchmarkBothParts(b *testing.B) {
+	for _, s := range benchmarked {
+		benchmarkWhole(b, equation(b, s.id).eq, s.id, s.T, s.rho)
+	}
+}
+
+func benchmarkWhole(b *testing.B, eq *helmholtz.Equation, id string, T, rho float64) {
+	b.Helper()
+	b.Run(id, func(b *testing.B) {
+		b.ReportAllocs()
+		sum := 0.0
+		for b.Loop() {
+			var iso helmholtz.Isotherm
+			iso.Set(eq, T)
+			r := iso.Residual(rho)
+			sum += r.A + r.TT + iso.Ideal.A
+			T += 1e-9
+		}
+		sink = sum
+	})
 }
 
 // BenchmarkResidualOnIsotherm evaluates at one density after another on an isotherm that is set.

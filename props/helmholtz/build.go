@@ -110,8 +110,14 @@ func (b *builder) finish() error {
 	expand := func(n, t float64, shape int) plainTerm {
 		return plainTerm{power: at(t), shape: shape, n: n, nt: n * t, ntt: n * t * (t - 1)}
 	}
+	e.first = make([]plainTerm, len(e.shapes))
 	for _, t := range b.plain {
-		e.plain = append(e.plain, expand(t.n, t.nt, rank[t.shape]))
+		k := expand(t.n, t.nt, rank[t.shape])
+		if f := &e.first[k.shape]; *f == (plainTerm{}) {
+			*f = k
+		} else {
+			e.plain = append(e.plain, k)
+		}
 	}
 	for _, t := range b.special {
 		t.shape, t.power = rank[t.shape], at(t.t)

@@ -78,7 +78,8 @@ type Equation struct {
 
 	ideal    ideal
 	powers   powerTable
-	plain    []plainTerm
+	first    []plainTerm // one for each shape, with a coefficient of zero where it has none
+	plain    []plainTerm // the others
 	special  []specialTerm
 	shapes   []shape   // distinct factors in delta, grouped by exponential
 	groups   []group   // consecutive shapes that share exp(-g delta^l)

@@ -43,7 +43,12 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 		pw[k.at&mask] = pw[k.a&mask] * pw[k.b&mask]
 	}
 
-	clear(s.weights[:len(e.shapes)])
+	weights := s.weights[:len(e.first)]
+	for i := range e.first {
+		k := &e.first[i]
+		z := pw[k.power&mask]
+		weights[i] = weight{k.n * z, k.nt * z, k.ntt * z}
+	}
 	for i := range e.plain {
 		k := &e.plain[i]
 		w, z := &s.weights[k.shape], pw[k.power&mask]
