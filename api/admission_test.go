@@ -121,7 +121,7 @@ func TestQueue(t *testing.T) {
 	})
 }
 
-// A burst may wait for as long as it takes within a second. When more keeps coming than can be answered, nobody waits for
+// A burst may wait for as long as it takes within a second, and so may patient clients. When more keeps coming than can be answered, nobody waits for
 // much longer than the target, and the processor is kept busy all the same.
 func TestQueueUnderLastingOverload(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
@@ -146,6 +146,18 @@ func TestQueueUnderLastingOverload(t *testing.T) {
 			ask(func(status int, took time.Duration) {
 				if status != 200 {
 					t.Errorf("one of a burst of 50 got %d after %v", status, took)
+				}
+			})
+		}
+		all.Wait()
+
+		for range 50 { // clients who ask again when they have their answer
+			all.Go(func() {
+				for begun := time.Now(); time.Since(begun) < time.Second; {
+					if status := serve(a.Handler(), httptest.NewRequest("GET", "/work", nil)).Code; status != 200 {
+						t.Errorf("one of 50 patient clients got %d", status)
+						return
+					}
 				}
 			})
 		}

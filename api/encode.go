@@ -49,6 +49,7 @@ func (o *object) list(name string, n int, write func(i int, item *object)) {
 	o.b = append(o.b, ']')
 }
 
+// flag writes true or false.
 func (o *object) flag(name string, yes bool) {
 	o.name(name)
 	o.b = strconv.AppendBool(o.b, yes)

@@ -9,12 +9,12 @@ import (
 	"time"
 )
 
-// A burst may fill the queue, since it passes. But where requests keep coming faster than they are answered the queue never
-// empties, and each would wait for as long as the queue is. Then the queue is cut to what passes within a short time, which
-// keeps as many processors busy and answers soon, until none has to be turned away any more (after Nichols and Jacobson,
-// Controlling Queue Delay, ACM Queue 10(5), 2012).
+// A burst may fill the queue, since it passes, and so may clients who are patient. But where requests keep coming faster than
+// they are answered, the queue overflows and never empties, and each would wait for as long as the queue is. Then it is cut
+// to what passes within a short time, which keeps as many processors busy and answers soon, until none has to be turned away
+// any more (after Nichols and Jacobson, Controlling Queue Delay, ACM Queue 10(5), 2012).
 const (
-	burst  = 100 * time.Millisecond // a queue that has not been empty for so long is no burst
+	burst  = 100 * time.Millisecond // a queue that overflows and has not been empty for so long is no burst
 	target = 6 * time.Millisecond   // what those who wait then should wait
 )
 
@@ -27,7 +27,7 @@ type pool struct {
 	mu       sync.Mutex
 	cut      bool          // the queue
 	empty    time.Time     // when nobody waited last
-	turned   time.Time     // when somebody was turned away last, or the queue was cut
+	turned   time.Time     // when somebody was turned away last
 	granted  time.Time     // when somebody who waited began last
 	interval time.Duration // between two such moments, of late
 }
@@ -43,11 +43,11 @@ func (p *pool) room(now time.Time, most int) int {
 	if p.waiting.Load() == 0 {
 		p.empty = now
 	}
-	switch {
-	case p.cut && now.Sub(p.turned) > burst:
+	switch overflows := now.Sub(p.turned) <= burst; {
+	case p.cut && !overflows:
 		p.cut, p.empty = false, now
-	case !p.cut && now.Sub(p.empty) > burst:
-		p.cut, p.turned = true, now
+	case overflows && now.Sub(p.empty) > burst:
+		p.cut = true
 	}
 	return min(most, p.briefly())
 }

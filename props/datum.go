@@ -15,8 +15,7 @@ func (f *fluid) withDatum(d Datum) (*Pure, error) {
 	return v, err
 }
 
-// makeView returns a [*DatumError] where f has no such datum.
-
+// makeView makes what withDatum shares. It returns a [*DatumError] where f has no such datum.
 func (f *fluid) makeView(d Datum) (*Pure, error) {
 	r := f.view()
 	if d == DefaultDatum {

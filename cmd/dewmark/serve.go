@@ -57,7 +57,7 @@ type load struct {
 func (l *load) register(flags *flag.FlagSet) {
 	flags.IntVar(&l.maxConcurrent, "max-concurrent", 0, "short `questions` computed at once; 0 for two a processor")
 	flags.IntVar(&l.maxQueue, "max-queue", api.DefaultMaxQueue, "`requests` that wait to be computed before others get a 503")
-	flags.IntVar(&l.maxBatches, "max-batches", 0, "long `batches` under way before others get a 503; 0 for six a processor")
+	flags.IntVar(&l.maxBatches, "max-batches", 0, "long `batches` under way before others get a 503; 0 for twelve a processor")
 	flags.IntVar(&l.maxStreams, "max-streams", api.DefaultMaxStreams, "`streams` open before others get a 503")
 	flags.IntVar(&l.maxMixtures, "max-mixtures", api.DefaultMaxMixtures, "`mixtures` by fractions kept for later requests, of some 0.15 MB each")
 	flags.DurationVar(&l.deadline, "deadline", api.DefaultDeadline, "`time` for one calculation, after which it ends with a 503")
