@@ -51,7 +51,7 @@ func defaultSlots() int { return 2 * runtime.GOMAXPROCS(0) }
 func longSlots() int { return max(1, runtime.GOMAXPROCS(0)*3/4) }
 
 const (
-	batchesPerSlot = 12 // so that the last one does not wait for long, and little memory is taken
+	batchesPerSlot = 10 // so that the last one does not wait for long, and little memory is taken
 
 	longItems = 64          // a batch of more states, or of what costs as much, is long work
 	longBody  = 64 << 10    // bytes; so is a larger body, whatever it holds

@@ -40,7 +40,7 @@ type Options struct {
 	MaxConcurrent int   // short questions computed at once; default two a processor
 
 	MaxQueue   int           // requests that wait for a slot of each kind before others are turned away; default DefaultMaxQueue
-	MaxBatches int           // long batches in memory; default twelve for each processor that computes them
+	MaxBatches int           // long batches in memory; default ten for each processor that computes them
 	MaxStreams int           // streams open; default DefaultMaxStreams
 	Deadline   time.Duration // for one calculation, not for a stream; default DefaultDeadline
 

@@ -57,7 +57,7 @@ type load struct {
 func (l *load) register(flags *flag.FlagSet) {
 	flags.IntVar(&l.maxConcurrent, "max-concurrent", 0, "short `questions` computed at once; 0 for two a processor")
 	flags.IntVar(&l.maxQueue, "max-queue", api.DefaultMaxQueue, "`requests` that wait to be computed before others get a 503")
-	flags.IntVar(&l.maxBatches, "max-batches", 0, "long `batches` under way before others get a 503; 0 for twelve a processor")
+	flags.IntVar(&l.maxBatches, "max-batches", 0, "long `batches` under way before others get a 503; 0 for ten a processor")
 	flags.IntVar(&l.maxStreams, "max-streams", api.DefaultMaxStreams, "`streams` open before others get a 503")
 	flags.IntVar(&l.maxMixtures, "max-mixtures", api.DefaultMaxMixtures, "`mixtures` by fractions kept for later requests, of some 0.15 MB each")
 	flags.DurationVar(&l.deadline, "deadline", api.DefaultDeadline, "`time` for one calculation, after which it ends with a 503")
@@ -125,9 +125,9 @@ func (s *settings) check() error {
 func (s *settings) serve(ctx context.Context, log *slog.Logger) (err error) {
 	if os.Getenv("GOGC") == "" {
 		// A request leaves a few kilobytes of garbage on a heap of a few megabytes, so that at Go's default of 100 the
-		// collector would run every few hundred requests. At 400 it takes some 20 MB more and a fifth less time. A limit in
-		// GOMEMLIMIT holds all the same.
-		debug.SetGCPercent(400)
+		// collector would run every few hundred requests. At 300 it takes some 15 MB more, and a request a few per cent less
+		// processor time; beyond, a flood leaves more memory behind. A limit in GOMEMLIMIT holds all the same.
+		debug.SetGCPercent(300)
 	}
 	ctx, stop := context.WithCancel(ctx)
 	defer stop()
