@@ -48,7 +48,7 @@ func serveBare(ctx context.Context, args []string) error {
 	if err := json.Unmarshal(text, &exchanges); err != nil {
 		return err
 	}
-	debug.SetGCPercent(400)
+	debug.SetGCPercent(300)
 	gin.SetMode(gin.ReleaseMode)
 	log := slog.New(slog.NewJSONHandler(os.Stderr, nil))
 	engine := gin.New()
