@@ -282,11 +282,11 @@ func (a *API) read(text []byte, v any) error {
 
 // body reads the body of a request up to the limit. A large one needs a place among the batches.
 func (a *API) body(c *gin.Context) ([]byte, error) {
-	size := c.Request.ContentLength // -1 where the client does not tell
+	size := c.Request.ContentLength // -1 where the client does not tell, and 0 where a caller without a network does not
 	if size > a.maxBody {
 		return nil, a.tooLarge()
 	}
-	if 0 <= size && size <= longBody {
+	if 0 < size && size <= longBody {
 		body := make([]byte, size)
 		if _, err := io.ReadFull(c.Request.Body, body); err != nil {
 			return nil, errCutBody

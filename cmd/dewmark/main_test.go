@@ -20,7 +20,7 @@ import (
 func command(t *testing.T, stdin string, args ...string) (code int, stdout, stderr string) {
 	t.Helper()
 	var out, errs bytes.Buffer
-	code = run(t.Context(), args, strings.NewReader(stdin), &out, &errs)
+	code = run(t.Context(), args, io.MultiReader(strings.NewReader(stdin)), &out, &errs) // of no known length, like a pipe
 	return code, out.String(), errs.String()
 }
 
