@@ -78,7 +78,7 @@ func (s *strip) wet() (ua, surface float64) {
 func (s *strip) surface(hT, slope, T, mean float64) float64 {
 	cp := moistCapacity(s.air.W)
 	target := (1 - s.share) * mean
-	most := s.air.T - T // warmer than the air it is not; beyond, water might boil
+	most := saturatedAt(s.pressure, s.air.h) - T // there the air would give off nothing; beyond, water might boil
 	x := math.Min(target/(cp*s.share+slope*(1-s.share)), most)
 	for range surfaceSteps {
 		h, dh, _ := secondary.Saturation(s.pressure, T+x)
@@ -106,7 +106,7 @@ func (s *strip) wetHeat(ua float64) float64 {
 	passed := func(inner float64) float64 {
 		return -math.Expm1(-ua/s.flow/(cp*s.share+inner*(1-s.share))) * s.flow * in
 	}
-	most := s.air.T - T
+	most := saturatedAt(s.pressure, s.air.h) - T
 	x, _ := bracketed(0, most, func(x float64) (float64, error) {
 		inner := slope
 		if x > 0 {
@@ -141,8 +141,8 @@ func (s *strip) leave(ua float64, wet bool, surface float64) outcome {
 	}
 	contact := -math.Expm1(-ua / s.share / s.capacity()) // 1 - bypass factor
 	water := secondary.CondensateEnthalpy(surface)
-	apparatus, _ := bracketed(coldest, in.T, func(T float64) (float64, error) {
-		h, _, W := secondary.Saturation(s.pressure, T)
+	apparatus, _ := bracketed(coldest, hottest, func(T float64) (float64, error) {
+		h, W := bounded(s.pressure, T)
 		return contact*(in.h-h-(in.W-W)*water) - s.heat/s.flow, nil
 	})
 	_, _, WA := secondary.Saturation(s.pressure, apparatus)
@@ -160,16 +160,27 @@ func (s *strip) leave(ua float64, wet bool, surface float64) outcome {
 	return out
 }
 
-// coldest is below what any coil cools air to, K.
-const coldest = 175.0
+// Saturated air that passes a coil is between them, K: coldest is below what any coil cools air to, and at hottest water
+// boils at every pressure that moist air may have.
+const (
+	coldest = 175.0
+	hottest = 455.0
+)
+
+// bounded returns the enthalpy and the humidity ratio of saturated air, or more than air has where water boils, for
+// searches that start beyond.
+func bounded(p, T float64) (h, W float64) {
+	h, _, W = secondary.Saturation(p, T)
+	return math.Min(h, 1e9), math.Min(W, 1e3)
+}
 
 // clear returns the air behind a strip that would leave as fog, after that has rained out. Air that a dry zone before it has
 // cooled below its dew point becomes warmer by that.
 func (s *strip) clear(surface float64) airState {
 	in, water := s.air, secondary.CondensateEnthalpy(surface)
-	T, _ := bracketed(coldest, math.Min(in.T+30, 373), func(T float64) (float64, error) {
-		h, _, W := secondary.Saturation(s.pressure, T)
-		return math.Min(h, 1e9) + (in.W-math.Min(W, 1e3))*water - (in.h - s.heat/s.flow), nil
+	T, _ := bracketed(coldest, hottest, func(T float64) (float64, error) {
+		h, W := bounded(s.pressure, T)
+		return h + (in.W-W)*water - (in.h - s.heat/s.flow), nil
 	})
 	h, _, W := secondary.Saturation(s.pressure, T)
 	return airState{T, W, h}
@@ -183,9 +194,9 @@ func dryBulb(h, W float64) float64 {
 
 // saturatedAt returns the temperature at which saturated air has enthalpy h.
 func saturatedAt(p, h float64) float64 {
-	T, _ := bracketed(coldest, 373, func(T float64) (float64, error) {
-		hT, _, _ := secondary.Saturation(p, T)
-		return math.Min(hT, 1e9) - h, nil
+	T, _ := bracketed(coldest, hottest, func(T float64) (float64, error) {
+		hT, _ := bounded(p, T)
+		return hT - h, nil
 	})
 	return T
 }
