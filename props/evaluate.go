@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"dewmark/props/helmholtz"
+	"dewmark/props/internal/elementary"
 )
 
 // fluidState is the result of one evaluation of the equation at temperature and density, before anything is decided
@@ -14,22 +15,33 @@ type fluidState struct {
 }
 
 // evaluate returns the state of a single phase at density rho in kg/m3 on an isotherm.
-func (r *Pure) evaluate(iso *helmholtz.Isotherm, rho float64) fluidState {
-	res := iso.Residual(rho * r.perM)
-	id := &iso.Ideal
-	RT := r.Rs * iso.T
-	e := id.T + res.T
-	f := fluidState{
-		T: iso.T, rho: rho,
-		p:    rho * RT * (1 + res.D),
-		s:    r.Rs*(e-id.A-res.A-math.Log(rho*r.perRho)) + r.s0,
-		u:    RT*e + r.h0,
-		cv:   -r.Rs * (id.TT + res.TT),
-		pRho: RT * (1 + 2*res.D + res.DD),
-		pT:   rho * r.Rs * (1 + res.D - res.DT),
-	}
-	f.h = f.u + RT*(1+res.D)
+func (r *Pure) evaluate(iso *helmholtz.Isotherm, rho float64) (f fluidState) {
+	a := iso.Residual(rho * r.perM)
+	a.A += iso.Ideal.A
+	a.T += iso.Ideal.T
+	a.TT += iso.Ideal.TT
+	r.derive(iso.T, rho, &a, &f)
 	return f
+}
+
+// evaluateAt sets f to a single phase at T in K and rho in kg/m3.
+func (r *Pure) evaluateAt(T, rho float64, f *fluidState) {
+	var a helmholtz.Alpha
+	r.eq.At(T, rho*r.perM, &a)
+	r.derive(T, rho, &a, f)
+}
+
+// derive sets f from both parts of the Helmholtz energy, a without the ideal part's ln(delta).
+func (r *Pure) derive(T, rho float64, a *helmholtz.Alpha, f *fluidState) {
+	RT := r.Rs * T
+	f.T, f.rho = T, rho
+	f.p = rho * RT * (1 + a.D)
+	f.s = r.Rs*(a.T-a.A-elementary.Log(rho*r.perRho)) + r.s0
+	f.u = RT*a.T + r.h0
+	f.h = f.u + RT*(1+a.D)
+	f.cv = -r.Rs * a.TT
+	f.pRho = RT * (1 + 2*a.D + a.DD)
+	f.pT = rho * r.Rs * (1 + a.D - a.DT)
 }
 
 // value returns the caloric property y of f and its derivatives: in temperature at constant density and in density at
@@ -46,24 +58,26 @@ func (f *fluidState) value(y Property) (v, dT, dRho float64) {
 	}
 }
 
-// state completes a single-phase state. Pressure p is the one that is known exactly, from which the equation's own
+// state returns a single-phase state. Pressure p is the one that is known exactly, from which the equation's own
 // differs by rounding that matters in a cold liquid.
-func (r *Pure) state(f fluidState, p float64) State {
+func (r *Pure) state(f fluidState, p float64) (s State) {
+	r.complete(&f, p, &s)
+	return s
+}
+
+// complete is state in place: s must be empty.
+func (r *Pure) complete(f *fluidState, p float64, s *State) {
 	v := 1 / f.rho
 	q := f.T * f.pT * f.pT * v * v
-	s := State{
-		Phase: r.phase(f.T, p, f.rho),
-		T:     f.T, P: p, Rho: f.rho, S: f.s, U: f.u,
-		H:       f.u + p*v,
-		Quality: math.NaN(),
-		Cv:      f.cv,
-		Cp:      f.cv + q/f.pRho,
-		W:       math.Sqrt(f.pRho + q/f.cv),
-		DPDRho:  f.pRho,
-		DPDT:    f.pT,
-		Z:       p * v / (r.Rs * f.T),
-	}
-	return s
+	s.Phase = r.phase(f.T, p, f.rho)
+	s.T, s.P, s.Rho, s.S, s.U = f.T, p, f.rho, f.s, f.u
+	s.H = f.u + p*v
+	s.Quality = math.NaN()
+	s.Cv = f.cv
+	s.Cp = f.cv + q/f.pRho
+	s.W = math.Sqrt(f.pRho + q/f.cv)
+	s.DPDRho, s.DPDT = f.pRho, f.pT
+	s.Z = p * v / (r.Rs * f.T)
 }
 
 func (r *Pure) phase(T, p, rho float64) Phase {

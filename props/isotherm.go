@@ -8,39 +8,31 @@ import (
 )
 
 // TemperatureDensity returns the state at T in K and rho in kg/m3.
-func (r *Pure) TemperatureDensity(T, rho float64) (State, error) {
+func (r *Pure) TemperatureDensity(T, rho float64) (s State, err error) {
 	if err := r.checkTemperature(T); err != nil {
-		return State{}, err
+		return s, err
 	}
 	if err := r.checkDensity(rho); err != nil {
-		return State{}, err
+		return s, err
 	}
-	if T < r.curve.TCritical && r.inDome(T, rho) {
+	if T < r.curve.TCritical && r.curve.Encloses(T, rho*r.perM) {
 		p, liquid, vapour := r.curve.At(T)
 		d := r.domeOf(T, p, liquid*r.M, vapour*r.M)
 		x := math.Min(1, math.Max(0, d.quality(Density, rho)))
-		s := r.domeState(&d, x)
+		s = r.domeState(&d, x)
 		s.Rho = rho
 		return s, nil
 	}
-	var iso helmholtz.Isotherm
-	iso.Set(r.eq, T)
-	f := r.evaluate(&iso, rho)
+	var f fluidState
+	r.evaluateAt(T, rho, &f)
 	if err := r.checkPressure(f.p); err != nil {
-		return State{}, err
+		return s, err
 	}
 	if err := r.checkFluid(T, f.p, rho); err != nil {
-		return State{}, err
+		return s, err
 	}
-	return r.state(f, f.p), nil
-}
-
-// inDome reports whether a density at a temperature below the critical one lies in the dome, its edge included to rounding.
-func (r *Pure) inDome(T, rho float64) bool {
-	if rho > r.curve.RhoCritical*r.M {
-		return rho <= r.curve.Density(T, true)*r.M*(1+1e-12)
-	}
-	return rho >= r.curve.Density(T, false)*r.M*(1-1e-12)
+	r.complete(&f, f.p, &s)
+	return s, nil
 }
 
 // TemperatureQuality returns the state inside the dome at T in K and quality x from 0 to 1.
@@ -79,9 +71,9 @@ func (r *Pure) onDome(T, p, liquid, vapour, x float64) State {
 	if x == 1 {
 		phase, rho = Vapour, vapour
 	}
-	var iso helmholtz.Isotherm
-	iso.Set(r.eq, T)
-	s := r.state(r.evaluate(&iso, rho), p)
+	var f fluidState
+	r.evaluateAt(T, rho, &f)
+	s := r.state(f, p)
 	s.Phase, s.Quality = phase, x
 	return s
 }

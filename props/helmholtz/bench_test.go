@@ -82,3 +82,20 @@ func BenchmarkResidualOnIsotherm(b *testing.B) {
 		})
 	}
 }
+
+// BenchmarkAt evaluates both parts at one state.
+func BenchmarkAt(b *testing.B) {
+	for _, s := range benchmarked {
+		of := equation(b, s.id)
+		b.Run(s.id, func(b *testing.B) {
+			T, sum := s.T, 0.0
+			for b.Loop() {
+				var a helmholtz.Alpha
+				of.eq.At(T, s.rho, &a)
+				sum += a.A + a.TT
+				T += 1e-9
+			}
+			sink = sum
+		})
+	}
+}

@@ -110,6 +110,17 @@ func (b *builder) finish() error {
 	expand := func(n, t float64, shape int) plainTerm {
 		return plainTerm{power: at(t), shape: shape, n: n, nt: n * t, ntt: n * t * (t - 1)}
 	}
+	for i := range e.groups {
+		g := &e.groups[i]
+		g.first = len(e.terms)
+		for _, k := range b.plain {
+			if s := rank[k.shape]; g.from <= s && s < g.to {
+				t, d := k.nt, e.shapes[s].d
+				e.terms = append(e.terms, term{tau: at(t), delta: e.shapes[s].at, n: k.n, t: t, t1: t - 1, d: d, d1: d - 1})
+			}
+		}
+		g.last = len(e.terms)
+	}
 	e.first = make([]plainTerm, len(e.shapes))
 	for _, t := range b.plain {
 		k := expand(t.n, t.nt, rank[t.shape])
@@ -121,6 +132,8 @@ func (b *builder) finish() error {
 	}
 	for _, t := range b.special {
 		t.shape, t.power = rank[t.shape], at(t.t)
+		t.bell = slices.IndexFunc(e.bells, func(b bell) bool { return b.at == t.shape })
+		t.group = slices.IndexFunc(e.groups, func(g group) bool { return g.from <= t.shape && t.shape < g.to })
 		if t.kind == tauExp {
 			t.mPower = at(t.beta)
 		}
@@ -183,8 +196,8 @@ func (b *builder) powerIndex(d float64) int {
 	return maxPower + 1 + i
 }
 
-// planPowers returns a table that holds tau to every exponent. Multiples of one quarter are made by products from tau, its
-// roots and their reciprocals, each to half a unit in the last place; the others cost one exponential, or are the product
+// planPowers returns a table that holds tau to every exponent. Multiples of one quarter are made by products from tau, 1/tau
+// and their roots, each to half a unit in the last place; the others cost one exponential, or are the product
 // of two that are there. Equations whose terms cancel, such as that of R22, need every digit.
 func planPowers(exponents []float64) powerTable {
 	exponents = slices.Clone(exponents)
@@ -192,8 +205,8 @@ func planPowers(exponents []float64) powerTable {
 		return cmp.Or(cmp.Compare(math.Abs(x), math.Abs(y)), cmp.Compare(y, x))
 	})
 	exponents = slices.Compact(exponents)
-	p := powerTable{t: []float64{0, 1}}
-	at := map[float64]int{0: 0, 1: 1}
+	p := powerTable{t: []float64{0, 1, -1}}
+	at := map[float64]int{0: 0, 1: 1, -1: 2}
 	put := func(t float64) int {
 		at[t] = len(p.t)
 		p.t = append(p.t, t)
@@ -205,16 +218,10 @@ func planPowers(exponents []float64) powerTable {
 			return i
 		}
 		quarters := t*4 == math.Trunc(t*4) && math.Abs(t) <= 64
-		switch t {
-		case 0.5, 0.25:
+		if a := math.Abs(t); a == 0.5 || a == 0.25 {
 			a := need(2 * t)
 			i := put(t)
 			p.roots = append(p.roots, powerStep{i, a, 0})
-			return i
-		case -0.25, -0.5, -1:
-			a := need(-t)
-			i := put(t)
-			p.inverses = append(p.inverses, powerStep{i, a, 0})
 			return i
 		}
 		for _, u := range p.t { // the product of two that are there

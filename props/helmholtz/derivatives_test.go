@@ -14,8 +14,9 @@ import (
 // members returns the members of an Alpha in the order in which precise.Alpha.Each names them.
 func members(a helmholtz.Alpha) [6]float64 { return [6]float64{a.A, a.D, a.T, a.DD, a.DT, a.TT} }
 
-// TestResidualAgainstPrecise compares every member of the residual part with an evaluation in fifty digits. The limit
-// is relative to the sum of the absolute terms: where terms cancel, no summation in double precision can do better.
+// TestResidualAgainstPrecise compares every member of the residual part, on an isotherm and with the ideal part at one
+// state, with an evaluation in fifty digits. The limit is relative to the sum of the absolute terms: where terms cancel, no
+// summation in double precision can do better.
 func TestResidualAgainstPrecise(t *testing.T) {
 	const limit = 1e-11 // reached by DD in a thin gas, where a Gaussian term with d = 1 loses digits that 1 + 2 D + DD never sees
 	states := 200
@@ -34,7 +35,13 @@ func TestResidualAgainstPrecise(t *testing.T) {
 				got := members(iso.Residual(rho))
 				sum, size := s.exact.Residual(precise.Number(T), precise.Number(rho))
 				want, scale := exactMembers(sum), exactMembers(size)
+				var both helmholtz.Alpha
+				s.eq.At(T, rho, &both)
+				whole, ideal := members(both), exactMembers(s.exact.Ideal(precise.Number(T)))
 				for i, name := range names {
+					if off := math.Abs(whole[i] - ideal[i] - want[i]); !(off <= limit*math.Max(scale[i], math.Abs(ideal[i]))) {
+						t.Errorf("%s of both parts at %.17g K, %.17g mol/m3 = %.17g, want %.17g", name, T, rho, whole[i], ideal[i]+want[i])
+					}
 					off := math.Abs(got[i]-want[i]) / scale[i]
 					worst = math.Max(worst, off)
 					if !(off <= limit) {
@@ -245,7 +252,13 @@ func TestAnyExponents(t *testing.T) {
 			sum, size := exact.Residual(precise.Number(T), precise.Number(rho))
 			got, want, scale := members(iso.Residual(rho)), exactMembers(sum), exactMembers(size)
 			ideal, wantIdeal := members(iso.Ideal), exactMembers(exact.Ideal(precise.Number(T)))
+			var both helmholtz.Alpha
+			eq.At(T, rho, &both)
+			whole := members(both)
 			for i, name := range names {
+				if !(math.Abs(whole[i]-want[i]-wantIdeal[i]) <= 1e-12*(1+scale[i]+math.Abs(wantIdeal[i]))) {
+					t.Errorf("%s of both parts at %g K, %g mol/m3 = %.17g, want %.17g of %+v", name, T, rho, whole[i], want[i]+wantIdeal[i], c)
+				}
 				if !(math.Abs(got[i]-want[i]) <= 1e-12*scale[i]) {
 					t.Errorf("residual %s at %g K, %g mol/m3 = %.17g, want %.17g of %+v", name, T, rho, got[i], want[i], c.Residual)
 				}

@@ -78,6 +78,7 @@ type Equation struct {
 
 	ideal    ideal
 	powers   powerTable
+	terms    []term      // those of the groups without a further factor in tau, for a single state
 	first    []plainTerm // one for each shape, with a coefficient of zero where it has none
 	plain    []plainTerm // the others
 	special  []specialTerm
@@ -89,12 +90,11 @@ type Equation struct {
 	fraction []float64 // fractional exponents of delta
 }
 
-// powerTable plans a table of powers of tau: the numbers one and tau, the roots and reciprocals that are needed, the powers
-// that cost an exponential, then products of two earlier entries.
+// powerTable plans a table of powers of tau: the numbers one, tau and 1/tau, the roots that are needed, the powers that cost
+// an exponential, then products of two earlier entries.
 type powerTable struct {
 	t        []float64 // the exponents
 	roots    []powerStep
-	inverses []powerStep
 	exps     []int // entries
 	products []powerStep
 }
@@ -108,8 +108,15 @@ type plainTerm struct {
 	n, nt, ntt   float64 // n, n t, n t (t-1)
 }
 
+// term is one term n tau^t delta^d of a group.
+type term struct {
+	tau, delta      int     // of the powers in their tables
+	n, t, t1, d, d1 float64 // t1 is t-1, d1 is d-1
+}
+
 // specialTerm has a further factor in tau.
 type specialTerm struct {
+	group, bell  int // whose factor in delta it has; the other one is -1
 	power, shape int
 	n, t         float64
 	kind         tauFactor
@@ -138,11 +145,12 @@ type shape struct {
 	d  float64
 }
 
-// group is the run of shapes [from, to) that share exp(-g delta^l); l = 0 has no exponential.
+// group is the run of shapes [from, to) that share exp(-g delta^l); l = 0 has no exponential. Its terms are [first, last).
 type group struct {
-	from, to int
-	l        int
-	g, lf    float64
+	from, to    int
+	first, last int
+	l           int
+	g, lf       float64
 }
 
 // bell is shape number at with the factor exp(-eta (delta-epsilon)^2).

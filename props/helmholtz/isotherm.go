@@ -1,6 +1,10 @@
 package helmholtz
 
-import "math"
+import (
+	"math"
+
+	"dewmark/props/internal/elementary"
+)
 
 // Isotherm holds everything of an equation that depends on temperature alone. Set it once, then evaluate it at many
 // densities. The zero value is not usable before Set. An Isotherm is not safe for concurrent use; it needs no heap.
@@ -25,23 +29,10 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 	if len(e.peaks) > 0 {
 		s.peakTau1 = (e.TRed - T) / T
 	}
-	lnTau := log(tau)
-
+	lnTau := elementary.Log(tau)
 	pw := &s.powers
-	pw[0], pw[1] = 1, tau
+	e.powers.fill(pw, tau, T/e.TRed, lnTau)
 	const mask = maxPowers - 1 // an index within the table needs no bounds check
-	for _, k := range e.powers.roots {
-		pw[k.at&mask] = math.Sqrt(pw[k.a&mask])
-	}
-	for _, k := range e.powers.inverses {
-		pw[k.at&mask] = 1 / pw[k.a&mask]
-	}
-	for _, i := range e.powers.exps {
-		pw[i&mask] = exp(e.powers.t[i] * lnTau)
-	}
-	for _, k := range e.powers.products {
-		pw[k.at&mask] = pw[k.a&mask] * pw[k.b&mask]
-	}
 
 	weights := s.weights[:len(e.first)]
 	for i := range e.first {
@@ -59,52 +50,13 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 	for i := range e.special {
 		k := &e.special[i]
 		w := &s.weights[k.shape]
-		c, a := k.n*pw[k.power&mask], k.t
-		switch k.kind {
-		case tauExp:
-			u := pw[k.mPower&mask]
-			v := k.beta * u
-			c *= exp(-u)
-			a -= v
-			w.ctt += c * (a*(a-1) - k.beta*v)
-		case tauBell:
-			x := tau - k.gamma
-			c *= exp(-k.beta * x * x)
-			a -= 2 * k.beta * tau * x
-			w.ctt += c * (a*(a-1) - 2*k.beta*tau*(tau+x))
-		case tauInvert:
-			x := tau - k.gamma
-			q := 1 / (k.beta*x*x + k.b)
-			c *= exp(q)
-			g := 2 * k.beta * tau * x * q * q // -tau dq/dtau
-			a -= g
-			w.ctt += c * (a*(a-1) - 2*k.beta*tau*(tau+x)*q*q + 2*g*g/q)
-		}
+		q, a, aa := k.factor(pw, tau)
+		c := k.n * pw[k.power&mask] * elementary.Exp(q)
 		w.c += c
 		w.ct += c * a
+		w.ctt += c * aa
 	}
-
-	p := &e.ideal
-	s.Ideal = Alpha{
-		A:  p.Constant + p.Tau*tau + p.LnTau*lnTau + p.TauLnTau*tau*lnTau,
-		T:  p.Tau*tau + p.LnTau + p.TauLnTau*tau*(lnTau+1),
-		TT: -p.LnTau + p.TauLnTau*tau,
-	}
-	for _, k := range p.powers {
-		z := pw[k.power&mask]
-		s.Ideal.A += k.n * z
-		s.Ideal.T += k.nt * z
-		s.Ideal.TT += k.ntt * z
-	}
-	for _, r := range p.PlanckEinstein {
-		x := r[1] * tau
-		y := exp(-x)
-		f := 1 / (1 - y)
-		y *= x * f
-		s.Ideal.A -= r[0] * log(f)
-		s.Ideal.T += r[0] * y
-		s.Ideal.TT -= r[0] * x * y * f
-	}
+	e.ideal.at(pw, tau, lnTau, &s.Ideal)
 }
 
 // Density returns delta * d alpha/d delta and delta^2 * d2 alpha/d delta2 of the residual part at density rho in mol/m3:
@@ -136,7 +88,7 @@ func (s *Isotherm) Density(rho float64) (d, dd float64) {
 		}
 		v := g.g * pow[g.l&(deltaPowers-1)]
 		u := g.lf * v
-		f := exp(-v)
+		f := elementary.Exp(-v)
 		d += f * (a1 - u*a0)
 		dd += f * (a2 - 2*u*a1 + u*(u-g.lf+1)*a0)
 	}
@@ -145,7 +97,7 @@ func (s *Isotherm) Density(rho float64) (d, dd float64) {
 		sh := &e.shapes[b.at]
 		x := delta - b.epsilon
 		a := sh.d - 2*b.eta*delta*x
-		c := s.weights[b.at].c * pow[sh.at&(deltaPowers-1)] * exp(-b.eta*x*x)
+		c := s.weights[b.at].c * pow[sh.at&(deltaPowers-1)] * elementary.Exp(-b.eta*x*x)
 		d += c * a
 		dd += c * (a*(a-1) - 2*b.eta*delta*(delta+x))
 	}
@@ -198,7 +150,7 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 		}
 		v := g.g * pow[g.l&(deltaPowers-1)]
 		u := g.lf * v
-		f := exp(-v)
+		f := elementary.Exp(-v)
 		out.A += f * a0
 		out.D += f * (a1 - u*a0)
 		out.DD += f * (a2 - 2*u*a1 + u*(u-g.lf+1)*a0)
@@ -210,7 +162,7 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 		b := &e.bells[i]
 		w, sh := &s.weights[b.at], e.shapes[b.at]
 		x := delta - b.epsilon
-		f := pow[sh.at&(deltaPowers-1)] * exp(-b.eta*x*x)
+		f := pow[sh.at&(deltaPowers-1)] * elementary.Exp(-b.eta*x*x)
 		a := sh.d - 2*b.eta*delta*x
 		c := f * w.c
 		out.A += c
@@ -221,7 +173,7 @@ func (s *Isotherm) Residual(rho float64) Alpha {
 		out.TT += f * w.ctt
 	}
 	if len(e.peaks) > 0 {
-		s.addPeaks(&out, delta, (rho-e.RhoRed)/e.RhoRed)
+		e.addPeaks(&out, s.Tau, s.peakTau1, delta, (rho-e.RhoRed)/e.RhoRed)
 	}
 	return out
 }

@@ -1,11 +1,14 @@
 package helmholtz
 
-import "math"
+import (
+	"math"
 
-// addPeaks adds the non-analytic terms. y is delta-1, passed separately because the difference of the rounded values
-// would lose the digits that matter at the critical point.
-func (s *Isotherm) addPeaks(out *Alpha, delta, y float64) {
-	tau, x := s.Tau, s.peakTau1
+	"dewmark/props/internal/elementary"
+)
+
+// addPeaks adds the non-analytic terms. x is tau-1 and y is delta-1, passed separately because the differences of the
+// rounded values would lose the digits that matter at the critical point.
+func (e *Equation) addPeaks(out *Alpha, tau, x, delta, y float64) {
 	if x == 0 && y == 0 {
 		y = 1e-12 // the second derivatives do not exist at the very point; this keeps them finite
 	}
@@ -13,10 +16,10 @@ func (s *Isotherm) addPeaks(out *Alpha, delta, y float64) {
 	// Near the critical temperature the saturation densities depend on the last digit.
 	pow, exponential := math.Pow, math.Exp
 	if math.Abs(x) > 0.005 {
-		pow, exponential = quickPower, exp
+		pow, exponential = quickPower, elementary.Exp
 	}
-	for i := range s.eq.peaks {
-		k := &s.eq.peaks[i]
+	for i := range e.peaks {
+		k := &e.peaks[i]
 		m := 1 / (2 * k.beta)
 		qm := pow(q, m-1) // q^(m-1), finite since m > 1
 		qa := pow(q, k.a-1)
@@ -57,7 +60,7 @@ func quickPower(x, a float64) float64 {
 	if x < 1e-300 {
 		return 0
 	}
-	return exp(a * log(x))
+	return elementary.Exp(a * elementary.Log(x))
 }
 
 // HasPeaks reports whether the equation has non-analytic terms, which make the third derivatives singular at its

@@ -13,6 +13,7 @@ import (
 	"unsafe"
 
 	"dewmark/props/helmholtz"
+	"dewmark/props/internal/elementary"
 )
 
 const (
@@ -35,8 +36,15 @@ type Curve struct {
 	pieces   []piece // in rising s, the critical piece first
 	critical criticalPiece
 	inverse  []inversePiece // in rising ln p
+	bands    [bands]band    // evenly from TMin to TCritical
 	bounds   Bounds
 }
+
+// bands is how many stretches of temperature there are with densities known to lie outside the dome.
+const bands = 128
+
+// band holds densities in mol/m3 beyond which a fluid is outside the dome everywhere in a stretch of temperature.
+type band struct{ thin, dense float64 }
 
 // Bounds holds the largest relative deviations seen when a curve was made, expansions against the phase solve between
 // the nodes.
@@ -96,7 +104,42 @@ func New(eq *helmholtz.Equation, o Options) (*Curve, error) {
 	}
 	c.PMin, _, _ = c.At(c.TMin)
 	b.invert()
+	c.bound()
 	return c, nil
+}
+
+// bound fills the bands. The density of saturated vapour rises with temperature; that of liquid has its maximum inside a
+// stretch for water, which the margin covers.
+func (c *Curve) bound() {
+	const margin, parts = 1e-3, 4
+	width := (c.TCritical - c.TMin) / bands
+	for i := range c.bands {
+		b := &c.bands[i]
+		for j := range parts + 1 {
+			T := math.Min(c.TMin+width*(float64(i)+float64(j)/parts), c.TCritical)
+			_, liquid, vapour := c.At(T)
+			if j == 0 {
+				b.thin = vapour * (1 - margin)
+			}
+			b.dense = math.Max(b.dense, liquid*(1+margin))
+		}
+	}
+}
+
+// Encloses reports whether density rho in mol/m3 at temperature T in K, at most TCritical, lies in the dome, its edge included
+// to rounding.
+func (c *Curve) Encloses(T, rho float64) bool {
+	const rounding = 1e-12
+	if T >= c.TMin {
+		i := int((T - c.TMin) / (c.TCritical - c.TMin) * bands)
+		if b := &c.bands[min(i, bands-1)]; rho < b.thin || rho > b.dense {
+			return false
+		}
+	}
+	if rho > c.RhoCritical {
+		return rho <= c.Density(T, true)*(1+rounding)
+	}
+	return rho >= c.Density(T, false)*(1-rounding)
 }
 
 // At returns the vapour pressure in Pa and the densities of saturated liquid and vapour in mol/m3 at temperature T in K,
@@ -108,7 +151,7 @@ func (c *Curve) At(T float64) (p, liquid, vapour float64) {
 	}
 	k := c.find(s)
 	x := (s-k.lo)*k.scale - 1
-	return math.Exp(k.lnP.at(x)), k.liquid.at(x), math.Exp(k.lnVapour.at(x))
+	return elementary.Exp(k.lnP.at(x)), k.liquid.at(x), elementary.Exp(k.lnVapour.at(x))
 }
 
 // Pressure returns the vapour pressure in Pa at T in K.
@@ -116,10 +159,10 @@ func (c *Curve) Pressure(T float64) float64 {
 	s := math.Sqrt(math.Max(0, (c.TCritical-T)/c.TCritical))
 	if s < c.critical.hi {
 		k := &c.critical
-		return math.Exp(k.lnP.at(2*s*s/(k.hi*k.hi) - 1))
+		return elementary.Exp(k.lnP.at(2*s*s/(k.hi*k.hi) - 1))
 	}
 	k := c.find(s)
-	return math.Exp(k.lnP.at((s-k.lo)*k.scale - 1))
+	return elementary.Exp(k.lnP.at((s-k.lo)*k.scale - 1))
 }
 
 // Density returns the density of saturated liquid or vapour alone in mol/m3 at T in K: half the price of [Curve.At].
@@ -137,12 +180,12 @@ func (c *Curve) Density(T float64, liquid bool) float64 {
 	if liquid {
 		return k.liquid.at(x)
 	}
-	return math.Exp(k.lnVapour.at(x))
+	return elementary.Exp(k.lnVapour.at(x))
 }
 
 // Temperature returns the boiling temperature in K at pressure p in Pa, which must lie between PMin and PCritical.
 func (c *Curve) Temperature(p float64) float64 {
-	y := math.Log(p)
+	y := elementary.Log(p)
 	lo, hi := 0, len(c.inverse)-1
 	for lo < hi {
 		m := (lo + hi) / 2
@@ -181,7 +224,7 @@ func (c *Curve) find(s float64) *piece {
 }
 
 func (k *criticalPiece) at(c *Curve, s float64) (p, liquid, vapour float64) {
-	p = math.Exp(k.lnP.at(2*s*s/(k.hi*k.hi) - 1))
+	p = elementary.Exp(k.lnP.at(2*s*s/(k.hi*k.hi) - 1))
 	if k.power != 0 {
 		w := math.Pow(s, k.power)
 		return p, c.RhoCritical * (1 + k.cl*w), c.RhoCritical * (1 - k.cv*w)

@@ -60,6 +60,30 @@ func TestInverse(t *testing.T) {
 	}
 }
 
+// The bounds that spare most questions an expansion never change the answer.
+func TestEncloses(t *testing.T) {
+	for _, s := range curves(t) {
+		c := s.curve
+		for _, T := range append(s.temperatures(2000, 1), c.TMin, c.TCritical*(1-1e-9)) {
+			_, liquid, vapour := c.At(T)
+			if liquid-vapour < 1e-6*liquid { // the critical point
+				continue
+			}
+			for _, k := range []struct {
+				rho  float64
+				want bool
+			}{
+				{vapour, true}, {liquid, true}, {vapour * (1 + 1e-9), true}, {liquid * (1 - 1e-9), true}, {c.RhoCritical, true},
+				{vapour * (1 - 1e-9), false}, {liquid * (1 + 1e-9), false}, {vapour * 0.9, false}, {liquid * 1.1, false}, {0, false}, {math.Inf(1), false},
+			} {
+				if got := c.Encloses(T, k.rho); got != k.want {
+					t.Errorf("%s at %.17g K: %.17g mol/m3 between %.17g and %.17g: %t", s.ID, T, k.rho, vapour, liquid, got)
+				}
+			}
+		}
+	}
+}
+
 func TestMonotonic(t *testing.T) {
 	for _, s := range curves(t) {
 		c := s.curve

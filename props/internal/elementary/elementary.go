@@ -1,13 +1,12 @@
-package helmholtz
+// Package elementary has exponentials and logarithms for equations of state, where they are more than half the cost: made by
+// tables, without the standard library's care for the last bit and for special values. Method: Tang, ACM Trans. Math. Softw.
+// 15 (1989) 144 and 16 (1990) 378.
+package elementary
 
 import (
 	"math"
 	"math/big"
 )
-
-// The exponentials and logarithms are more than half the cost of an equation, so they are made here by tables: twice as
-// fast as the standard library's, whose care for the last bit and for special values the terms of an equation do not
-// need. Method: Tang, ACM Trans. Math. Softw. 15 (1989) 144 and 16 (1990) 378.
 
 const (
 	tableBits = 7
@@ -35,8 +34,8 @@ var exp2Table = func() (t [tableSize]struct{ high, low float64 }) {
 	return t
 }()
 
-// exp returns e^x to about one unit in the last place; below -700 it returns 0.
-func exp(x float64) float64 {
+// Exp returns e^x to about one unit in the last place; below -700 it returns 0.
+func Exp(x float64) float64 {
 	if !(x > -700 && x < 700) {
 		if x <= -700 {
 			return 0
@@ -67,8 +66,8 @@ var logTable = func() (t [tableSize]logEntry) {
 	return t
 }()
 
-// log returns ln(x) of a normal positive number to about 2e-16 absolute, or relative where |ln x| > 1.
-func log(x float64) float64 {
+// Log returns ln(x) of a normal positive number to about 2e-16 absolute, or relative where |ln x| > 1.
+func Log(x float64) float64 {
 	b := math.Float64bits(x)
 	if b-1<<52 >= 0x7fe<<52 { // zero, denormal, negative, infinite or not a number
 		return math.Log(x)
