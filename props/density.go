@@ -20,12 +20,12 @@ const saturationTie = 1e-10
 
 // TemperaturePressure returns the state at T in K and p in Pa. On the saturation line itself, where p equals the
 // vapour pressure to 1e-10, it returns an [*AmbiguousError] with saturated liquid and vapour.
-func (r *Pure) TemperaturePressure(T, p float64) (State, error) {
+func (r *Pure) TemperaturePressure(T, p float64) (s State, err error) {
 	if err := r.checkTemperature(T); err != nil {
-		return State{}, err
+		return s, err
 	}
 	if err := r.checkPressure(p); err != nil {
-		return State{}, err
+		return s, err
 	}
 	var iso helmholtz.Isotherm
 	iso.Set(r.eq, T)
@@ -33,14 +33,16 @@ func (r *Pure) TemperaturePressure(T, p float64) (State, error) {
 		ps, liquid, vapour := r.curve.At(T)
 		if math.Abs(p-ps) <= saturationTie*ps {
 			d := r.domeOf(T, p, liquid*r.M, vapour*r.M)
-			return State{}, &AmbiguousError{
+			return s, &AmbiguousError{
 				Refrigerant: r.rec.ID, Pair: [2]Property{Temperature, Pressure},
 				Solutions: []State{r.domeState(&d, 0), r.domeState(&d, 1)},
 			}
 		}
-		return r.solveDensity(&iso, p, r.subcritical(&iso, p, ps, liquid*r.M, vapour*r.M))
+		err = r.solveDensity(&iso, p, r.subcritical(&iso, p, ps, liquid*r.M, vapour*r.M), &s)
+		return s, err
 	}
-	return r.solveDensity(&iso, p, r.supercritical(T, p))
+	err = r.solveDensity(&iso, p, r.supercritical(T, p), &s)
+	return s, err
 }
 
 // subcritical returns the branch of an isotherm below the critical temperature that holds pressure p.
@@ -52,9 +54,9 @@ func (r *Pure) subcritical(iso *helmholtz.Isotherm, p, ps, liquid, vapour float6
 	}
 	// Murnaghan: the bulk modulus rises linearly with pressure, in liquids by about 8.
 	const slope = 8
-	f := r.evaluate(iso, liquid)
-	bulk := liquid * math.Max(f.pRho, 1e-3*r.Rs*iso.T)
-	return branch{lo: liquid, hi: r.densest(), start: liquid * math.Pow(1+slope*(p-ps)/bulk, 1.0/slope)}
+	d, dd := iso.Density(liquid * r.perM)
+	bulk := liquid * r.Rs * iso.T * math.Max(1+2*d+dd, 1e-3)
+	return branch{lo: liquid, hi: r.densest(), start: liquid * math.Sqrt(math.Sqrt(math.Sqrt(1+slope*(p-ps)/bulk)))}
 }
 
 // supercritical returns the branch of an isotherm above the critical temperature, started from the cubic equation of
@@ -84,16 +86,17 @@ func (r *Pure) supercritical(T, p float64) branch {
 // refused by name.
 func (r *Pure) densest() float64 { return 1.15 * r.reach().DensityMax }
 
-// solveDensity returns the state at pressure p on a branch of an isotherm.
-func (r *Pure) solveDensity(iso *helmholtz.Isotherm, p float64, b branch) (State, error) {
+// solveDensity sets s to the state at pressure p on a branch of an isotherm.
+func (r *Pure) solveDensity(iso *helmholtz.Isotherm, p float64, b branch, s *State) error {
 	f, err := r.density(iso, p, b)
 	if err != nil {
-		return State{}, err
+		return err
 	}
 	if err := r.checkFluid(iso.T, p, f.rho); err != nil {
-		return State{}, err
+		return err
 	}
-	return r.state(f, p), nil
+	r.complete(&f, p, s)
+	return nil
 }
 
 // density solves the density at pressure p by Newton's method, with bisection wherever a step leaves the branch.

@@ -21,19 +21,18 @@ func (r *Pure) PressureInternalEnergy(p, u float64) (State, error) {
 // PressureEnthalpyNear is [Pure.PressureEnthalpy] with a start: the temperature and density of a state that is
 // not far. A good start saves half the time; a bad one costs some and changes nothing.
 func (r *Pure) PressureEnthalpyNear(p, h float64, start State) (State, error) {
-	return r.isobarNear(p, Enthalpy, h, start)
+	return r.isobarNear(p, Enthalpy, h, &start)
 }
 
 // PressureEntropyNear is [Pure.PressureEntropy] with a start, like [Pure.PressureEnthalpyNear].
 func (r *Pure) PressureEntropyNear(p, s float64, start State) (State, error) {
-	return r.isobarNear(p, Entropy, s, start)
+	return r.isobarNear(p, Entropy, s, &start)
 }
 
-func (r *Pure) isobarNear(p float64, y Property, v float64, start State) (State, error) {
+func (r *Pure) isobarNear(p float64, y Property, v float64, start *State) (s State, err error) {
 	if r.checkPressure(p) == nil {
-		if f, ok := r.newton2(p, y, v, start.T, start.Rho); ok && r.clearOfDome(f, p, 1e-8) {
-			s := r.state(f, p)
-			if r.check(s) == nil {
+		if f, ok := r.newton2(p, y, v, start.T, start.Rho); ok && r.clearOfDome(&f, p, 1e-8) {
+			if r.complete(&f, p, &s); r.check(&s) == nil {
 				return s, nil
 			}
 		}
@@ -44,9 +43,9 @@ func (r *Pure) isobarNear(p float64, y Property, v float64, start State) (State,
 // clearOfDome reports whether a solution of the equation at pressure p is the single phase that is stable there. Many
 // equations have false roots inside the dome, at pressures far above the critical one too. At the very edge, within a
 // fraction edge of the vapour pressure, it says no.
-func (r *Pure) clearOfDome(f fluidState, p, edge float64) bool {
+func (r *Pure) clearOfDome(f *fluidState, p, edge float64) bool {
 	c := r.curve
-	if f.T >= c.TCritical {
+	if f.T >= c.TCritical || c.Outside(f.T, f.rho*r.perM) {
 		return true
 	}
 	ps, liquid, vapour := c.At(f.T)
@@ -56,12 +55,12 @@ func (r *Pure) clearOfDome(f fluidState, p, edge float64) bool {
 
 // isobar returns the state at pressure p with the caloric property y equal to v. Along an isobar all three rise with
 // temperature.
-func (r *Pure) isobar(p float64, y Property, v float64) (State, error) {
+func (r *Pure) isobar(p float64, y Property, v float64) (s State, err error) {
 	if err := r.checkPressure(p); err != nil {
-		return State{}, err
+		return s, err
 	}
 	if math.IsNaN(v) || math.IsInf(v, 0) {
-		return State{}, r.notFinite(y, v)
+		return s, r.notFinite(y, v)
 	}
 	lo, hi := r.reach().TemperatureMin, r.reach().TemperatureMax
 	start := fluidState{T: r.curve.TCritical, rho: r.curve.RhoCritical * r.M}
@@ -85,14 +84,13 @@ func (r *Pure) isobar(p float64, y Property, v float64) (State, error) {
 		start.T, start.rho = T, rho
 	}
 	f, ok := r.newton2(p, y, v, start.T, start.rho)
-	if !ok || !(lo*(1-1e-9) <= f.T && f.T <= hi*(1+1e-9)) || !r.onSide(f, side) || !r.clearOfDome(f, p, -1e-8) {
-		var err error
+	if !ok || !(lo*(1-1e-9) <= f.T && f.T <= hi*(1+1e-9)) || !r.onSide(f, side) || !r.clearOfDome(&f, p, -1e-8) {
 		if f, err = r.searchIsobar(p, y, v, lo, hi, side); err != nil {
-			return State{}, err
+			return s, err
 		}
 	}
-	s := r.state(f, p)
-	if err := r.check(s); err != nil {
+	r.complete(&f, p, &s)
+	if err := r.check(&s); err != nil {
 		return State{}, err
 	}
 	return s, nil

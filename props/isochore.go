@@ -90,7 +90,7 @@ func (r *Pure) pressureDensity(p, rho float64, found func(State)) error {
 		if !ok {
 			return
 		}
-		if s := r.state(f, p); r.check(s) == nil {
+		if s := r.state(f, p); r.check(&s) == nil {
 			n++
 			found(s)
 		}

@@ -111,7 +111,7 @@ func (r *Pure) isotherm(T float64, y Property, v float64, found func(State)) err
 	single := func(rho float64) {
 		f := r.evaluate(&iso, rho)
 		s := r.state(f, f.p)
-		if r.check(s) == nil {
+		if r.check(&s) == nil {
 			_, _, slope := f.value(y)
 			worst = math.Max(worst, roundingOf(y, f, r)/math.Abs(rho*slope))
 			found(s)

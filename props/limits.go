@@ -60,7 +60,7 @@ func (r *Pure) checkFluid(T, p, rho float64) error {
 
 // check returns a RangeError unless a single-phase state that a solver found lies in the range the view answers. Limits
 // count as reached within rounding.
-func (r *Pure) check(s State) error {
+func (r *Pure) check(s *State) error {
 	const slack = 1e-10
 	l := r.reach()
 	T, p := s.T, s.P
@@ -78,16 +78,21 @@ func (r *Pure) check(s State) error {
 		err = r.checkFluid(T, p/(1+slack), s.Rho/(1+slack))
 	}
 	if e, ok := errors.AsType[*RangeError](err); ok {
-		e.Value = e.Property.Of(&s) // as it is, without the slack
+		e.Value = e.Property.Of(s) // as it is, without the slack
 	}
 	return err
 }
 
 // Extrapolated reports whether s lies outside the validity of the equation.
 func (r *Pure) Extrapolated(s State) bool {
+	l := &r.limits
+	if s.Phase == TwoPhase || s.T >= l.TemperatureMin && s.T <= l.TemperatureMax && s.P >= vacuum && s.P <= l.PressureMax &&
+		s.Rho >= vacuum && s.Rho <= l.DensityMax && s.P <= r.meltingPressure(s.T) {
+		return false
+	}
 	plain := *r
 	plain.extrapolate = false
-	return s.Phase != TwoPhase && plain.check(s) != nil
+	return plain.check(&s) != nil
 }
 
 // meltingPressure returns the pressure above which the refrigerant is solid at temperature T, or +Inf where no melting

@@ -126,15 +126,22 @@ func (c *Curve) bound() {
 	}
 }
 
+// Outside reports that density rho in mol/m3 at temperature T in K, at most TCritical, lies outside the dome, as far as that can
+// be told without an expansion. Where it reports false, the density may lie outside still.
+func (c *Curve) Outside(T, rho float64) bool {
+	if !(T >= c.TMin) {
+		return false
+	}
+	b := &c.bands[min(int((T-c.TMin)/(c.TCritical-c.TMin)*bands), bands-1)]
+	return rho < b.thin || rho > b.dense
+}
+
 // Encloses reports whether density rho in mol/m3 at temperature T in K, at most TCritical, lies in the dome, its edge included
 // to rounding.
 func (c *Curve) Encloses(T, rho float64) bool {
 	const rounding = 1e-12
-	if T >= c.TMin {
-		i := int((T - c.TMin) / (c.TCritical - c.TMin) * bands)
-		if b := &c.bands[min(i, bands-1)]; rho < b.thin || rho > b.dense {
-			return false
-		}
+	if c.Outside(T, rho) {
+		return false
 	}
 	if rho > c.RhoCritical {
 		return rho <= c.Density(T, true)*(1+rounding)

@@ -1,6 +1,9 @@
 package cycle
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // secondLawRounding is the entropy destruction that counts as rounding, as a fraction of the condenser's heat over the
 // ambient temperature.
@@ -92,29 +95,29 @@ func (c *circuit) balance(a *account, scale float64) (b balance) {
 	return b
 }
 
-// solution settles the accounts.
-func (c *circuit) solution(r *Request) *Solution {
+// solution settles the accounts in s.
+func (c *circuit) solution(r *Request, s *Solution) {
 	t := c.totals()
 	c.works(t)
 	scale := c.scale(t)
-	s := &Solution{
-		Layout: r.Layout, With: r.With, Purpose: c.purpose, PerUnit: c.size.of == perUnit,
-		Ambient: c.ambient, Figures: c.figures, Optima: c.optima, StatesAsked: c.fluid.asked,
-	}
+	s.Layout, s.With, s.Purpose, s.PerUnit = r.Layout, r.With, c.purpose, c.size.of == perUnit
+	s.Ambient, s.Figures, s.Optima, s.StatesAsked = c.ambient, c.figures, c.optima, c.fluid.asked
 	c.settleStates(s, scale)
 	c.settleComponents(s, scale, t)
 	c.settleCompressors(s, scale)
 	c.settlePerformance(s, scale, t)
 	c.raise(s)
 	s.Cautions = c.cautions
-	return s
 }
 
-// inOrder sorts the numbers 0 to n-1 by key, which hardly needs more than one pass.
-func inOrder(list []int8, key func(i int8) int) {
+// again returns a list of n elements in the memory of one that is no longer needed, if that is enough.
+func again[T any](list []T, n int) []T { return slices.Grow(list[:0], n)[:n] }
+
+// inOrder sets list to the numbers of the keys in rising order, which hardly needs more than one pass.
+func inOrder(list []int8, keys []int16) {
 	for i := range list {
 		list[i] = int8(i)
-		for j := i; j > 0 && key(list[j]) < key(list[j-1]); j-- {
+		for j := i; j > 0 && keys[list[j]] < keys[list[j-1]]; j-- {
 			list[j], list[j-1] = list[j-1], list[j]
 		}
 	}
@@ -122,16 +125,19 @@ func inOrder(list []int8, key func(i int8) int) {
 
 func (c *circuit) settleStates(s *Solution, scale float64) {
 	var order [maxNodes]int8
+	var keys [maxNodes]int16
 	list := order[:c.nodeCount]
-	inOrder(list, func(i int8) int { return int(c.nodes[i].side)*int(placeCount) + int(c.nodes[i].place) })
-	s.States = make([]StateAt, c.nodeCount)
+	for i := range list {
+		keys[i] = int16(c.nodes[i].side)*int16(placeCount) + int16(c.nodes[i].place)
+	}
+	inOrder(list, keys[:])
+	s.States = again(s.States, c.nodeCount)
 	for i, k := range list {
 		n := &c.nodes[k]
 		name := &placeNames[n.side][n.place]
-		s.States[i] = StateAt{
-			Label: name.label, Place: name.words, Refrigerant: c.refrigerants[n.side],
-			MassFlow: scale * c.flow(n), State: n.State,
-		}
+		at := &s.States[i]
+		at.Label, at.Place, at.Refrigerant = name.label, name.words, c.refrigerants[n.side]
+		at.MassFlow, at.State = scale*c.flow(n), n.State
 	}
 }
 
@@ -151,11 +157,15 @@ func (c *circuit) labels(p ports) []string {
 
 func (c *circuit) settleComponents(s *Solution, scale float64, t totals) {
 	var order [maxAccounts]int8
+	var keys [maxAccounts]int16
 	list := order[:c.accountCount]
-	inOrder(list, func(i int8) int { return int(c.accounts[i].side)*int(partCount) + int(c.accounts[i].part) })
-	s.Components = make([]Component, c.accountCount)
+	for i := range list {
+		keys[i] = int16(c.accounts[i].side)*int16(partCount) + int16(c.accounts[i].part)
+	}
+	inOrder(list, keys[:])
+	s.Components = again(s.Components, c.accountCount)
 	k := &s.Closure
-	k.SmallestEntropyGeneration = math.Inf(1)
+	*k = Closure{SmallestEntropyGeneration: math.Inf(1)}
 	tolerance := secondLawRounding * scale * max(t.heating, t.power) / c.ambient
 	received, delivered := 0.0, 0.0 // exergy with heat
 	for i, j := range list {
@@ -208,7 +218,7 @@ func (p part) mixes() bool {
 }
 
 func (c *circuit) settleCompressors(s *Solution, scale float64) {
-	s.Compressors = make([]CompressorPerformance, c.compressionCount)
+	s.Compressors = again(s.Compressors, c.compressionCount)
 	for i := range s.Compressors {
 		k := &c.compressions[i]
 		in, out := &c.nodes[k.in], &c.nodes[k.out]

@@ -9,9 +9,20 @@ import (
 // when that ends first. Most cycles take microseconds, but two pressures searched at once for a mixture of many components, with
 // mean temperatures, take seconds.
 func Solve(ctx context.Context, r *Request) (*Solution, error) {
+	s := new(Solution)
+	if err := s.Solve(ctx, r); err != nil {
+		return nil, err
+	}
+	return s, nil
+}
+
+// Solve is the function of that name with its answer in s, whose memory is used again: a simple cycle without a caution then
+// allocates nothing. After an error s holds nothing of use.
+func (s *Solution) Solve(ctx context.Context, r *Request) error {
 	c := circuit{ctx: ctx}
+	c.cautions = s.Cautions[:0]
 	if c.fill(r); len(c.refusals) > 0 {
-		return nil, &RefusedError{c.refusals}
+		return &RefusedError{c.refusals}
 	}
 	c.start(r)
 	if c.evaporation.mean {
@@ -20,14 +31,14 @@ func Solve(ctx context.Context, r *Request) (*Solution, error) {
 		c.atLowSide()
 	}
 	if c.refused == nil {
-		if s := c.solution(r); c.refused == nil {
-			return s, nil
+		if c.solution(r, s); c.refused == nil {
+			return nil
 		}
 	}
 	if c.refused == &interrupted {
-		return nil, context.Cause(ctx)
+		return context.Cause(ctx)
 	}
-	return nil, &RefusedError{[]Refusal{*c.refused}}
+	return &RefusedError{[]Refusal{*c.refused}}
 }
 
 // interrupted is the obstacle where the context has ended.
