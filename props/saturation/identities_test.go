@@ -73,8 +73,17 @@ func TestEncloses(t *testing.T) {
 				rho  float64
 				want bool
 			}{
-				{vapour, true}, {liquid, true}, {vapour * (1 + 1e-9), true}, {liquid * (1 - 1e-9), true}, {c.RhoCritical, true},
-				{vapour * (1 - 1e-9), false}, {liquid * (1 + 1e-9), false}, {vapour * 0.9, false}, {liquid * 1.1, false}, {0, false}, {math.Inf(1), false},
+				{vapour, true},
+				{liquid, true},
+				{vapour * (1 + 1e-9), true},
+				{liquid * (1 - 1e-9), true},
+				{c.RhoCritical, true},
+				{vapour * (1 - 1e-9), false},
+				{liquid * (1 + 1e-9), false},
+				{vapour * 0.9, false},
+				{liquid * 1.1, false},
+				{0, false},
+				{math.Inf(1), false},
 			} {
 				if got := c.Encloses(T, k.rho); got != k.want {
 					t.Errorf("%s at %.17g K: %.17g mol/m3 between %.17g and %.17g: %t", s.ID, T, k.rho, vapour, liquid, got)
