@@ -26,8 +26,8 @@ func BenchmarkExp(b *testing.B) {
 
 var sink float64
 
-// BenchmarkResidual sets the isotherm of an equation that has no ideal part and evaluates the residual part with all its
-// derivatives.
+// BenchmarkResidual evaluates the residual part with all its derivatives, of an equation that has no ideal part, at one
+// temperature after another.
 func BenchmarkResidual(b *testing.B) {
 	for _, s := range benchmarked {
 		of := equation(b, s.id)
@@ -37,31 +37,49 @@ func BenchmarkResidual(b *testing.B) {
 		if err != nil {
 			b.Fatal(err)
 		}
-		benchmarkWhole(b, eq, s.id, s.T, s.rho)
+		benchmarkAt(b, eq, s.id, s.T, s.rho)
 	}
 }
 
 // BenchmarkBothParts is BenchmarkResidual with the ideal part.
 func BenchmarkBothParts(b *testing.B) {
 	for _, s := range benchmarked {
-		benchmarkWhole(b, equation(b, s.id).eq, s.id, s.T, s.rho)
+		benchmarkAt(b, equation(b, s.id).eq, s.id, s.T, s.rho)
 	}
 }
 
-func benchmarkWhole(b *testing.B, eq *helmholtz.Equation, id string, T, rho float64) {
+func benchmarkAt(b *testing.B, eq *helmholtz.Equation, id string, from, rho float64) {
 	b.Helper()
 	b.Run(id, func(b *testing.B) {
 		b.ReportAllocs()
-		sum := 0.0
+		T, sum := from, 0.0
 		for b.Loop() {
-			var iso helmholtz.Isotherm
-			iso.Set(eq, T)
-			r := iso.Residual(rho)
-			sum += r.A + r.TT + iso.Ideal.A
+			var a helmholtz.Alpha
+			eq.At(T, rho, &a)
+			sum += a.A + a.TT
 			T += 1e-9
 		}
 		sink = sum
 	})
+}
+
+// BenchmarkIsotherm sets an isotherm for each temperature and evaluates it once.
+func BenchmarkIsotherm(b *testing.B) {
+	for _, s := range benchmarked {
+		eq := equation(b, s.id).eq
+		b.Run(s.id, func(b *testing.B) {
+			b.ReportAllocs()
+			T, sum := s.T, 0.0
+			for b.Loop() {
+				var iso helmholtz.Isotherm
+				iso.Set(eq, T)
+				r := iso.Residual(s.rho)
+				sum += r.A + r.TT + iso.Ideal.A
+				T += 1e-9
+			}
+			sink = sum
+		})
+	}
 }
 
 // BenchmarkResidualOnIsotherm evaluates at one density after another on an isotherm that is set.
@@ -77,23 +95,6 @@ func BenchmarkResidualOnIsotherm(b *testing.B) {
 				r := iso.Residual(rho)
 				sum += r.A + r.TT
 				rho += 1e-9
-			}
-			sink = sum
-		})
-	}
-}
-
-// BenchmarkAt evaluates both parts at one state.
-func BenchmarkAt(b *testing.B) {
-	for _, s := range benchmarked {
-		of := equation(b, s.id)
-		b.Run(s.id, func(b *testing.B) {
-			T, sum := s.T, 0.0
-			for b.Loop() {
-				var a helmholtz.Alpha
-				of.eq.At(T, s.rho, &a)
-				sum += a.A + a.TT
-				T += 1e-9
 			}
 			sink = sum
 		})
