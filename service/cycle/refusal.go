@@ -1,6 +1,10 @@
 package cycle
 
-import "strings"
+import (
+	"strings"
+
+	"dewmark/service/internal/reasons"
+)
 
 // RefusalCode is a stable name for a reason to refuse a request.
 type RefusalCode string
@@ -34,29 +38,14 @@ type Refusal struct {
 // obstacle that stopped the calculation.
 type RefusedError struct{ Refusals []Refusal }
 
-func (e *RefusedError) Error() string {
-	texts := make([]string, len(e.Refusals))
-	for i, r := range e.Refusals {
-		texts[i] = r.Message.String()
-		if r.Field != "" {
-			texts[i] = r.Field + ": " + texts[i]
-		}
-		if r.Cause != nil {
-			texts[i] += ": " + r.Cause.Error()
-		}
-	}
-	return "cycle: " + strings.Join(texts, "; ")
-}
+func (e *RefusedError) Error() string { return reasons.Text("cycle", e.Refusals) }
 
 // Unwrap returns the errors of the property model behind the refusals.
-func (e *RefusedError) Unwrap() []error {
-	var causes []error
-	for _, r := range e.Refusals {
-		if r.Cause != nil {
-			causes = append(causes, r.Cause)
-		}
-	}
-	return causes
+func (e *RefusedError) Unwrap() []error { return reasons.Causes(e.Refusals) }
+
+// Blame returns the field, the message in SI units and the cause.
+func (r Refusal) Blame() (field, text string, cause error) {
+	return r.Field, r.Message.String(), r.Cause
 }
 
 // noState says that the property model has no state for a place.

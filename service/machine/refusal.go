@@ -1,6 +1,6 @@
 package machine
 
-import "strings"
+import "dewmark/service/internal/reasons"
 
 // Code is a stable name for a reason to refuse. Those of a cycle's refusals appear too.
 type Code string
@@ -35,27 +35,12 @@ type Refusal struct {
 // a first check finds at fault, or else the one obstacle that stopped the calculation.
 type RefusedError struct{ Refusals []Refusal }
 
-func (e *RefusedError) Error() string {
-	texts := make([]string, len(e.Refusals))
-	for i, r := range e.Refusals {
-		texts[i] = r.Message.String()
-		if r.Field != "" {
-			texts[i] = r.Field + ": " + texts[i]
-		}
-		if r.Cause != nil {
-			texts[i] += ": " + r.Cause.Error()
-		}
-	}
-	return "machine: " + strings.Join(texts, "; ")
-}
+func (e *RefusedError) Error() string { return reasons.Text("machine", e.Refusals) }
 
 // Unwrap returns the errors behind the refusals.
-func (e *RefusedError) Unwrap() []error {
-	var causes []error
-	for _, r := range e.Refusals {
-		if r.Cause != nil {
-			causes = append(causes, r.Cause)
-		}
-	}
-	return causes
+func (e *RefusedError) Unwrap() []error { return reasons.Causes(e.Refusals) }
+
+// Blame returns the field, the message in SI units and the cause.
+func (r Refusal) Blame() (field, text string, cause error) {
+	return r.Field, r.Message.String(), r.Cause
 }

@@ -1,6 +1,6 @@
 package readings
 
-import "strings"
+import "dewmark/service/internal/reasons"
 
 // Code is a stable name for a reason to refuse.
 type Code string
@@ -25,29 +25,14 @@ type Refusal struct {
 // RefusedError reports an installation or a sample that cannot be. It lists every field at fault.
 type RefusedError struct{ Refusals []Refusal }
 
-func (e *RefusedError) Error() string {
-	texts := make([]string, len(e.Refusals))
-	for i, r := range e.Refusals {
-		texts[i] = r.Message.String()
-		if r.Field != "" {
-			texts[i] = r.Field + ": " + texts[i]
-		}
-		if r.Cause != nil {
-			texts[i] += ": " + r.Cause.Error()
-		}
-	}
-	return "readings: " + strings.Join(texts, "; ")
-}
+func (e *RefusedError) Error() string { return reasons.Text("readings", e.Refusals) }
 
 // Unwrap returns the errors behind the refusals.
-func (e *RefusedError) Unwrap() []error {
-	var causes []error
-	for _, r := range e.Refusals {
-		if r.Cause != nil {
-			causes = append(causes, r.Cause)
-		}
-	}
-	return causes
+func (e *RefusedError) Unwrap() []error { return reasons.Causes(e.Refusals) }
+
+// Blame returns the field, the message in SI units and the cause.
+func (r Refusal) Blame() (field, text string, cause error) {
+	return r.Field, r.Message.String(), r.Cause
 }
 
 // refusals collects what is wrong.
