@@ -43,6 +43,9 @@ const (
 	nearCriticalShare = 0.98 // of the critical pressure: latent heat and densities change steeply from there
 )
 
+// nearOptimumEnd times the critical pressure is about where the search for a gas cooler's pressure begins.
+const nearOptimumEnd = 1.01
+
 // noticedGlide is the difference of dew and bubble temperature from which a vessel parts the components of a blend, K.
 const noticedGlide = 0.01
 
@@ -83,8 +86,11 @@ func (c *circuit) raise(s *Solution) {
 	}
 	for i := range c.optima {
 		if o := &c.optima[i]; o.AtLimit {
-			c.caution(Caution{Code: OptimumAtLimit, Field: o.Field, Message: message(
-				"the COP still rises at the end of the search, %s", pressure(o.Pressure))})
+			text := "the COP still rises at the end of the search, %s"
+			if o.Field == c.gasCooling.field() && o.Pressure < nearOptimumEnd*c.refrigerants[c.side].Critical().P {
+				text += ", the critical pressure: the outlet is so cold that a condenser below it may serve better"
+			}
+			c.caution(Caution{Code: OptimumAtLimit, Field: o.Field, Message: message(text, pressure(o.Pressure))})
 		}
 	}
 	if e := c.figures.EjectorEfficiency; c.ejector.assumed || e > bestEjector {

@@ -1,7 +1,9 @@
 package cycle_test
 
 import (
+	"fmt"
 	"slices"
+	"strings"
 	"testing"
 
 	"dewmark/props"
@@ -200,6 +202,12 @@ func TestLayoutCautions(t *testing.T) {
 			r.GasCooler.Pressure, r.GasCooler.Optimise, r.GasCooler.PressureMax = nil, cycle.OptimiseCOP, new(80e5)
 			return r
 		}, cycle.OptimumAtLimit, "gas_cooler.optimise"},
+		{"optimum at the critical pressure", func(t *testing.T) *cycle.Request {
+			r := transcriticalHeatPump(t)
+			r.SinkTemperature = new(283.15)
+			r.GasCooler.OutletTemperature, r.GasCooler.Pressure, r.GasCooler.Optimise = new(285.15), nil, cycle.OptimiseCOP
+			return r
+		}, cycle.OptimumAtLimit, "gas_cooler.optimise"},
 	} {
 		s, err := cycle.Solve(t.Context(), k.request(t))
 		if err != nil {
@@ -208,6 +216,9 @@ func TestLayoutCautions(t *testing.T) {
 		}
 		if !slices.ContainsFunc(s.Cautions, func(c cycle.Caution) bool { return c.Code == k.code && c.Field == k.field }) {
 			t.Errorf("%s: got %v, want %s of %q", k.name, s.Cautions, k.code, k.field)
+		}
+		if k.name == "optimum at the critical pressure" && !strings.Contains(fmt.Sprint(s.Cautions), "a condenser below it may serve better") {
+			t.Errorf("%s: got %v", k.name, s.Cautions)
 		}
 	}
 }

@@ -12,6 +12,7 @@ func (p *plan) streams(k *Condition) {
 	p.source = p.stream("condition.source", &k.Source, -1, &p.evaporator)
 	p.sink = p.stream("condition.sink", &k.Sink, +1, &p.condenser)
 	p.ambient = p.number("condition.ambient_temperature", k.AmbientTemperature, &temperatureBounds)
+	p.ambientPressure = p.or("site.ambient_pressure", k.AmbientPressure, &pressureBounds, props.StandardAtmosphere)
 }
 
 // stream checks one stream.

@@ -14,6 +14,9 @@ type Condition struct {
 	// AmbientTemperature is the dead state of exergies and what lines and compressor shells exchange heat with, K. Default:
 	// the source's inlet for heating, the sink's for cooling. Path "condition.ambient_temperature".
 	AmbientTemperature *float64
+	// AmbientPressure is that of the air around the machine, Pa, which cautions compare with. Default: 101.325 kPa. Path
+	// "site.ambient_pressure".
+	AmbientPressure *float64
 }
 
 // Demand asks for at most one of two capacities, those of the refrigerant.

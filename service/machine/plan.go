@@ -14,6 +14,7 @@ type plan struct {
 	evaporator, condenser exchange
 	source, sink          side
 	ambient               float64 // K; NaN when not given
+	ambientPressure       float64 // Pa
 	speed                 float64 // 1/s; NaN without
 	demand                float64 // W; NaN when a speed is given
 	demandCools           bool
@@ -85,6 +86,6 @@ func (p *plan) template() cycle.Request {
 			ambient = p.sink.outlet
 		}
 	}
-	r.AmbientTemperature = &ambient
+	r.AmbientTemperature, r.AmbientPressure = &ambient, &p.ambientPressure
 	return r
 }

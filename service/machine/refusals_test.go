@@ -29,6 +29,7 @@ func TestRefusals(t *testing.T) {
 			m.Layout, m.Intermediate = cycle.TwoStageFlash, &cycle.Intermediate{Optimise: cycle.OptimiseCOP}
 		}, NotAllowed, "machine.intermediate.optimise"},
 
+		{"swept volume in cubic centimetres", func(m *Machine, _ *Condition) { m.Compressor.SweptVolume = new(40.0) }, OutOfBounds, "machine.compressor.swept_volume"},
 		{"no swept volume", func(m *Machine, _ *Condition) { m.Compressor.SweptVolume = nil }, Missing, "machine.compressor.swept_volume"},
 		{"no laws", func(m *Machine, _ *Condition) { m.Compressor.IsentropicEfficiency = nil }, Missing, "machine.compressor"},
 		{"law of four", func(m *Machine, _ *Condition) {

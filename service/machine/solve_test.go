@@ -568,3 +568,29 @@ func TestContextEnds(t *testing.T) {
 		t.Errorf("after the end of the context: %v", err)
 	}
 }
+
+// The air around a machine is that of its site: on a mountain less pressure is below it.
+func TestBelowTheAirOfTheSite(t *testing.T) {
+	m, k := airWater(t)
+	p, err := Solve(t.Context(), m, k)
+	if err != nil {
+		t.Fatal(err)
+	}
+	lowest := p.Cycle.States[0].State.P
+	for _, s := range p.Cycle.States {
+		lowest = math.Min(lowest, s.State.P)
+	}
+	for _, c := range []struct {
+		air  float64
+		want bool
+	}{{lowest + 1, true}, {lowest - 1, false}} {
+		k.AmbientPressure = &c.air
+		p, err := Solve(t.Context(), m, k)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := hasCaution(p, CautionCode(cycle.BelowAtmosphere)); got != c.want {
+			t.Errorf("air of %g Pa around %g Pa: caution %t", c.air, lowest, got)
+		}
+	}
+}
