@@ -11,8 +11,8 @@ import (
 type cycleResponse struct {
 	*job
 	cycleHead
-	states []cycleState
-	cycleAccounts
+	states   []cycleState
+	accounts cycleAccounts
 }
 
 type cycleHead struct {
@@ -21,15 +21,26 @@ type cycleHead struct {
 	Purpose string   `json:"purpose"`
 }
 
+// cycleAccounts are the accounts of a cycle: those of each component and the performance, then the rest.
 type cycleAccounts struct {
-	Components  []component             `json:"components"`
-	Compressors []compressorPerformance `json:"compressors"`
-	Performance performance             `json:"performance"`
-	Figures     figures                 `json:"figures"`
-	Optima      []optimum               `json:"optima,omitempty"`
-	Closure     closure                 `json:"closure"`
-	Ambient     float64                 `json:"ambient_temperature"`   // dead state of the exergy account
-	UpperBasis  *basis                  `json:"upper_basis,omitempty"` // of a cascade's upper circuit
+	solution *cycle.Solution
+	units    *units
+	rest     cycleRest
+}
+
+type cycleRest struct {
+	Figures    figures   `json:"figures"`
+	Optima     []optimum `json:"optima,omitempty"`
+	Closure    closure   `json:"closure"`
+	Ambient    float64   `json:"ambient_temperature"`   // dead state of the exergy account
+	UpperBasis *basis    `json:"upper_basis,omitempty"` // of a cascade's upper circuit
+}
+
+// write adds the members of the accounts.
+func (a *cycleAccounts) write(o *object) error {
+	writeComponents(o, a.solution, a.units)
+	writePerformance(o, &a.solution.Performance, a.units)
+	return o.members(&a.rest)
 }
 
 // cycleState is a state with its label and place, which stand before the members of the state.
@@ -49,55 +60,11 @@ func (r *cycleResponse) encode(b []byte) ([]byte, error) {
 		return nil, err
 	}
 	writeStates(&o, r.states)
-	if err := o.members(&r.cycleAccounts); err != nil {
+	if err := r.accounts.write(&o); err != nil {
 		return nil, err
 	}
 	err := r.tail(&o)
 	return o.end(), err
-}
-
-type component struct {
-	Name              string   `json:"name"`
-	Inlets            []string `json:"inlets"`
-	Outlets           []string `json:"outlets"`
-	MassFlow          float64  `json:"mass_flow"`
-	Heat              float64  `json:"heat"`             // into the refrigerant
-	HeatTemperature   *float64 `json:"heat_temperature"` // of what it comes from or goes to
-	Work              float64  `json:"work"`             // into the machine
-	EntropyGeneration *float64 `json:"entropy_generation"`
-	ExergyDestruction *float64 `json:"exergy_destruction"`
-}
-
-// compressorPerformance describes one compressor or one step of compression.
-type compressorPerformance struct {
-	Name                 string   `json:"name"` // that of its component
-	MassFlow             float64  `json:"mass_flow"`
-	Power                float64  `json:"power"`
-	IsentropicEfficiency float64  `json:"isentropic_efficiency"`
-	VolumetricEfficiency *float64 `json:"volumetric_efficiency"`
-	PressureRatio        float64  `json:"pressure_ratio"`
-	DischargeTemperature float64  `json:"discharge_temperature"`
-	SuctionVolumeFlow    float64  `json:"suction_volume_flow"`
-	SweptVolumeFlow      *float64 `json:"swept_volume_flow"`
-}
-
-type performance struct {
-	MassFlow                  float64  `json:"mass_flow"`
-	HeatingCapacity           float64  `json:"heating_capacity"`
-	CoolingCapacity           float64  `json:"cooling_capacity"`
-	CompressorPower           float64  `json:"compressor_power"`
-	COPHeating                float64  `json:"cop_heating"`
-	COPCooling                float64  `json:"cop_cooling"`
-	CarnotCOPHeating          *float64 `json:"carnot_cop_heating"`
-	CarnotCOPCooling          *float64 `json:"carnot_cop_cooling"`
-	SecondLawEfficiency       *float64 `json:"second_law_efficiency"`
-	IsentropicEfficiency      float64  `json:"isentropic_efficiency"`
-	PressureRatio             float64  `json:"pressure_ratio"`
-	DischargeTemperature      float64  `json:"discharge_temperature"`
-	SuctionVolumeFlow         float64  `json:"suction_volume_flow"`
-	SweptVolumeFlow           *float64 `json:"swept_volume_flow"`
-	VolumetricHeatingCapacity float64  `json:"volumetric_heating_capacity"`
-	VolumetricCoolingCapacity float64  `json:"volumetric_cooling_capacity"`
 }
 
 // figures holds pressures, and what only some layouts have; null in the others.
@@ -145,14 +112,14 @@ var cycleKinds = []kind{kindMassFlow, kindVolumeFlow, kindHeatFlow, kindPower, k
 
 // cycleResponse turns a solution into the caller's units. Upper is the upper circuit of a cascade.
 func (j *job) cycleResponse(s *cycle.Solution, upper []*job) *cycleResponse {
-	resp := &cycleResponse{job: j, cycleHead: headOf(s), cycleAccounts: accountsOf(s, j.units)}
+	resp := &cycleResponse{job: j, cycleHead: headOf(s), accounts: accountsOf(s, j.units)}
 	var all account
 	resp.states = j.cycleStates(s, upper, &all)
 	j.conclude(&all, everything)
 	if len(upper) > 0 {
 		upper[0].basis.Extrapolated = j.basis.Extrapolated
 		upper[0].basis.Transport = transportBases(upper[0].r, everything)
-		resp.UpperBasis = &upper[0].basis
+		resp.accounts.rest.UpperBasis = &upper[0].basis
 		j.cautions = append(j.cautions, upper[0].cautions...)
 	}
 	j.repeat(s.Cautions, all.outside > 0)
@@ -169,8 +136,8 @@ func headOf(s *cycle.Solution) cycleHead {
 }
 
 func accountsOf(s *cycle.Solution, u *units) cycleAccounts {
-	a := cycleAccounts{
-		Performance: performanceOf(&s.Performance, u), Figures: figuresOf(&s.Figures, u),
+	rest := cycleRest{
+		Figures: figuresOf(&s.Figures, u),
 		Closure: closure{
 			EnergyResidualFraction:    s.Closure.EnergyResidualFraction,
 			SmallestEntropyGeneration: u.known(kindEntropyFlow, s.Closure.SmallestEntropyGeneration),
@@ -181,16 +148,10 @@ func accountsOf(s *cycle.Solution, u *units) cycleAccounts {
 		},
 		Ambient: u.out(kindTemperature, s.Ambient),
 	}
-	for i := range s.Components {
-		a.Components = append(a.Components, componentOf(&s.Components[i], u))
-	}
-	for i := range s.Compressors {
-		a.Compressors = append(a.Compressors, compressorOf(&s.Compressors[i], u))
-	}
 	for i := range s.Optima {
-		a.Optima = append(a.Optima, optimumOf(&s.Optima[i], u))
+		rest.Optima = append(rest.Optima, optimumOf(&s.Optima[i], u))
 	}
-	return a
+	return cycleAccounts{s, u, rest}
 }
 
 // cycleStates returns the states around the circuit and enters what is to be said of them.
@@ -256,36 +217,56 @@ func safetyOf(r props.Refrigerant) string {
 	return r.Designation() + " has no safety class on record and is to be treated as flammable and toxic"
 }
 
-func componentOf(c *cycle.Component, u *units) component {
-	return component{
-		Name: c.Name, Inlets: append([]string{}, c.Inlets...), Outlets: append([]string{}, c.Outlets...),
-		MassFlow: u.out(kindMassFlow, c.MassFlow), Heat: u.out(kindHeatFlow, c.Heat), HeatTemperature: u.known(kindTemperature, c.HeatTemperature),
-		Work: u.out(kindPower, c.Work), EntropyGeneration: u.known(kindEntropyFlow, c.EntropyGeneration),
-		ExergyDestruction: u.known(kindPower, c.ExergyDestruction),
-	}
+// writeComponents adds the members components and compressors. Heat goes into the refrigerant and work into the machine, and
+// a compressor is one compressor or one step of compression with the name of its component.
+func writeComponents(o *object, s *cycle.Solution, u *units) {
+	o.list("components", len(s.Components), func(i int, item *object) {
+		k := &s.Components[i]
+		item.text("name", k.Name)
+		item.texts("inlets", k.Inlets)
+		item.texts("outlets", k.Outlets)
+		item.number("mass_flow", u.out(kindMassFlow, k.MassFlow))
+		item.number("heat", u.out(kindHeatFlow, k.Heat))
+		item.number("heat_temperature", u.out(kindTemperature, k.HeatTemperature))
+		item.number("work", u.out(kindPower, k.Work))
+		item.number("entropy_generation", u.out(kindEntropyFlow, k.EntropyGeneration))
+		item.number("exergy_destruction", u.out(kindPower, k.ExergyDestruction))
+	})
+	o.list("compressors", len(s.Compressors), func(i int, item *object) {
+		k := &s.Compressors[i]
+		item.text("name", k.Name)
+		item.number("mass_flow", u.out(kindMassFlow, k.MassFlow))
+		item.number("power", u.out(kindPower, k.Power))
+		item.number("isentropic_efficiency", k.IsentropicEfficiency)
+		item.number("volumetric_efficiency", k.VolumetricEfficiency)
+		item.number("pressure_ratio", k.PressureRatio)
+		item.number("discharge_temperature", u.out(kindTemperature, k.DischargeTemperature))
+		item.number("suction_volume_flow", u.out(kindVolumeFlow, k.SuctionVolumeFlow))
+		item.number("swept_volume_flow", u.out(kindVolumeFlow, k.SweptVolumeFlow))
+	})
 }
 
-func compressorOf(c *cycle.CompressorPerformance, u *units) compressorPerformance {
-	return compressorPerformance{
-		Name: c.Name, MassFlow: u.out(kindMassFlow, c.MassFlow), Power: u.out(kindPower, c.Power), IsentropicEfficiency: c.IsentropicEfficiency,
-		VolumetricEfficiency: u.known(kindNone, c.VolumetricEfficiency), PressureRatio: c.PressureRatio,
-		DischargeTemperature: u.out(kindTemperature, c.DischargeTemperature), SuctionVolumeFlow: u.out(kindVolumeFlow, c.SuctionVolumeFlow),
-		SweptVolumeFlow: u.known(kindVolumeFlow, c.SweptVolumeFlow),
-	}
-}
-
-func performanceOf(p *cycle.Performance, u *units) performance {
-	return performance{
-		MassFlow: u.out(kindMassFlow, p.MassFlow), HeatingCapacity: u.out(kindHeatFlow, p.HeatingCapacity),
-		CoolingCapacity: u.out(kindHeatFlow, p.CoolingCapacity), CompressorPower: u.out(kindPower, p.CompressorPower),
-		COPHeating: p.COPHeating, COPCooling: p.COPCooling,
-		CarnotCOPHeating: u.known(kindNone, p.CarnotCOPHeating), CarnotCOPCooling: u.known(kindNone, p.CarnotCOPCooling),
-		SecondLawEfficiency: u.known(kindNone, p.SecondLawEfficiency), IsentropicEfficiency: p.IsentropicEfficiency,
-		PressureRatio: p.PressureRatio, DischargeTemperature: u.out(kindTemperature, p.DischargeTemperature),
-		SuctionVolumeFlow: u.out(kindVolumeFlow, p.SuctionVolumeFlow), SweptVolumeFlow: u.known(kindVolumeFlow, p.SweptVolumeFlow),
-		VolumetricHeatingCapacity: u.out(kindVolumetricCapacity, p.VolumetricHeatingCapacity),
-		VolumetricCoolingCapacity: u.out(kindVolumetricCapacity, p.VolumetricCoolingCapacity),
-	}
+// writePerformance adds the member performance.
+func writePerformance(o *object, p *cycle.Performance, u *units) {
+	o.name("performance")
+	item := begin(o.b)
+	item.number("mass_flow", u.out(kindMassFlow, p.MassFlow))
+	item.number("heating_capacity", u.out(kindHeatFlow, p.HeatingCapacity))
+	item.number("cooling_capacity", u.out(kindHeatFlow, p.CoolingCapacity))
+	item.number("compressor_power", u.out(kindPower, p.CompressorPower))
+	item.number("cop_heating", p.COPHeating)
+	item.number("cop_cooling", p.COPCooling)
+	item.number("carnot_cop_heating", p.CarnotCOPHeating)
+	item.number("carnot_cop_cooling", p.CarnotCOPCooling)
+	item.number("second_law_efficiency", p.SecondLawEfficiency)
+	item.number("isentropic_efficiency", p.IsentropicEfficiency)
+	item.number("pressure_ratio", p.PressureRatio)
+	item.number("discharge_temperature", u.out(kindTemperature, p.DischargeTemperature))
+	item.number("suction_volume_flow", u.out(kindVolumeFlow, p.SuctionVolumeFlow))
+	item.number("swept_volume_flow", u.out(kindVolumeFlow, p.SweptVolumeFlow))
+	item.number("volumetric_heating_capacity", u.out(kindVolumetricCapacity, p.VolumetricHeatingCapacity))
+	item.number("volumetric_cooling_capacity", u.out(kindVolumetricCapacity, p.VolumetricCoolingCapacity))
+	o.b = item.end()
 }
 
 func figuresOf(f *cycle.Figures, u *units) figures {

@@ -60,6 +60,19 @@ func (o *object) text(name, text string) {
 	o.b = appendText(o.b, text)
 }
 
+// texts writes an array of texts.
+func (o *object) texts(name string, list []string) {
+	o.name(name)
+	o.b = append(o.b, '[')
+	for i, text := range list {
+		if i > 0 {
+			o.b = append(o.b, ',')
+		}
+		o.b = appendText(o.b, text)
+	}
+	o.b = append(o.b, ']')
+}
+
 // value writes any value that [encoding/json] can.
 func (o *object) value(name string, v any) error {
 	o.name(name)

@@ -3,6 +3,7 @@ package api
 import (
 	"errors"
 	"runtime"
+	"sync"
 	"time"
 
 	"github.com/gin-gonic/gin"
@@ -28,6 +29,26 @@ type metrics struct {
 	mixturesKept               prometheus.Gauge
 
 	ready prometheus.Gauge
+
+	good       children[prometheus.Counter]  // of calculations, those that succeeded, by kind
+	about      children[prometheus.Counter]  // of refrigerants
+	batchItems children[prometheus.Observer] // of batches
+}
+
+// children keeps the members of a vector by one label, whose values come from a closed set. A vector takes several times as long
+// to find them.
+type children[T any] struct {
+	kept sync.Map // label to T
+	find func(label string) T
+}
+
+func (k *children[T]) of(label string) T {
+	if v, ok := k.kept.Load(label); ok {
+		return v.(T)
+	}
+	v := k.find(label)
+	k.kept.Store(label, v)
+	return v
 }
 
 func newMetrics(o *Options, adm *admission) (*metrics, error) {
@@ -73,6 +94,9 @@ func newMetrics(o *Options, adm *admission) (*metrics, error) {
 			Name: "dewmark_ready", Help: "1 while the service asks for traffic.",
 		}),
 	}
+	m.good.find = func(kind string) prometheus.Counter { return m.calculations.WithLabelValues(kind, "ok") }
+	m.about.find = func(designation string) prometheus.Counter { return m.refrigerants.WithLabelValues(designation) }
+	m.batchItems.find = func(route string) prometheus.Observer { return m.batches.WithLabelValues(route) }
 	mixtureRequests := prometheus.NewCounterVec(prometheus.CounterOpts{
 		Name: "dewmark_mixture_requests_total", Help: "Requests for a mixture by its fractions; hit where it was kept already or is being made.",
 	}, []string{"result"})
@@ -135,11 +159,11 @@ func (m *metrics) used(designation string) {
 	if _, ok := m.listed[designation]; !ok {
 		designation = "other"
 	}
-	m.refrigerants.WithLabelValues(designation).Inc()
+	m.about.of(designation).Inc()
 }
 
 func (m *metrics) batch(c *gin.Context, items int) {
-	m.batches.WithLabelValues(c.FullPath()).Observe(float64(items))
+	m.batchItems.of(c.FullPath()).Observe(float64(items))
 }
 
 func (m *metrics) setReady(ready bool) {
@@ -153,7 +177,7 @@ func (m *metrics) setReady(ready bool) {
 // calculated enters what came of calculations of a kind.
 func (m *metrics) calculated(kind string, a *account) {
 	if a.good > 0 {
-		m.calculations.WithLabelValues(kind, "ok").Add(float64(a.good))
+		m.good.of(kind).Add(float64(a.good))
 	}
 	for outcome, n := range a.bad {
 		m.calculations.WithLabelValues(kind, outcome).Add(float64(n))

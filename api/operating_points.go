@@ -198,7 +198,7 @@ func (p *pointItem) encode(b []byte) ([]byte, error) {
 		return nil, err
 	}
 	writeStates(&o, p.states)
-	if err := o.members(&p.accounts); err != nil {
+	if err := p.accounts.write(&o); err != nil {
 		return nil, err
 	}
 	err := o.members(&p.point)
