@@ -167,7 +167,7 @@ func (t *ticket) start() error {
 	if t.pool.try() {
 		t.held = true
 		event(t.ctx, "computing")
-		t.pool.yield()
+		t.pool.glance(t.began())
 		return nil
 	}
 	a := t.a
@@ -196,6 +196,14 @@ func (t *ticket) start() error {
 		event(t.ctx, "computing")
 	}
 	return err
+}
+
+// began returns when the calculation began, or now where nothing tells.
+func (t *ticket) began() time.Time {
+	if t.deadline != nil {
+		return t.deadline.began
+	}
+	return t.a.now()
 }
 
 // pause gives the slot back while the request waits for its client.

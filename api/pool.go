@@ -23,11 +23,12 @@ type pool struct {
 	slots      chan struct{}
 	processors int
 	waiting    atomic.Int64
+	glanced    atomic.Int64 // when somebody who began at once let others go last, ns of the clock
+	turned     atomic.Int64 // when somebody was turned away last, ns of the clock
 
 	mu       sync.Mutex
 	cut      bool          // the queue
 	empty    time.Time     // when nobody waited last
-	turned   time.Time     // when somebody was turned away last
 	granted  time.Time     // when somebody who waited began last
 	interval time.Duration // between two such moments, of late
 }
@@ -43,7 +44,7 @@ func (p *pool) room(now time.Time, most int) int {
 	if p.waiting.Load() == 0 {
 		p.empty = now
 	}
-	switch overflows := now.Sub(p.turned) <= burst; {
+	switch overflows := p.overflows(now); {
 	case p.cut && !overflows:
 		p.cut, p.empty = false, now
 	case overflows && now.Sub(p.empty) > burst:
@@ -51,6 +52,9 @@ func (p *pool) room(now time.Time, most int) int {
 	}
 	return min(most, p.briefly())
 }
+
+// overflows reports whether somebody was turned away of late.
+func (p *pool) overflows(now time.Time) bool { return now.UnixNano()-p.turned.Load() <= int64(burst) }
 
 // briefly returns how many may wait for as long as the queue is not cut, or else about as many as begin within the target.
 func (p *pool) briefly() int {
@@ -65,7 +69,7 @@ func (p *pool) grant(then, now time.Time) (late bool) {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	if now.Sub(then) > target && int(p.waiting.Load()) > p.briefly() {
-		p.turned = now
+		p.turned.Store(now.UnixNano())
 		return true
 	}
 	if since := now.Sub(p.granted); since < burst {
@@ -76,11 +80,7 @@ func (p *pool) grant(then, now time.Time) (late bool) {
 }
 
 // turnedAway notes that there was no room for somebody.
-func (p *pool) turnedAway(now time.Time) {
-	p.mu.Lock()
-	defer p.mu.Unlock()
-	p.turned = now
-}
+func (p *pool) turnedAway(now time.Time) { p.turned.Store(now.UnixNano()) }
 
 // try takes a slot that is free.
 func (p *pool) try() bool {
@@ -126,9 +126,19 @@ func (p *pool) release() { <-p.slots }
 
 // yield lets others go before a calculation that has just got its slot and would take the last processor: those who came at
 // the same time shall see that the slot is taken. Otherwise each would find it free again after the one before, and none
-// would be turned away. That takes so little that calculations hardly feel it.
+// would be turned away.
 func (p *pool) yield() {
 	if len(p.slots) >= p.processors {
 		runtime.Gosched()
+	}
+}
+
+// glance is yield for a calculation that did not have to wait. As long as nobody is turned away, now and then is enough to
+// see that others come.
+func (p *pool) glance(now time.Time) {
+	const often = time.Millisecond
+	if last, at := p.glanced.Load(), now.UnixNano(); at-last >= int64(often) || at < last || p.overflows(now) {
+		p.glanced.Store(at)
+		p.yield()
 	}
 }

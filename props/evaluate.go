@@ -16,32 +16,30 @@ type fluidState struct {
 
 // evaluate returns the state of a single phase at density rho in kg/m3 on an isotherm.
 func (r *Pure) evaluate(iso *helmholtz.Isotherm, rho float64) (f fluidState) {
-	a := iso.Residual(rho * r.perM)
-	a.A += iso.Ideal.A
-	a.T += iso.Ideal.T
-	a.TT += iso.Ideal.TT
-	r.derive(iso.T, rho, &a, &f)
+	res := iso.Residual(rho * r.perM)
+	r.derive(iso.T, rho, &iso.Ideal, &res, &f)
 	return f
 }
 
 // evaluateAt sets f to a single phase at T in K and rho in kg/m3.
 func (r *Pure) evaluateAt(T, rho float64, f *fluidState) {
-	var a helmholtz.Alpha
-	r.eq.At(T, rho*r.perM, &a)
-	r.derive(T, rho, &a, f)
+	var id, res helmholtz.Alpha
+	r.eq.At(T, rho*r.perM, &id, &res)
+	r.derive(T, rho, &id, &res, f)
 }
 
-// derive sets f from both parts of the Helmholtz energy, a without the ideal part's ln(delta).
-func (r *Pure) derive(T, rho float64, a *helmholtz.Alpha, f *fluidState) {
+// derive sets f from both parts of the Helmholtz energy, the ideal part without its ln(delta).
+func (r *Pure) derive(T, rho float64, id, res *helmholtz.Alpha, f *fluidState) {
 	RT := r.Rs * T
+	e := id.T + res.T
 	f.T, f.rho = T, rho
-	f.p = rho * RT * (1 + a.D)
-	f.s = r.Rs*(a.T-a.A-elementary.Log(rho*r.perRho)) + r.s0
-	f.u = RT*a.T + r.h0
-	f.h = f.u + RT*(1+a.D)
-	f.cv = -r.Rs * a.TT
-	f.pRho = RT * (1 + 2*a.D + a.DD)
-	f.pT = rho * r.Rs * (1 + a.D - a.DT)
+	f.p = rho * RT * (1 + res.D)
+	f.s = r.Rs*(e-id.A-res.A-elementary.Log(rho*r.perRho)) + r.s0
+	f.u = RT*e + r.h0
+	f.h = f.u + RT*(1+res.D)
+	f.cv = -r.Rs * (id.TT + res.TT)
+	f.pRho = RT * (1 + 2*res.D + res.DD)
+	f.pT = rho * r.Rs * (1 + res.D - res.DT)
 }
 
 // value returns the caloric property y of f and its derivatives: in temperature at constant density and in density at

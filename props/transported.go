@@ -4,7 +4,6 @@ import (
 	"math"
 	"slices"
 
-	"dewmark/props/helmholtz"
 	"dewmark/props/transport"
 )
 
@@ -42,12 +41,9 @@ func (r *Pure) Transport(s State) (Transport, error) {
 	if s.Phase == TwoPhase {
 		return t, nil
 	}
-	var iso helmholtz.Isotherm
-	iso.Set(r.eq, s.T)
-	rho := s.Rho / r.M
-	t.Viscosity, t.ThermalConductivity, err = r.flow.ViscosityAndConductivity(transport.State{
-		T: s.T, Rho: rho, R: r.eq.R, Ideal: iso.Ideal, Residual: iso.Residual(rho),
-	})
+	at := transport.State{T: s.T, Rho: s.Rho / r.M, R: r.eq.R}
+	r.eq.At(at.T, at.Rho, &at.Ideal, &at.Residual)
+	t.Viscosity, t.ThermalConductivity, err = r.flow.ViscosityAndConductivity(at)
 	if err != nil {
 		return t, err
 	}

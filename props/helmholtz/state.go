@@ -6,9 +6,9 @@ import (
 	"dewmark/props/internal/elementary"
 )
 
-// At sets out to the ideal part without its ln(delta) and the residual part together, at T in K and rho in mol/m3, which must
+// At sets ideal to the ideal part without its ln(delta) and out to the residual part at T in K and rho in mol/m3, which must
 // be positive. It is what an [Isotherm] gives that is set for one density, for two thirds of the time.
-func (e *Equation) At(T, rho float64, out *Alpha) {
+func (e *Equation) At(T, rho float64, ideal, out *Alpha) {
 	tau, delta := e.TRed/T, rho/e.RhoRed
 	lnTau := elementary.Log(tau)
 	var pw [maxPowers]float64
@@ -17,7 +17,8 @@ func (e *Equation) At(T, rho float64, out *Alpha) {
 	e.fillPowers(&pow, delta)
 	const mask, deltaMask = maxPowers - 1, deltaPowers - 1 // an index within a table needs no bounds check
 
-	e.ideal.at(&pw, tau, lnTau, out)
+	e.ideal.at(&pw, tau, lnTau, ideal)
+	*out = Alpha{}
 	for i := range e.groups {
 		g := &e.groups[i]
 		var a, d, dd, t, dt, tt float64
