@@ -110,9 +110,9 @@ func (r *Pure) domeAtPressure(p float64) dome {
 }
 
 func (r *Pure) domeOf(T, p, liquid, vapour float64) dome {
-	var iso helmholtz.Isotherm
-	iso.Set(r.eq, T)
-	d := dome{T: T, p: p, liquid: r.evaluate(&iso, liquid), vapour: r.evaluate(&iso, vapour)}
+	d := dome{T: T, p: p}
+	r.evaluateAt(T, liquid, &d.liquid)
+	r.evaluateAt(T, vapour, &d.vapour)
 	// The equation's pressure of a cold liquid is rounding noise; the curve's is not.
 	d.liquid.h = d.liquid.u + p/liquid
 	d.vapour.h = d.vapour.u + p/vapour

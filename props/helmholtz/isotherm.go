@@ -31,7 +31,7 @@ func (s *Isotherm) Set(e *Equation, T float64) {
 	}
 	lnTau := elementary.Log(tau)
 	pw := &s.powers
-	e.powers.fill(pw, tau, T/e.TRed, lnTau)
+	e.powers.fill(pw, tau, 1/tau, lnTau)
 	const mask = maxPowers - 1 // an index within the table needs no bounds check
 
 	weights := s.weights[:len(e.first)]

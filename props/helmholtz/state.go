@@ -12,7 +12,7 @@ func (e *Equation) At(T, rho float64, ideal, out *Alpha) {
 	tau, delta := e.TRed/T, rho/e.RhoRed
 	lnTau := elementary.Log(tau)
 	var pw [maxPowers]float64
-	e.powers.fill(&pw, tau, T/e.TRed, lnTau)
+	e.powers.fill(&pw, tau, 1/tau, lnTau)
 	var pow [deltaPowers]float64
 	e.fillPowers(&pow, delta)
 	const mask, deltaMask = maxPowers - 1, deltaPowers - 1 // an index within a table needs no bounds check
