@@ -23,8 +23,9 @@ type pool struct {
 	slots      chan struct{}
 	processors int
 	waiting    atomic.Int64
-	glanced    atomic.Int64 // when somebody who began at once let others go last, ns of the clock
-	turned     atomic.Int64 // when somebody was turned away last, ns of the clock
+	made       time.Time    // which moments count from, so that a wall clock that is set moves none
+	glanced    atomic.Int64 // when somebody who began at once let others go last
+	turned     atomic.Int64 // when somebody was turned away last
 
 	mu       sync.Mutex
 	cut      bool          // the queue
@@ -34,8 +35,17 @@ type pool struct {
 }
 
 func newPool(size int) *pool {
-	return &pool{slots: make(chan struct{}, size), processors: runtime.GOMAXPROCS(0)}
+	p := &pool{slots: make(chan struct{}, size), processors: runtime.GOMAXPROCS(0), made: time.Now()}
+	p.glanced.Store(never)
+	p.turned.Store(never)
+	return p
 }
+
+// never is long before any moment.
+const never = math.MinInt64 / 2
+
+// moment returns now in ns.
+func (p *pool) moment(now time.Time) int64 { return int64(now.Sub(p.made)) }
 
 // room returns how many may wait, most at the most.
 func (p *pool) room(now time.Time, most int) int {
@@ -54,7 +64,7 @@ func (p *pool) room(now time.Time, most int) int {
 }
 
 // overflows reports whether somebody was turned away of late.
-func (p *pool) overflows(now time.Time) bool { return now.UnixNano()-p.turned.Load() <= int64(burst) }
+func (p *pool) overflows(now time.Time) bool { return p.moment(now)-p.turned.Load() <= int64(burst) }
 
 // briefly returns how many may wait for as long as the queue is not cut, or else about as many as begin within the target.
 func (p *pool) briefly() int {
@@ -69,7 +79,7 @@ func (p *pool) grant(then, now time.Time) (late bool) {
 	p.mu.Lock()
 	defer p.mu.Unlock()
 	if now.Sub(then) > target && int(p.waiting.Load()) > p.briefly() {
-		p.turned.Store(now.UnixNano())
+		p.turned.Store(p.moment(now))
 		return true
 	}
 	if since := now.Sub(p.granted); since < burst {
@@ -80,7 +90,7 @@ func (p *pool) grant(then, now time.Time) (late bool) {
 }
 
 // turnedAway notes that there was no room for somebody.
-func (p *pool) turnedAway(now time.Time) { p.turned.Store(now.UnixNano()) }
+func (p *pool) turnedAway(now time.Time) { p.turned.Store(p.moment(now)) }
 
 // try takes a slot that is free.
 func (p *pool) try() bool {
@@ -137,7 +147,7 @@ func (p *pool) yield() {
 // see that others come.
 func (p *pool) glance(now time.Time) {
 	const often = time.Millisecond
-	if last, at := p.glanced.Load(), now.UnixNano(); at-last >= int64(often) || at < last || p.overflows(now) {
+	if at := p.moment(now); at-p.glanced.Load() >= int64(often) || p.overflows(now) {
 		p.glanced.Store(at)
 		p.yield()
 	}

@@ -25,7 +25,7 @@ func (r *Pure) newton2(p float64, y Property, v, T, rho float64) (f fluidState, 
 		have, yT, yRho := f.value(y)
 		dy, dp := v-have, p-f.p
 		gas := rho < critical
-		if gas && math.Abs(dp) > far*f.p {
+		if gas && f.p > 0 && math.Abs(dp) > far*f.p {
 			dp = f.p * elementary.Log(p/f.p) // ln p is almost linear in ln(rho T)
 		}
 		det := yT*f.pRho - yRho*f.pT
