@@ -113,10 +113,23 @@ func (r *Pure) domeOf(T, p, liquid, vapour float64) dome {
 	d := dome{T: T, p: p}
 	r.evaluateAt(T, liquid, &d.liquid)
 	r.evaluateAt(T, vapour, &d.vapour)
-	// The equation's pressure of a cold liquid is rounding noise; the curve's is not.
-	d.liquid.h = d.liquid.u + p/liquid
-	d.vapour.h = d.vapour.u + p/vapour
+	d.settle()
 	return d
+}
+
+// domeOn is domeOf on an isotherm, for searches that look at single phases on it: any other evaluation differs by rounding, and
+// a value between the two would be on neither side of the dome's edge.
+func (r *Pure) domeOn(iso *helmholtz.Isotherm, p, liquid, vapour float64) dome {
+	d := dome{T: iso.T, p: p, liquid: r.evaluate(iso, liquid), vapour: r.evaluate(iso, vapour)}
+	d.settle()
+	return d
+}
+
+// settle makes the enthalpies of both phases those of the curve's pressure.
+func (d *dome) settle() {
+	// The equation's pressure of a cold liquid is rounding noise; the curve's is not.
+	d.liquid.h = d.liquid.u + d.p/d.liquid.rho
+	d.vapour.h = d.vapour.u + d.p/d.vapour.rho
 }
 
 // quality returns the vapour fraction at which the dome has property y, density included.

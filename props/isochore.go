@@ -3,7 +3,6 @@ package props
 import (
 	"math"
 
-	"dewmark/props/helmholtz"
 	"dewmark/props/internal/roots"
 )
 
@@ -34,9 +33,8 @@ func (r *Pure) valueAt(T, rho float64, y Property) float64 {
 			return d.value(y, d.quality(Density, rho))
 		}
 	}
-	var iso helmholtz.Isotherm
-	iso.Set(r.eq, T)
-	f := r.evaluate(&iso, rho)
+	var f fluidState
+	r.evaluateAt(T, rho, &f)
 	v, _, _ := f.value(y)
 	return v
 }
@@ -111,11 +109,9 @@ func (r *Pure) pressureDensity(p, rho float64, found func(State)) error {
 
 // pressureOnIsochore polishes the temperature at which the isochore rho has pressure p: the last digits of a
 // temperature found from densities are lost where a liquid hardly expands.
-func (r *Pure) pressureOnIsochore(T, p, rho float64) (fluidState, bool) {
-	var iso helmholtz.Isotherm
+func (r *Pure) pressureOnIsochore(T, p, rho float64) (f fluidState, ok bool) {
 	for range 8 {
-		iso.Set(r.eq, T)
-		f := r.evaluate(&iso, rho)
+		r.evaluateAt(T, rho, &f)
 		step := (p - f.p) / f.pT
 		if math.Abs(step) < 1e-14*T {
 			return f, true
@@ -125,8 +121,8 @@ func (r *Pure) pressureOnIsochore(T, p, rho float64) (fluidState, bool) {
 		}
 		T += step
 	}
-	iso.Set(r.eq, T)
-	return r.evaluate(&iso, rho), true
+	r.evaluateAt(T, rho, &f)
+	return f, true
 }
 
 // temperatures returns a rising grid from lo to hi for scans, in even steps of at most 2 % of the temperature.

@@ -123,7 +123,7 @@ func (r *Pure) isotherm(T float64, y Property, v float64, found func(State)) err
 	} else {
 		p, liquid, vapour := r.curve.At(T)
 		liquid, vapour = liquid*r.M, vapour*r.M
-		d := r.domeOf(T, p, liquid, vapour)
+		d := r.domeOn(&iso, p, liquid, vapour)
 		if dense > liquid {
 			roots.All(r.densities(liquid, dense), miss, single)
 		}

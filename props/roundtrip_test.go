@@ -171,3 +171,42 @@ func miss(states []props.State, s props.State) (dT, dRho float64) {
 	}
 	return dT, dRho
 }
+
+// A liquid or vapour beside its saturation line is found from temperature and entropy or energy, and a state at an end of the
+// range of temperatures from its density: rounding leaves no gap between the searches and the states.
+func TestNoGapsAtEdges(t *testing.T) {
+	for _, id := range catalogue(t).PureDesignations() {
+		r := refrigerant(t, id)
+		lo, _ := r.SaturationLimits()
+		for i := range 24 {
+			T := lo + (r.Critical().T-lo)*(float64(i)+0.3)/25
+			p, err := r.SaturationPressure(T)
+			if err != nil {
+				t.Fatal(err)
+			}
+			for _, away := range []float64{1 + 1e-7, 1 - 1e-7} {
+				s, err := r.TemperaturePressure(T, p*away)
+				if err != nil {
+					continue // solid, or on the line itself
+				}
+				for _, y := range []props.Property{props.Entropy, props.InternalEnergy} {
+					_, err := r.States(props.Given{Property: props.Temperature, Value: T}, props.Given{Property: y, Value: value(s, y)})
+					if _, none := errors.AsType[*props.NoSolutionError](err); none {
+						t.Errorf("%s at %.17g K and %g times the vapour pressure: %v", id, T, away, err)
+					}
+				}
+			}
+		}
+		for _, T := range []float64{r.Limits().TemperatureMin, r.Limits().TemperatureMax} {
+			for i := range 20 {
+				s, err := r.TemperatureDensity(T, r.Critical().Rho*math.Exp(-7+0.35*float64(i)))
+				if err != nil || s.Phase == props.TwoPhase {
+					continue
+				}
+				if _, err := r.States(props.Given{Property: props.Density, Value: s.Rho}, props.Given{Property: props.Entropy, Value: s.S}); err != nil {
+					t.Errorf("%s at %g K, %.17g kg/m3: %v", id, T, s.Rho, err)
+				}
+			}
+		}
+	}
+}

@@ -43,9 +43,6 @@ const (
 	nearCriticalShare = 0.98 // of the critical pressure: latent heat and densities change steeply from there
 )
 
-// nearOptimumEnd times the critical pressure is about where the search for a gas cooler's pressure begins.
-const nearOptimumEnd = 1.01
-
 // noticedGlide is the difference of dew and bubble temperature from which a vessel parts the components of a blend, K.
 const noticedGlide = 0.01
 
@@ -87,7 +84,7 @@ func (c *circuit) raise(s *Solution) {
 	for i := range c.optima {
 		if o := &c.optima[i]; o.AtLimit {
 			text := "the COP still rises at the end of the search, %s"
-			if o.Field == c.gasCooling.field() && o.Pressure < nearOptimumEnd*c.refrigerants[c.side].Critical().P {
+			if o.atLow && o.Field == c.gasCooling.field() && c.low.pressure < c.refrigerants[c.side].Critical().P {
 				text += ", the critical pressure: the outlet is so cold that a condenser below it may serve better"
 			}
 			c.caution(Caution{Code: OptimumAtLimit, Field: o.Field, Message: message(text, pressure(o.Pressure))})

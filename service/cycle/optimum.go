@@ -56,7 +56,7 @@ func (c *circuit) search(field string, low, high, step float64, at func(p float6
 	}
 	o := Optimum{
 		Field: field, Pressure: p, COP: cop, Step: step, LossBelow: nan, LossAbove: nan,
-		Tolerance: searchTolerance * p, AtLimit: end,
+		Tolerance: searchTolerance * p, AtLimit: end, atLow: end && p < math.Sqrt(low*high),
 	}
 	if !outer { // not worth it at each trial of a search further out
 		if !isGiven(step) {

@@ -108,6 +108,7 @@ type Optimum struct {
 	Tolerance   float64 // Pa, width of the last bracket
 	Evaluations int
 	AtLimit     bool // the best pressure is an end of the bracket: no inner optimum
+	atLow       bool // the lower end
 }
 
 // Closure says how well the accounts close.

@@ -13,6 +13,6 @@
 // difference of temperatures in it, or by an approach at one of its ends.
 //
 // A machine or condition that cannot be is refused with a [*RefusedError], whose refusals name the field and the reason. A
-// field's path begins with "machine" or "condition"; the comment of a field names its path where it is not the field's own
+// field's path begins with "machine", "condition" or "site"; the comment of a field names its path where it is not the field's own
 // name in lower case.
 package machine
