@@ -127,7 +127,9 @@ func (r *Pure) isotherm(T float64, y Property, v float64, found func(State)) err
 		if dense > liquid {
 			roots.All(r.densities(liquid, dense), miss, single)
 		}
-		if x := d.quality(y, v); 0 <= x && x <= 1 {
+		if x := r.snap(&d, y, d.quality(y, v)); 0 <= x && x <= 1 {
+			// On the edge the value may lie outside what the searches see, by the noise of the equation's own pressure.
+			lowest, highest = math.Min(lowest, v), math.Max(highest, v)
 			found(r.domeState(&d, x))
 		}
 		roots.All(r.densities(math.Min(thin, vapour/2), vapour), miss, single)

@@ -197,6 +197,16 @@ func TestNoGapsAtEdges(t *testing.T) {
 				}
 			}
 		}
+		for i := range 24 {
+			s, err := r.BubblePoint(lo + (r.Critical().T-lo)*(float64(i)+0.3)/25)
+			if err != nil {
+				t.Fatal(err)
+			}
+			_, err = r.States(props.Given{Property: props.Temperature, Value: s.T}, props.Given{Property: props.Enthalpy, Value: s.H})
+			if e, out := errors.AsType[*props.RangeError](err); out {
+				t.Errorf("%s boiling at %.17g K: %v", id, s.T, e)
+			}
+		}
 		for _, T := range []float64{r.Limits().TemperatureMin, r.Limits().TemperatureMax} {
 			for i := range 20 {
 				s, err := r.TemperatureDensity(T, r.Critical().Rho*math.Exp(-7+0.35*float64(i)))
