@@ -204,9 +204,7 @@ func (r *cycleRequest) si(j *job, upper []*job) (*cycle.Request, error) {
 		SourceTemperature:  u.optional(kindTemperature, r.SourceTemperature),
 		SinkTemperature:    u.optional(kindTemperature, r.SinkTemperature),
 		AmbientTemperature: u.optional(kindTemperature, r.AmbientTemperature),
-	}
-	if u.ambient > 0 {
-		q.AmbientPressure = new(u.ambient)
+		AmbientPressure:    u.ambientPressure(),
 	}
 	q.With = combined(&c, "#/with", r.With)
 	if g := r.GasCooler; g != nil {

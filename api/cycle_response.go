@@ -40,6 +40,9 @@ type cycleRest struct {
 func (a *cycleAccounts) write(o *object) error {
 	writeComponents(o, a.solution, a.units)
 	writePerformance(o, &a.solution.Performance, a.units)
+	if err := o.err(); err != nil {
+		return err
+	}
 	return o.members(&a.rest)
 }
 
@@ -177,7 +180,7 @@ func writeStates(o *object, states []cycleState) {
 		item.text("label", s.label)
 		item.text("place", s.place)
 		item.text("refrigerant", s.refrigerant)
-		item.number("mass_flow", s.massFlow)
+		item.figure("mass_flow", s.massFlow)
 		s.state.write(item)
 	})
 }
@@ -225,48 +228,47 @@ func writeComponents(o *object, s *cycle.Solution, u *units) {
 		item.text("name", k.Name)
 		item.texts("inlets", k.Inlets)
 		item.texts("outlets", k.Outlets)
-		item.number("mass_flow", u.out(kindMassFlow, k.MassFlow))
-		item.number("heat", u.out(kindHeatFlow, k.Heat))
+		item.figure("mass_flow", u.out(kindMassFlow, k.MassFlow))
+		item.figure("heat", u.out(kindHeatFlow, k.Heat))
 		item.number("heat_temperature", u.out(kindTemperature, k.HeatTemperature))
-		item.number("work", u.out(kindPower, k.Work))
+		item.figure("work", u.out(kindPower, k.Work))
 		item.number("entropy_generation", u.out(kindEntropyFlow, k.EntropyGeneration))
 		item.number("exergy_destruction", u.out(kindPower, k.ExergyDestruction))
 	})
 	o.list("compressors", len(s.Compressors), func(i int, item *object) {
 		k := &s.Compressors[i]
 		item.text("name", k.Name)
-		item.number("mass_flow", u.out(kindMassFlow, k.MassFlow))
-		item.number("power", u.out(kindPower, k.Power))
-		item.number("isentropic_efficiency", k.IsentropicEfficiency)
+		item.figure("mass_flow", u.out(kindMassFlow, k.MassFlow))
+		item.figure("power", u.out(kindPower, k.Power))
+		item.figure("isentropic_efficiency", k.IsentropicEfficiency)
 		item.number("volumetric_efficiency", k.VolumetricEfficiency)
-		item.number("pressure_ratio", k.PressureRatio)
-		item.number("discharge_temperature", u.out(kindTemperature, k.DischargeTemperature))
-		item.number("suction_volume_flow", u.out(kindVolumeFlow, k.SuctionVolumeFlow))
+		item.figure("pressure_ratio", k.PressureRatio)
+		item.figure("discharge_temperature", u.out(kindTemperature, k.DischargeTemperature))
+		item.figure("suction_volume_flow", u.out(kindVolumeFlow, k.SuctionVolumeFlow))
 		item.number("swept_volume_flow", u.out(kindVolumeFlow, k.SweptVolumeFlow))
 	})
 }
 
 // writePerformance adds the member performance.
 func writePerformance(o *object, p *cycle.Performance, u *units) {
-	o.name("performance")
-	item := begin(o.b)
-	item.number("mass_flow", u.out(kindMassFlow, p.MassFlow))
-	item.number("heating_capacity", u.out(kindHeatFlow, p.HeatingCapacity))
-	item.number("cooling_capacity", u.out(kindHeatFlow, p.CoolingCapacity))
-	item.number("compressor_power", u.out(kindPower, p.CompressorPower))
-	item.number("cop_heating", p.COPHeating)
-	item.number("cop_cooling", p.COPCooling)
-	item.number("carnot_cop_heating", p.CarnotCOPHeating)
-	item.number("carnot_cop_cooling", p.CarnotCOPCooling)
-	item.number("second_law_efficiency", p.SecondLawEfficiency)
-	item.number("isentropic_efficiency", p.IsentropicEfficiency)
-	item.number("pressure_ratio", p.PressureRatio)
-	item.number("discharge_temperature", u.out(kindTemperature, p.DischargeTemperature))
-	item.number("suction_volume_flow", u.out(kindVolumeFlow, p.SuctionVolumeFlow))
-	item.number("swept_volume_flow", u.out(kindVolumeFlow, p.SweptVolumeFlow))
-	item.number("volumetric_heating_capacity", u.out(kindVolumetricCapacity, p.VolumetricHeatingCapacity))
-	item.number("volumetric_cooling_capacity", u.out(kindVolumetricCapacity, p.VolumetricCoolingCapacity))
-	o.b = item.end()
+	o.inner("performance", func(item *object) {
+		item.figure("mass_flow", u.out(kindMassFlow, p.MassFlow))
+		item.figure("heating_capacity", u.out(kindHeatFlow, p.HeatingCapacity))
+		item.figure("cooling_capacity", u.out(kindHeatFlow, p.CoolingCapacity))
+		item.figure("compressor_power", u.out(kindPower, p.CompressorPower))
+		item.figure("cop_heating", p.COPHeating)
+		item.figure("cop_cooling", p.COPCooling)
+		item.number("carnot_cop_heating", p.CarnotCOPHeating)
+		item.number("carnot_cop_cooling", p.CarnotCOPCooling)
+		item.number("second_law_efficiency", p.SecondLawEfficiency)
+		item.figure("isentropic_efficiency", p.IsentropicEfficiency)
+		item.figure("pressure_ratio", p.PressureRatio)
+		item.figure("discharge_temperature", u.out(kindTemperature, p.DischargeTemperature))
+		item.figure("suction_volume_flow", u.out(kindVolumeFlow, p.SuctionVolumeFlow))
+		item.number("swept_volume_flow", u.out(kindVolumeFlow, p.SweptVolumeFlow))
+		item.figure("volumetric_heating_capacity", u.out(kindVolumetricCapacity, p.VolumetricHeatingCapacity))
+		item.figure("volumetric_cooling_capacity", u.out(kindVolumetricCapacity, p.VolumetricCoolingCapacity))
+	})
 }
 
 func figuresOf(f *cycle.Figures, u *units) figures {

@@ -2,7 +2,9 @@ package api
 
 import (
 	"bytes"
+	"cmp"
 	"encoding/json"
+	"fmt"
 	"math"
 	"strconv"
 	"strings"
@@ -10,10 +12,13 @@ import (
 )
 
 // object writes a JSON object member by member. It serves states, which are too many for reflection.
-type object struct{ b []byte }
+type object struct {
+	b      []byte
+	absent string // the first member written by figure that is no number, or ""
+}
 
 // begin opens an object at the end of b.
-func begin(b []byte) object { return object{append(b, '{')} }
+func begin(b []byte) object { return object{b: append(b, '{')} }
 
 // end closes the object and returns the text.
 func (o *object) end() []byte { return append(o.b, '}') }
@@ -34,6 +39,35 @@ func (o *object) number(name string, x float64) {
 	o.b = appendNumber(o.b, x)
 }
 
+// figure writes a number that every answer has. One that is not finite is a fault, which err tells.
+func (o *object) figure(name string, x float64) {
+	if o.absent == "" && (math.IsNaN(x) || math.IsInf(x, 0)) {
+		o.absent = name
+	}
+	o.number(name, x)
+}
+
+// err returns an error where a figure was missing.
+func (o *object) err() error {
+	if o.absent != "" {
+		return fmt.Errorf("api: %s is not a number", o.absent)
+	}
+	return nil
+}
+
+// inner writes an object.
+func (o *object) inner(name string, write func(item *object)) {
+	o.name(name)
+	o.item(write)
+}
+
+// item writes an object at the end.
+func (o *object) item(write func(item *object)) {
+	item := begin(o.b)
+	write(&item)
+	o.b, o.absent = item.end(), cmp.Or(o.absent, item.absent)
+}
+
 // list writes an array of n objects.
 func (o *object) list(name string, n int, write func(i int, item *object)) {
 	o.name(name)
@@ -42,9 +76,7 @@ func (o *object) list(name string, n int, write func(i int, item *object)) {
 		if i > 0 {
 			o.b = append(o.b, ',')
 		}
-		item := begin(o.b)
-		write(i, &item)
-		o.b = item.end()
+		o.item(func(item *object) { write(i, item) })
 	}
 	o.b = append(o.b, ']')
 }

@@ -35,15 +35,11 @@ const maxConditions = 1000
 
 func (r *condition) si(f *fluids, c *choices, at string) machine.Condition {
 	u := f.units
-	k := machine.Condition{
+	return machine.Condition{
 		Source: r.Source.si(f, c, at+"/source"), Sink: r.Sink.si(f, c, at+"/sink"), Speed: r.Speed,
 		Demand:             machine.Demand{Heating: u.optional(kindHeatFlow, r.Demand.Heating), Cooling: u.optional(kindHeatFlow, r.Demand.Cooling)},
-		AmbientTemperature: u.optional(kindTemperature, r.AmbientTemperature),
+		AmbientTemperature: u.optional(kindTemperature, r.AmbientTemperature), AmbientPressure: u.ambientPressure(),
 	}
-	if u.ambient > 0 {
-		k.AmbientPressure = new(u.ambient)
-	}
-	return k
 }
 
 // statesPerOperatingPoint is about how many states one operating point costs as much as.

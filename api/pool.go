@@ -138,17 +138,20 @@ func (p *pool) release() { <-p.slots }
 // the same time shall see that the slot is taken. Otherwise each would find it free again after the one before, and none
 // would be turned away.
 func (p *pool) yield() {
-	if len(p.slots) >= p.processors {
+	if p.busy() {
 		runtime.Gosched()
 	}
 }
+
+// busy reports whether calculations take all processors.
+func (p *pool) busy() bool { return len(p.slots) >= p.processors }
 
 // glance is yield for a calculation that did not have to wait. As long as nobody is turned away, now and then is enough to
 // see that others come.
 func (p *pool) glance(now time.Time) {
 	const often = time.Millisecond
-	if at := p.moment(now); at-p.glanced.Load() >= int64(often) || p.overflows(now) {
+	if at := p.moment(now); p.busy() && (at-p.glanced.Load() >= int64(often) || p.overflows(now)) {
 		p.glanced.Store(at)
-		p.yield()
+		runtime.Gosched()
 	}
 }

@@ -278,7 +278,7 @@ func (v voice) number(n cycle.Number) string { return v.text(quantityKinds[n.Qua
 var quantityKinds = [...]kind{
 	cycle.Dimensionless: kindNone, cycle.Temperature: kindTemperature, cycle.TemperatureDifference: kindTemperatureDifference,
 	cycle.Pressure: kindPressure, cycle.PressureDifference: kindPressureDifference, cycle.Power: kindPower,
-	cycle.HeatFlow: kindHeatFlow, cycle.MassFlow: kindMassFlow, cycle.VolumeFlow: kindVolumeFlow,
+	cycle.HeatFlow: kindHeatFlow, cycle.MassFlow: kindMassFlow, cycle.VolumeFlow: kindVolumeFlow, cycle.Volume: kindVolume,
 	cycle.EntropyFlow: kindEntropyFlow, cycle.Enthalpy: kindEnthalpy,
 }
 

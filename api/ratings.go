@@ -328,7 +328,7 @@ func (t *ratingTable) end() error {
 	}
 	t.caution("calculation_aid", handling(t.r, nil))
 	t.buffer = append(t.buffer[:0], ']')
-	o := object{t.buffer}
+	o := object{b: t.buffer}
 	o.number("failed", float64(t.all.failed()))
 	if err := t.tail(&o); err != nil {
 		return err

@@ -230,12 +230,9 @@ func (in *installation) si(c *choices) (*readings.Installation, *readings.Option
 	h, u := in.head, in.units
 	i := &readings.Installation{
 		Refrigerant: in.r, Layout: choose(c, "#/layout", h.Layout, cycle.SingleStage, cycle.ParseLayout, cycle.Layouts()), With: combined(c, "#/with", h.With),
-		Site:             readings.Site{Gauges: u.of[kindPressure].gauge},
+		Site:             readings.Site{Gauges: u.of[kindPressure].gauge, AmbientPressure: u.ambientPressure()},
 		ShellConductance: u.optional(kindConductance, h.ShellConductance), SweptVolume: u.optional(kindVolume, h.SweptVolume), ModelUncertainty: h.ModelUncertainty,
 		Expansion: choose(c, "#/expansion", h.Expansion, readings.ControlledExpansion, readings.ParseExpansion, wordsOf(readings.ControlledExpansion)),
-	}
-	if u.ambient > 0 {
-		i.Site.AmbientPressure = &u.ambient
 	}
 	if s := h.Site; s != nil {
 		i.Site.AmbientUncertainty = u.optional(kindPressureDifference, s.AmbientUncertainty)

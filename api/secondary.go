@@ -246,8 +246,8 @@ func (r *streamRequest) si(f *fluids, c *choices, at string) machine.Stream {
 		WetBulb: u.optional(kindTemperature, r.WetBulbTemperature), DewPoint: u.optional(kindTemperature, r.DewPointTemperature),
 		HumidityRatio: r.HumidityRatio,
 	}
-	if r.Fluid == fluidAir && s.Pressure == nil && u.ambient > 0 {
-		s.Pressure = &u.ambient // that of the site
+	if r.Fluid == fluidAir && s.Pressure == nil {
+		s.Pressure = u.ambientPressure()
 	}
 	return s
 }

@@ -423,6 +423,14 @@ func (u *units) out(k kind, si float64) float64 {
 	return x
 }
 
+// ambientPressure returns that of the site in Pa, nil where the request names none.
+func (u *units) ambientPressure() *float64 {
+	if u.ambient > 0 {
+		return &u.ambient
+	}
+	return nil
+}
+
 // known is out for a number that may not exist.
 func (u *units) known(k kind, si float64) *float64 { return known(u.out(k, si)) }
 

@@ -56,7 +56,7 @@ func (r *Pure) subcritical(iso *helmholtz.Isotherm, p, ps, liquid, vapour float6
 	const slope = 8
 	d, dd := iso.Density(liquid * r.perM)
 	bulk := liquid * r.Rs * iso.T * math.Max(1+2*d+dd, 1e-3)
-	return branch{lo: liquid, hi: r.densest(), start: liquid * math.Sqrt(math.Sqrt(math.Sqrt(1+slope*(p-ps)/bulk)))}
+	return branch{lo: liquid, hi: r.densest(), start: liquid * math.Sqrt(math.Sqrt(math.Sqrt(1+slope*(p-ps)/bulk)))} // the power 1/slope
 }
 
 // supercritical returns the branch of an isotherm above the critical temperature, started from the cubic equation of

@@ -85,14 +85,12 @@ func (r *Pure) check(s *State) error {
 
 // Extrapolated reports whether s lies outside the validity of the equation.
 func (r *Pure) Extrapolated(s State) bool {
-	l := &r.limits
-	if s.Phase == TwoPhase || s.T >= l.TemperatureMin && s.T <= l.TemperatureMax && s.P >= vacuum && s.P <= l.PressureMax &&
-		s.Rho >= vacuum && s.Rho <= l.DensityMax && s.P <= r.meltingPressure(s.T) {
-		return false
+	if r.extrapolate {
+		plain := *r
+		plain.extrapolate = false
+		r = &plain
 	}
-	plain := *r
-	plain.extrapolate = false
-	return plain.check(&s) != nil
+	return s.Phase != TwoPhase && r.check(&s) != nil
 }
 
 // meltingPressure returns the pressure above which the refrigerant is solid at temperature T, or +Inf where no melting

@@ -35,13 +35,13 @@ type Curve struct {
 
 	pieces   []piece // in rising s, the critical piece first
 	critical criticalPiece
-	inverse  []inversePiece // in rising ln p
-	bands    [bands]band    // evenly from TMin to TCritical
+	inverse  []inversePiece  // in rising ln p
+	bands    [bandCount]band // evenly from TMin to TCritical
 	bounds   Bounds
 }
 
-// bands is how many stretches of temperature there are with densities known to lie outside the dome.
-const bands = 128
+// bandCount is how many stretches of temperature there are with densities known to lie outside the dome.
+const bandCount = 128
 
 // band holds densities in mol/m3 beyond which a fluid is outside the dome everywhere in a stretch of temperature.
 type band struct{ thin, dense float64 }
@@ -104,15 +104,15 @@ func New(eq *helmholtz.Equation, o Options) (*Curve, error) {
 	}
 	c.PMin, _, _ = c.At(c.TMin)
 	b.invert()
-	c.bound()
+	c.fillBands()
 	return c, nil
 }
 
-// bound fills the bands. The density of saturated vapour rises with temperature; that of liquid has its maximum inside a
+// fillBands fills the bands. The density of saturated vapour rises with temperature; that of liquid has its maximum inside a
 // stretch for water, which the margin covers.
-func (c *Curve) bound() {
+func (c *Curve) fillBands() {
 	const margin, parts = 1e-3, 4
-	width := (c.TCritical - c.TMin) / bands
+	width := (c.TCritical - c.TMin) / bandCount
 	for i := range c.bands {
 		b := &c.bands[i]
 		for j := range parts + 1 {
@@ -126,13 +126,13 @@ func (c *Curve) bound() {
 	}
 }
 
-// Outside reports that density rho in mol/m3 at temperature T in K, at most TCritical, lies outside the dome, as far as that can
-// be told without an expansion. Where it reports false, the density may lie outside still.
+// Outside reports whether density rho in mol/m3 at temperature T in K, at most TCritical, lies outside the dome, as far as
+// that can be told without an expansion. Where it reports false, the density may lie outside still.
 func (c *Curve) Outside(T, rho float64) bool {
 	if !(T >= c.TMin) {
 		return false
 	}
-	b := &c.bands[min(int((T-c.TMin)/(c.TCritical-c.TMin)*bands), bands-1)]
+	b := &c.bands[min(int((T-c.TMin)/(c.TCritical-c.TMin)*bandCount), bandCount-1)]
 	return rho < b.thin || rho > b.dense
 }
 

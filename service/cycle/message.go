@@ -19,11 +19,12 @@ const (
 	HeatFlow                       // W
 	MassFlow                       // kg/s
 	VolumeFlow                     // m3/s
+	Volume                         // m3
 	EntropyFlow                    // W/K
 	Enthalpy                       // J/kg
 )
 
-var quantityUnits = [...]string{"", " K", " K", " Pa", " Pa", " W", " W", " kg/s", " m3/s", " W/K", " J/kg"}
+var quantityUnits = [...]string{"", " K", " K", " Pa", " Pa", " W", " W", " kg/s", " m3/s", " m3", " W/K", " J/kg"}
 
 // Number is a value in SI units that a message speaks of.
 type Number struct {

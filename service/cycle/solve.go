@@ -16,8 +16,9 @@ func Solve(ctx context.Context, r *Request) (*Solution, error) {
 	return s, nil
 }
 
-// Solve is the function of that name with its answer in s, whose memory is used again: a simple cycle without a caution then
-// allocates nothing. After an error s holds nothing of use.
+// Solve is the function of that name with its answer in s, whose memory is used again: a simple cycle then allocates nothing. It
+// overwrites what the lists of the answer before refer to, in copies of s too. After an error s holds nothing of use. It must not
+// be called concurrently.
 func (s *Solution) Solve(ctx context.Context, r *Request) error {
 	c := circuit{ctx: ctx}
 	c.cautions = s.Cautions[:0]

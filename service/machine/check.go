@@ -40,6 +40,9 @@ func (c *checker) err() error {
 	return &RefusedError{c.refusals}
 }
 
+// mostSwept is more than any compressor of positive displacement sweeps in a revolution, m3; common practice.
+const mostSwept = 1.0
+
 // bounds of a number; an open end does not belong to them.
 type bounds struct {
 	quantity         cycle.Quantity
@@ -56,6 +59,7 @@ var (
 	powerBounds       = bounds{cycle.Power, 0, mostAmount, false, false}
 	heatBounds        = bounds{cycle.HeatFlow, 0, mostAmount, true, false}
 	massFlowBounds    = bounds{cycle.MassFlow, 0, mostAmount, true, false}
+	sweptBounds       = bounds{cycle.Volume, 0, mostSwept, true, false}
 	volumeFlowBounds  = bounds{cycle.VolumeFlow, 0, mostAmount, true, false}
 	amountBounds      = bounds{cycle.Dimensionless, 0, mostAmount, true, false}
 	resistanceBounds  = bounds{cycle.Dimensionless, 0, mostAmount, false, false}

@@ -44,7 +44,7 @@ func (u *unit) drive(k *Compressor) drive {
 	const field = "machine.compressor"
 	d := drive{
 		field:     field,
-		swept:     u.sweptVolume(field+".swept_volume", k.SweptVolume),
+		swept:     u.number(field+".swept_volume", k.SweptVolume, &sweptBounds),
 		loss:      k.HeatLossFraction,
 		terminals: u.or(field+".drive_efficiency", k.DriveEfficiency, &efficiencyBounds, 1),
 		speed:     u.number(field+".speed", k.Speed, &amountBounds),
@@ -68,17 +68,6 @@ func (u *unit) drive(k *Compressor) drive {
 		u.wrong(OutOfBounds, field+".speed", message("%s 1/s lies outside the range of speeds, %s to %s 1/s", plain(d.speed), plain(d.slowest), plain(d.fastest)))
 	}
 	return d
-}
-
-// mostSwept is more than any compressor of positive displacement sweeps in a revolution, m3; common practice.
-const mostSwept = 1.0
-
-func (u *unit) sweptVolume(field string, v *float64) float64 {
-	x := u.number(field, v, &amountBounds)
-	if x > mostSwept {
-		u.wrong(OutOfBounds, field, message("%s m3 a revolution is more than any compressor sweeps, %s m3: check the unit", plain(x), plain(mostSwept)))
-	}
-	return x
 }
 
 // lawful takes a compressor by swept volume and laws.
